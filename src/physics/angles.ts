@@ -46,5 +46,5 @@ export function anglesForSurface(parent: number, first: number, second: number):
 }
 
 function arcCosine(x: number): number {
-  return Math.acos(x > 1 ? 1 : x < -1 ? -1 : x);
+  return Math.acos(Math.min(1, Math.max(-1, x)));
 }

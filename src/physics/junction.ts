@@ -41,8 +41,8 @@ export function parentRadius(first: number, second: number, exponent: number): n
     );
   }
   // Relative to the larger, so that a power of a radius in metres cannot underflow.
-  const large = first > second ? first : second;
-  const ratio = first > second ? second / first : first / second;
+  const large = Math.max(first, second);
+  const ratio = Math.min(first, second) / large;
   return large * rootOf(1 + powerOf(ratio, exponent), exponent);
 }
 
