@@ -1,0 +1,180 @@
+import { squaredDistanceToSegment } from './segments.ts';
+
+/** Above this many cells a box of cells is thinned to those near the tube's axis. */
+const FEW_CELLS = 27;
+
+/**
+ * Uniform grid over tubes: which rows could come within a given distance of a segment?
+ *
+ * A tube is listed in every cell that its body touches, so a fat trunk is found from any point at its wall and a query
+ * needs no knowledge of how fat its neighbours are. Entries are never taken out: a row that has moved is added again
+ * and its old entries only cost a look, because whoever asks measures the row as it stands. Rebuild when rows double.
+ *
+ * Cost: add and gather O(cells touched).
+ */
+export class TubeGrid {
+  readonly cell: number;
+  private readonly minX: number;
+  private readonly minY: number;
+  private readonly minZ: number;
+  private readonly nx: number;
+  private readonly ny: number;
+  private readonly nz: number;
+  private readonly head: Int32Array;
+  private next: Int32Array;
+  private item: Int32Array;
+  private entries = 0;
+  private seen: Int32Array;
+  private pass = 0;
+  /** Rows that the last `gather` found; only the first `gather()` of them count. */
+  found = new Int32Array(256);
+
+  /**
+   * @param min, max m, box that most tubes lie in; what lies outside is filed in the cells at the edge
+   * @param cell     m, edge of a cell; widened where the box would need more than `mostCells`
+   */
+  constructor(
+    min: readonly [number, number, number],
+    max: readonly [number, number, number],
+    cell: number,
+    mostCells = 1 << 25,
+  ) {
+    const wx = max[0] - min[0];
+    const wy = max[1] - min[1];
+    const wz = max[2] - min[2];
+    let size = Math.max(cell, Math.cbrt((wx * wy * wz) / mostCells), Math.max(wx, wy, wz) / 4096);
+    while ((Math.ceil(wx / size) + 1) * (Math.ceil(wy / size) + 1) * (Math.ceil(wz / size) + 1) > mostCells)
+      size *= 1.1;
+    this.cell = size;
+    this.minX = min[0];
+    this.minY = min[1];
+    this.minZ = min[2];
+    this.nx = Math.max(1, Math.ceil(wx / size));
+    this.ny = Math.max(1, Math.ceil(wy / size));
+    this.nz = Math.max(1, Math.ceil(wz / size));
+    this.head = new Int32Array(this.nx * this.ny * this.nz).fill(-1);
+    this.next = new Int32Array(4096);
+    this.item = new Int32Array(4096);
+    this.seen = new Int32Array(1024);
+  }
+
+  /** Lists a row in every cell that the tube a→b of a radius (m) touches. */
+  add(row: number, ax: number, ay: number, az: number, bx: number, by: number, bz: number, radius: number): void {
+    if (row >= this.seen.length) {
+      const wider = new Int32Array(Math.max(2 * this.seen.length, row + 1));
+      wider.set(this.seen);
+      this.seen = wider;
+    }
+    const x0 = this.clampX(Math.min(ax, bx) - radius);
+    const x1 = this.clampX(Math.max(ax, bx) + radius);
+    const y0 = this.clampY(Math.min(ay, by) - radius);
+    const y1 = this.clampY(Math.max(ay, by) + radius);
+    const z0 = this.clampZ(Math.min(az, bz) - radius);
+    const z1 = this.clampZ(Math.max(az, bz) + radius);
+    const cells = (x1 - x0 + 1) * (y1 - y0 + 1) * (z1 - z0 + 1);
+    if (this.entries + cells > this.next.length) this.widen(this.entries + cells);
+    const near = this.nearSquared(radius);
+    const thin = cells > 2 && this.inside(ax, ay, az) && this.inside(bx, by, bz);
+    for (let z = z0; z <= z1; z++) {
+      const cz = this.minZ + (z + 0.5) * this.cell;
+      for (let y = y0; y <= y1; y++) {
+        const cy = this.minY + (y + 0.5) * this.cell;
+        for (let x = x0; x <= x1; x++) {
+          if (thin) {
+            const cx = this.minX + (x + 0.5) * this.cell;
+            if (squaredDistanceToSegment(cx, cy, cz, ax, ay, az, bx, by, bz) > near) continue;
+          }
+          const at = (z * this.ny + y) * this.nx + x;
+          const entry = this.entries++;
+          this.item[entry] = row;
+          this.next[entry] = this.head[at]!;
+          this.head[at] = entry;
+        }
+      }
+    }
+  }
+
+  /**
+   * Finds every row whose listed tube may come within `reach` (m) of the segment a→b.
+   *
+   * @returns how many; they stand in `found`, each once, in an order that depends on the order of `add` alone
+   */
+  gather(ax: number, ay: number, az: number, bx: number, by: number, bz: number, reach: number): number {
+    const x0 = this.clampX(Math.min(ax, bx) - reach);
+    const x1 = this.clampX(Math.max(ax, bx) + reach);
+    const y0 = this.clampY(Math.min(ay, by) - reach);
+    const y1 = this.clampY(Math.max(ay, by) + reach);
+    const z0 = this.clampZ(Math.min(az, bz) - reach);
+    const z1 = this.clampZ(Math.max(az, bz) + reach);
+    const cells = (x1 - x0 + 1) * (y1 - y0 + 1) * (z1 - z0 + 1);
+    const thin = cells > FEW_CELLS && this.inside(ax, ay, az) && this.inside(bx, by, bz);
+    const near = this.nearSquared(reach);
+    const pass = ++this.pass;
+    let size = 0;
+    for (let z = z0; z <= z1; z++) {
+      const cz = this.minZ + (z + 0.5) * this.cell;
+      for (let y = y0; y <= y1; y++) {
+        const cy = this.minY + (y + 0.5) * this.cell;
+        for (let x = x0; x <= x1; x++) {
+          let entry = this.head[(z * this.ny + y) * this.nx + x]!;
+          if (entry < 0) continue;
+          if (thin) {
+            const cx = this.minX + (x + 0.5) * this.cell;
+            if (squaredDistanceToSegment(cx, cy, cz, ax, ay, az, bx, by, bz) > near) continue;
+          }
+          for (; entry >= 0; entry = this.next[entry]!) {
+            const row = this.item[entry]!;
+            if (this.seen[row] === pass) continue;
+            this.seen[row] = pass;
+            if (size === this.found.length) {
+              const wider = new Int32Array(2 * size);
+              wider.set(this.found);
+              this.found = wider;
+            }
+            this.found[size++] = row;
+          }
+        }
+      }
+    }
+    return size;
+  }
+
+  /** Whether a point is in the box: only there does a cell's centre stand for all that is filed in it. */
+  private inside(x: number, y: number, z: number): boolean {
+    const fx = (x - this.minX) / this.cell;
+    const fy = (y - this.minY) / this.cell;
+    const fz = (z - this.minZ) / this.cell;
+    return fx >= 0 && fx < this.nx && fy >= 0 && fy < this.ny && fz >= 0 && fz < this.nz;
+  }
+
+  private nearSquared(reach: number): number {
+    // Half a cell's diagonal, and a hair for rounding.
+    const near = reach + 0.8660255 * this.cell;
+    return near * near;
+  }
+
+  private clampX(x: number): number {
+    const i = Math.floor((x - this.minX) / this.cell);
+    return i < 0 ? 0 : i >= this.nx ? this.nx - 1 : i;
+  }
+
+  private clampY(y: number): number {
+    const i = Math.floor((y - this.minY) / this.cell);
+    return i < 0 ? 0 : i >= this.ny ? this.ny - 1 : i;
+  }
+
+  private clampZ(z: number): number {
+    const i = Math.floor((z - this.minZ) / this.cell);
+    return i < 0 ? 0 : i >= this.nz ? this.nz - 1 : i;
+  }
+
+  private widen(least: number): void {
+    const capacity = Math.max(2 * this.next.length, least);
+    const next = new Int32Array(capacity);
+    const item = new Int32Array(capacity);
+    next.set(this.next);
+    item.set(this.item);
+    this.next = next;
+    this.item = item;
+  }
+}

@@ -1,0 +1,194 @@
+import { InvariantError } from '../core/errors.ts';
+
+/** A row that an eviction has given back. */
+export const FREED = -2;
+
+/**
+ * Rooted binary trees that may still change: the one structure growth and refinement write.
+ *
+ * Columns as in `Forest`, but rows stand in any order, a node has at most two children, and radii follow from
+ * weights: r = inletRadius · (weight / weight of the tree's first vessel)^(1/exponent). Weights add up from the
+ * terminals like flows do, so one more terminal changes every radius of its tree without touching its rows.
+ */
+export class ForestBuilder {
+  /** Exponent γ of the junction law that ties weights to radii. */
+  readonly exponent: number;
+  /** Rows handed out so far, freed ones included. */
+  count = 0;
+  /** (capacity) parent row, −1 for a root, FREED for a row given back. */
+  parent: Int32Array;
+  /** (2 · capacity) child rows of row i at 2i and 2i + 1, −1 where there is none; a lone child is at 2i. */
+  child: Int32Array;
+  /** (capacity) tree index. */
+  tree: Int32Array;
+  /** (3 · capacity) m. */
+  position: Float64Array;
+  /** (capacity) sum of the flow shares of the terminals at and below the row. */
+  load: Float64Array;
+  /** (capacity) measure of r^γ; see above. */
+  weight: Float64Array;
+  /** Root rows by tree. */
+  readonly roots: number[] = [];
+  /** m; radius of the first vessel by tree. */
+  readonly inletRadius: number[] = [];
+  private readonly free: number[] = [];
+
+  constructor(exponent: number, capacity = 1024) {
+    this.exponent = exponent;
+    this.parent = new Int32Array(capacity);
+    this.child = new Int32Array(2 * capacity);
+    this.tree = new Int32Array(capacity);
+    this.position = new Float64Array(3 * capacity);
+    this.load = new Float64Array(capacity);
+    this.weight = new Float64Array(capacity);
+  }
+
+  get capacity(): number {
+    return this.parent.length;
+  }
+
+  /** Adds a root and gives its tree's index. */
+  addRoot(x: number, y: number, z: number, inletRadius: number): number {
+    const row = this.takeRow(x, y, z);
+    const tree = this.roots.length;
+    this.parent[row] = -1;
+    this.tree[row] = tree;
+    this.roots.push(row);
+    this.inletRadius.push(inletRadius);
+    return tree;
+  }
+
+  /** Adds a node below a row that has room for a child; its load and weight are zero until set. */
+  addChild(parent: number, x: number, y: number, z: number): number {
+    const row = this.takeRow(x, y, z);
+    this.parent[row] = parent;
+    this.tree[row] = this.tree[parent]!;
+    this.linkChild(parent, row);
+    return row;
+  }
+
+  /** Puts a new node on the tube that ends at a row; it carries what that tube carries. */
+  insertAbove(row: number, x: number, y: number, z: number): number {
+    const parent = this.parent[row]!;
+    const added = this.takeRow(x, y, z);
+    this.parent[added] = parent;
+    this.tree[added] = this.tree[row]!;
+    this.child[2 * added] = row;
+    this.load[added] = this.load[row]!;
+    this.weight[added] = this.weight[row]!;
+    this.replaceChild(parent, row, added);
+    this.parent[row] = added;
+    return added;
+  }
+
+  /** Takes a node with one child out: its child hangs on its parent. */
+  spliceOut(row: number): void {
+    const only = this.child[2 * row]!;
+    if (only < 0 || this.child[2 * row + 1]! >= 0) throw new InvariantError(`spliceOut: row ${row} has not one child`);
+    this.replaceChild(this.parent[row]!, row, only);
+    this.parent[only] = this.parent[row]!;
+    this.freeRow(row);
+  }
+
+  /** Takes a terminal off its parent. */
+  removeTerminal(row: number): void {
+    if (this.child[2 * row]! >= 0) throw new InvariantError(`removeTerminal: row ${row} has children`);
+    this.unlinkChild(this.parent[row]!, row);
+    this.freeRow(row);
+  }
+
+  linkChild(parent: number, row: number): void {
+    const at = 2 * parent;
+    if (this.child[at]! < 0) this.child[at] = row;
+    else if (this.child[at + 1]! < 0) this.child[at + 1] = row;
+    else throw new InvariantError(`linkChild: row ${parent} has two children already`);
+  }
+
+  unlinkChild(parent: number, row: number): void {
+    const at = 2 * parent;
+    if (this.child[at] === row) {
+      this.child[at] = this.child[at + 1]!;
+      this.child[at + 1] = -1;
+    } else if (this.child[at + 1] === row) this.child[at + 1] = -1;
+    else throw new InvariantError(`unlinkChild: row ${row} is no child of ${parent}`);
+  }
+
+  replaceChild(parent: number, old: number, row: number): void {
+    if (this.child[2 * parent] === old) this.child[2 * parent] = row;
+    else this.child[2 * parent + 1] = row;
+  }
+
+  freeRow(row: number): void {
+    this.parent[row] = FREED;
+    this.child[2 * row] = -1;
+    this.child[2 * row + 1] = -1;
+    this.free.push(row);
+  }
+
+  /** m; radius of the tube that ends at a row (of a root: of its first vessel). */
+  radius(row: number): number {
+    const tree = this.tree[row]!;
+    const first = this.child[2 * this.roots[tree]!]!;
+    const share = this.weight[row]! / this.weight[first]!;
+    const root = this.exponent === 3 ? Math.cbrt(share) : Math.exp(Math.log(share) / this.exponent);
+    return this.inletRadius[tree]! * root;
+  }
+
+  /** Number of children of a row: 0 terminal, 1 bend (or root), 2 junction. */
+  childCount(row: number): number {
+    return this.child[2 * row]! < 0 ? 0 : this.child[2 * row + 1]! < 0 ? 1 : 2;
+  }
+
+  /** Rows of a tree, parents before children, in a fixed order. Cost: O(rows). */
+  preorder(tree: number): Int32Array {
+    let rows = new Int32Array(1024);
+    let size = 0;
+    const stack = [this.roots[tree]!];
+    while (stack.length > 0) {
+      const row = stack.pop()!;
+      if (size === rows.length) {
+        const wider = new Int32Array(2 * size);
+        wider.set(rows);
+        rows = wider;
+      }
+      rows[size++] = row;
+      const a = this.child[2 * row]!;
+      const b = this.child[2 * row + 1]!;
+      if (b >= 0) stack.push(b);
+      if (a >= 0) stack.push(a);
+    }
+    return rows.slice(0, size);
+  }
+
+  private takeRow(x: number, y: number, z: number): number {
+    let row: number;
+    if (this.free.length > 0) row = this.free.pop()!;
+    else {
+      if (this.count === this.capacity) this.widen();
+      row = this.count++;
+    }
+    this.position[3 * row] = x;
+    this.position[3 * row + 1] = y;
+    this.position[3 * row + 2] = z;
+    this.child[2 * row] = -1;
+    this.child[2 * row + 1] = -1;
+    this.load[row] = 0;
+    this.weight[row] = 0;
+    return row;
+  }
+
+  private widen(): void {
+    const capacity = 2 * this.capacity;
+    this.parent = widened(this.parent, new Int32Array(capacity));
+    this.child = widened(this.child, new Int32Array(2 * capacity));
+    this.tree = widened(this.tree, new Int32Array(capacity));
+    this.position = widened(this.position, new Float64Array(3 * capacity));
+    this.load = widened(this.load, new Float64Array(capacity));
+    this.weight = widened(this.weight, new Float64Array(capacity));
+  }
+}
+
+function widened<T extends Int32Array | Float64Array>(old: T, next: T): T {
+  next.set(old);
+  return next;
+}
