@@ -66,6 +66,8 @@ export type RefineSpec = 'none' | 'quick' | 'thorough' | number;
 /** A spec with every default filled in, in SI. */
 export interface Spec {
   readonly name: string;
+  /** What the spec is for, one line. */
+  readonly purpose?: string;
   readonly seed: string;
   readonly tissue: Shape;
   /** Parts that vessels keep out of. */
