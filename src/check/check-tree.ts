@@ -1,0 +1,212 @@
+import type { TriangleSurface } from '../core/surface.ts';
+import type { Spec } from '../spec/types.ts';
+import type { TreeRecord } from '../tree/forest.ts';
+import { measureConservation, measureService } from './blood.ts';
+import { measureClearance } from './clearance.ts';
+import { measureContainment } from './containment.ts';
+import { measureTissue, missingSurfaces } from './depth.ts';
+import { measureField } from './field.ts';
+import { measureJunctions } from './junctions.ts';
+import { askedExponent, describeSizing, measureJunctionLaw, measureSizing, measureTerminalPressure } from './law.ts';
+import { type Recomputed, recomputeFlow } from './recompute.ts';
+import { type CheckResult, gatherResult, type PromiseResult, type Tally } from './result.ts';
+import { type ChildLists, linkChildren, measureExtent, measureLengths } from './rows.ts';
+import { inspectStructure, measureOrders } from './structure.ts';
+import { createTreeTallies, type TreeTallies } from './tree-tallies.ts';
+
+/** Figures that a report claims, as in `report.json`. */
+export interface ClaimedCost {
+  readonly pumping_W: number;
+  readonly maintenance_W: number;
+  readonly total_W: number;
+}
+
+export interface CheckTreeOptions {
+  /** Cost claimed by the run's report, to be compared with the recomputed one. */
+  readonly claimed?: ClaimedCost | null | undefined;
+  /** Findings listed a promise, ≥ 0; default 20. */
+  readonly cap?: number | undefined;
+}
+
+/**
+ * Recomputes every promise a tree makes, from the tree alone.
+ *
+ * @param record   any tree; nothing is assumed of it
+ * @param spec     what was asked for, or null: promises that need it are then said to be unchecked
+ * @param surfaces surfaces (m) that the spec's tissue names, by their `file`
+ * Lengths are compared with a slack of 1e-9 of the tissue's (or the tree's) size.
+ */
+export function checkTree(
+  record: TreeRecord,
+  spec: Spec | null,
+  surfaces: ReadonlyMap<string, TriangleSurface>,
+  options: CheckTreeOptions = {},
+): CheckResult {
+  const { forest } = record;
+  const cap = options.cap ?? 20;
+  const lacking =
+    spec === null ? [] : [spec.tissue, ...spec.forbidden].flatMap((shape) => missingSurfaces(shape, surfaces));
+  const tissue = spec === null || lacking.length > 0 ? null : measureTissue(spec.tissue, spec.forbidden, surfaces);
+  const size =
+    tissue === null
+      ? measureExtent(forest)
+      : Math.hypot(tissue.max[0] - tissue.min[0], tissue.max[1] - tissue.min[1], tissue.max[2] - tissue.min[2]);
+  const tallies = createTreeTallies(record, spec, size, cap);
+  const promises: PromiseResult[] = [];
+  const all = Object.values(tallies) as Tally[];
+
+  const length = measureLengths(forest);
+  const sound = inspectStructure(record, spec, length, tallies.structure);
+  promises.push(tallies.structure.close());
+  if (!sound) {
+    const rest = all.filter((tally) => tally !== tallies.structure);
+    promises.push(...rest.map((tally) => tally.skip('the rows are not a forest of trees')));
+    return gatherResult(promises, all, [], {});
+  }
+  const children = linkChildren(forest);
+  measureOrders(record, tallies.orders);
+  promises.push(tallies.orders.close());
+
+  if (tissue === null) {
+    promises.push(tallies.containment.skip(spec === null ? 'no spec' : `no surface given for ${lacking.join(', ')}`));
+  } else {
+    const stubs = findStubs(record, tissue.depth);
+    measureContainment(forest, tissue, stubs.exempt, tallies.containment);
+    promises.push(tallies.containment.close(`${stubs.note}slack 1e-9 of the tissue's size`));
+  }
+
+  // The first reach is about the distance between neighbours; it is only for naming the closest pair.
+  measureClearance(forest, spec?.clearance.gap ?? 0, size / Math.cbrt(forest.count), tallies.clearance);
+  promises.push(
+    tallies.clearance.close(
+      `${spec === null ? 'no spec, so no gap is asked; ' : ''}` +
+        (tallies.clearance.checked === 0 ? 'no pair comes near; ' : '') +
+        'counted are the pairs near enough to matter; slack 1e-9 of the size',
+    ),
+  );
+  measureJunctions(forest, children, length, tallies);
+  promises.push(tallies.separation.close(), tallies.angle.close(spec === null ? 'no spec, so no angle is asked' : ''));
+  promises.push(
+    tallies.length.close('room: the ball in which the vessels of a junction part; twice the radius at an end'),
+  );
+
+  const recomputed = recomputeFlow(record, spec, length);
+  checkLaw(record, spec, children, recomputed, tallies, promises);
+  checkBlood(record, spec, children, size, tallies, promises);
+
+  const warnings = recomputed === null ? [] : measureField(record, spec, recomputed, tallies, cap);
+  const fieldTallies = [tallies.pressure, tallies.viscosity, tallies.velocity, tallies.wallShear, tallies.transit];
+  for (const tally of fieldTallies) {
+    promises.push(record.field === null ? tally.skip('the file holds no flow solution') : tally.close());
+  }
+  promises.push(
+    record.field === null || spec === null
+      ? tallies.reynolds.skip(spec === null ? 'no spec, so no density' : 'the file holds no flow solution')
+      : tallies.reynolds.close(warnings.length > 0 ? `warning: above 2000 in ${warnings.length} or more vessels` : ''),
+  );
+  const figures = checkCost(spec, recomputed, options.claimed ?? null, tallies.cost, promises);
+  return gatherResult(promises, all, warnings, figures);
+}
+
+/** First vessels whose root lies no deeper than their radius: the stubs that lead in. */
+function findStubs(
+  record: TreeRecord,
+  depth: (x: number, y: number, z: number) => number,
+): { exempt: Uint8Array; note: string } {
+  const { count, treeStart, position, radius } = record.forest;
+  const exempt = new Uint8Array(count);
+  const trees: string[] = [];
+  for (let t = 0; t + 1 < treeStart.length; t++) {
+    const root = treeStart[t]!;
+    if (depth(position[3 * root]!, position[3 * root + 1]!, position[3 * root + 2]!) > radius[root]!) continue;
+    exempt[root + 1] = 1;
+    trees.push(record.names[t] ?? String(t));
+  }
+  return { exempt, note: trees.length === 0 ? '' : `exempt: the inlet stub of ${trees.join(', ')}; ` };
+}
+
+function checkLaw(
+  record: TreeRecord,
+  spec: Spec | null,
+  children: ChildLists,
+  recomputed: Recomputed | null,
+  tallies: TreeTallies,
+  promises: PromiseResult[],
+): void {
+  const { law, sizing, terminalPressure } = tallies;
+  if (spec === null || recomputed === null) {
+    promises.push(...[law, sizing, terminalPressure].map((tally) => tally.skip('no spec')));
+    return;
+  }
+  const exponent = askedExponent(spec);
+  measureJunctionLaw(record.forest, children, exponent, law);
+  promises.push(law.close(`exponent ${exponent}; bends keep their radius`));
+  if (spec.sizing.rule === 'pressure-matched') {
+    promises.push(sizing.skip('the rule is the terminal pressure'));
+    measureTerminalPressure(record.forest, children, spec, recomputed, terminalPressure);
+    promises.push(terminalPressure.close());
+    return;
+  }
+  measureSizing(record.forest, children, spec, recomputed, sizing);
+  const rule = describeSizing(spec);
+  promises.push(sizing.close(rule), terminalPressure.skip('the sizing rule asks for none'));
+}
+
+function checkBlood(
+  record: TreeRecord,
+  spec: Spec | null,
+  children: ChildLists,
+  size: number,
+  tallies: TreeTallies,
+  promises: PromiseResult[],
+): void {
+  measureConservation(record, children, tallies.conservation);
+  promises.push(tallies.conservation.close());
+  const service = [tallies.inlet, tallies.shares, tallies.terminals];
+  if (spec === null) {
+    promises.push(...service.map((tally) => tally.skip('no spec')));
+    return;
+  }
+  const trees = Math.min(record.forest.treeStart.length - 1, spec.trees.length);
+  for (let t = 0; t < trees; t++) measureService(record, children, t, spec.trees[t]!, size, tallies);
+  promises.push(...service.map((tally) => tally.close()));
+}
+
+function checkCost(
+  spec: Spec | null,
+  recomputed: Recomputed | null,
+  claimed: ClaimedCost | null,
+  tally: Tally,
+  promises: PromiseResult[],
+): Record<string, number> {
+  if (recomputed === null) {
+    promises.push(tally.skip('neither spec nor file says the viscosity'));
+    return {};
+  }
+  const figures: Record<string, number> = {
+    pumping_W: recomputed.pumping,
+    volume_m3: recomputed.volume,
+    drop_Pa: recomputed.drop,
+  };
+  if (spec === null) {
+    promises.push(tally.skip('no spec, so no maintenance power'));
+    return figures;
+  }
+  const maintenance = spec.blood.maintenance * recomputed.volume;
+  figures.maintenance_W = maintenance;
+  figures.total_W = recomputed.pumping + maintenance;
+  if (claimed === null) {
+    promises.push(tally.skip('no report to compare with'));
+    return figures;
+  }
+  for (const key of ['pumping_W', 'maintenance_W', 'total_W'] as const) {
+    const wanted = figures[key]!;
+    const off = Math.abs(claimed[key] - wanted) / wanted;
+    tally.checked++;
+    if (!(off <= tally.head.limit)) {
+      tally.fail(key, -1, off, tally.head.limit, `${key}: the report says ${claimed[key]}, recomputed ${wanted}`);
+    } else if (!(off <= tally.worst)) tally.worst = off;
+  }
+  promises.push(tally.close());
+  return figures;
+}
