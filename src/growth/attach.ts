@@ -1,7 +1,7 @@
 import { squaredDistanceToSegment } from '../core/segments.ts';
 import { fermatPoint } from '../physics/fermat.ts';
-import type { Room } from '../room/room.ts';
 import { FIT_MARGIN, RUN_OUT, separationReach } from '../room/reach.ts';
+import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 
 /** What growth asks of an attachment search. */
@@ -63,8 +63,7 @@ export class Attacher {
         this.potential[row] = 0;
         continue;
       }
-      this.potential[row] =
-        this.potential[parent]! + (2 / 3) * (this.lengthOf(row) / Math.cbrt(builder.load[row]!));
+      this.potential[row] = this.potential[parent]! + (2 / 3) * (this.lengthOf(row) / Math.cbrt(builder.load[row]!));
     }
   }
 
@@ -100,16 +99,23 @@ export class Attacher {
     const p = builder.position;
     let reach = 0.8 * room.cell;
     let found = 0;
-    const stub = builder.roots[tree]!;
     for (let round = 0; round < 40; round++) {
       const near = room.near(x, y, z, reach);
       found = 0;
       for (let k = 0; k < near; k++) {
         const row = room.foundRow(k);
         const parent = builder.parent[row]!;
-        if (parent < 0 || builder.tree[row] !== tree || (parent === stub && room.exempt.has(row))) continue;
+        if (parent < 0 || builder.tree[row] !== tree || room.pinned.has(row)) continue;
         const reached = squaredDistanceToSegment(
-          x, y, z, p[3 * parent]!, p[3 * parent + 1]!, p[3 * parent + 2]!, p[3 * row]!, p[3 * row + 1]!, p[3 * row + 2]!,
+          x,
+          y,
+          z,
+          p[3 * parent]!,
+          p[3 * parent + 1]!,
+          p[3 * parent + 2]!,
+          p[3 * row]!,
+          p[3 * row + 1]!,
+          p[3 * row + 2]!,
         );
         if (reached > reach * reach) continue;
         if (found === this.candidate.length) this.widenCandidates();
@@ -198,15 +204,29 @@ export class Attacher {
 
   /** Moves a junction off its three neighbours until each tube is as long as its balls ask, and keeps it if it can be. */
   private pushTry(
-    count: number, row: number, jx: number, jy: number, jz: number, x: number, y: number, z: number, share: number,
+    count: number,
+    row: number,
+    jx: number,
+    jy: number,
+    jz: number,
+    x: number,
+    y: number,
+    z: number,
+    share: number,
   ): number {
     const { builder, room } = this;
     const p = builder.position;
     const parent = builder.parent[row]!;
     const load = builder.load[row]!;
     const grown = builder.radius(row);
-    const above = builder.exponent === 3 ? grown * Math.cbrt((load + share) / load) : grown * Math.exp(Math.log((load + share) / load) / builder.exponent);
-    const own = builder.exponent === 3 ? grown * Math.cbrt(share / load) : grown * Math.exp(Math.log(share / load) / builder.exponent);
+    const above =
+      builder.exponent === 3
+        ? grown * Math.cbrt((load + share) / load)
+        : grown * Math.exp(Math.log((load + share) / load) / builder.exponent);
+    const own =
+      builder.exponent === 3
+        ? grown * Math.cbrt(share / load)
+        : grown * Math.exp(Math.log(share / load) / builder.exponent);
     const ballA = Math.max(room.ballOf(parent), above);
     const ballB = builder.child[2 * row]! < 0 ? RUN_OUT * grown : Math.max(room.ballOf(row), grown);
     const ballS = RUN_OUT * own;
@@ -231,9 +251,15 @@ export class Attacher {
         jz += 0.1 * (az + bz + sz);
         continue;
       }
-      ax /= a; ay /= a; az /= a;
-      bx /= b; by /= b; bz /= b;
-      sx /= c; sy /= c; sz /= c;
+      ax /= a;
+      ay /= a;
+      az /= a;
+      bx /= b;
+      by /= b;
+      bz /= b;
+      sx /= c;
+      sy /= c;
+      sz /= c;
       const ab = ax * bx + ay * by + az * bz;
       const as = ax * sx + ay * sy + az * sz;
       const bs = bx * sx + by * sy + bz * sz;
@@ -266,7 +292,14 @@ export class Attacher {
 
   /** Makes the change, looks whether everything it touches still fits, and takes it back if not. */
   private tryAt(
-    row: number, jx: number, jy: number, jz: number, x: number, y: number, z: number, share: number,
+    row: number,
+    jx: number,
+    jy: number,
+    jz: number,
+    x: number,
+    y: number,
+    z: number,
+    share: number,
   ): number {
     const { builder, room } = this;
     this.tally.tried++;
@@ -306,7 +339,8 @@ export class Attacher {
     room.move(row);
     // Cheap questions first.
     if (!(room.fits(junction) && room.fits(parent) && room.fits(row))) return false;
-    if (!(room.certify(site, headroom) && room.certify(junction, headroom) && room.certify(row, headroom))) return false;
+    if (!(room.certify(site, headroom) && room.certify(junction, headroom) && room.certify(row, headroom)))
+      return false;
     let above = parent;
     let raised = 0;
     while (builder.parent[above]! >= 0) {
@@ -379,7 +413,11 @@ export class Attacher {
     const { builder } = this;
     const p = builder.position;
     const parent = builder.parent[row]!;
-    return span(p[3 * row]! - p[3 * parent]!, p[3 * row + 1]! - p[3 * parent + 1]!, p[3 * row + 2]! - p[3 * parent + 2]!);
+    return span(
+      p[3 * row]! - p[3 * parent]!,
+      p[3 * row + 1]! - p[3 * parent + 1]!,
+      p[3 * row + 2]! - p[3 * parent + 2]!,
+    );
   }
 
   private follow(): void {

@@ -1,8 +1,8 @@
 import { squaredDistanceBetweenSegments } from '../core/segments.ts';
 import { TubeGrid } from '../core/tube-grid.ts';
-import { FREED, type ForestBuilder } from '../tree/builder.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { tubeInside } from '../tissue/tube.ts';
+import { type ForestBuilder, FREED } from '../tree/builder.ts';
 import { FIT_MARGIN, RUN_OUT, separationReach } from './reach.ts';
 
 export interface RoomLimits {
@@ -35,7 +35,9 @@ export class Room {
   /** Why the last certification failed, and the vessel that was in the way (−1 if none). */
   refusal: Refusal = 'none';
   blocker = -1;
-  /** (trees) first vessels that lead in from the boundary and need not lie in the tissue. */
+  /** Stubs: first vessels whose place and direction the inlet sets. */
+  readonly pinned = new Set<number>();
+  /** Those of them that lead in from the boundary and need not lie in the tissue. */
   readonly exempt = new Set<number>();
   private reserve: Float64Array;
   private listed: Float64Array;
@@ -46,6 +48,8 @@ export class Room {
   private fresh: number[] = [];
   private grid: TubeGrid;
   private readonly floor: number;
+  /** Radii are asked of the tissue this much wider: `tubeInside` may be off by a thousandth where it marches. */
+  private readonly wall: number;
   /** m; longest edge of the tissue's box. */
   readonly span: number;
 
@@ -58,12 +62,9 @@ export class Room {
     this.listed = new Float64Array(n);
     this.pending = new Float64Array(n);
     this.stamp = new Int32Array(n);
+    this.wall = tissue.convex ? 1 + 1e-9 : 1.002;
     this.grid = new TubeGrid(tissue.min, tissue.max, cell);
-    this.span = Math.max(
-      tissue.max[0] - tissue.min[0],
-      tissue.max[1] - tissue.min[1],
-      tissue.max[2] - tissue.min[2],
-    );
+    this.span = Math.max(tissue.max[0] - tissue.min[0], tissue.max[1] - tissue.min[1], tissue.max[2] - tissue.min[2]);
     // Rounding must not eat the gap: judges measure in another order.
     this.floor = 1e-12 * this.span;
   }
@@ -141,7 +142,8 @@ export class Room {
   settle(): void {
     this.follow();
     const { builder } = this;
-    for (let row = 0; row < builder.count; row++) if (builder.parent[row]! >= 0) this.reserve[row] = builder.radius(row);
+    for (let row = 0; row < builder.count; row++)
+      if (builder.parent[row]! >= 0) this.reserve[row] = builder.radius(row);
   }
 
   /**
@@ -160,9 +162,10 @@ export class Room {
     const bz = p[3 * row + 2]!;
     const least = builder.radius(row);
     let granted = least * headroom;
-    if (!this.exempt.has(row) && !tubeInside(this.tissue, ax, ay, az, bx, by, bz, granted)) {
-      if (headroom > 1 && !tubeInside(this.tissue, ax, ay, az, bx, by, bz, least)) return this.refuse('tissue', -1);
-      if (headroom <= 1) return this.refuse('tissue', -1);
+    if (!this.exempt.has(row) && !tubeInside(this.tissue, ax, ay, az, bx, by, bz, this.wall * granted)) {
+      if (headroom <= 1 || !tubeInside(this.tissue, ax, ay, az, bx, by, bz, this.wall * least)) {
+        return this.refuse('tissue', -1);
+      }
       granted = least;
     }
     const gap = this.limits.gap + this.floor;
@@ -174,8 +177,18 @@ export class Room {
       if (top < 0 || other === row || top === parent || top === row || other === parent) continue;
       const distance = Math.sqrt(
         squaredDistanceBetweenSegments(
-          ax, ay, az, bx, by, bz,
-          p[3 * top]!, p[3 * top + 1]!, p[3 * top + 2]!, p[3 * other]!, p[3 * other + 1]!, p[3 * other + 2]!,
+          ax,
+          ay,
+          az,
+          bx,
+          by,
+          bz,
+          p[3 * top]!,
+          p[3 * top + 1]!,
+          p[3 * top + 2]!,
+          p[3 * other]!,
+          p[3 * other + 1]!,
+          p[3 * other + 2]!,
         ),
       );
       const room = distance - gap;
@@ -268,7 +281,6 @@ export class Room {
     return true;
   }
 
-
   private longEnough(from: number, to: number, balls: number): boolean {
     const p = this.builder.position;
     const dx = p[3 * to]! - p[3 * from]!;
@@ -328,7 +340,12 @@ export class Room {
     this.listed[row] = radius;
     this.grid.add(
       row,
-      p[3 * parent]!, p[3 * parent + 1]!, p[3 * parent + 2]!, p[3 * row]!, p[3 * row + 1]!, p[3 * row + 2]!,
+      p[3 * parent]!,
+      p[3 * parent + 1]!,
+      p[3 * parent + 2]!,
+      p[3 * row]!,
+      p[3 * row + 1]!,
+      p[3 * row + 2]!,
       radius,
     );
   }

@@ -1,0 +1,136 @@
+import type { TerminalsSpec } from '../spec/types.ts';
+
+/** A stream of well-spread points, as the tissue gives it. */
+export interface SiteStream {
+  /** Moves to the next site of at least a depth (m); false when the tissue is full. */
+  next(minDepth: number): boolean;
+  readonly x: number;
+  readonly y: number;
+  readonly z: number;
+}
+
+/** Tries a site gets before it counts as unreachable. */
+const MOST_TRIES = 6;
+/** Growth of the tree, as a factor, between two tries of one site: by then its surroundings have changed. */
+const WAIT = 1.3;
+/** Places tried for each terminal asked for by count, before there is held to be no room. */
+const MOST_PLACES = 12;
+
+/**
+ * What one tree still has to serve: which site next, which sites came back, how many are wanted.
+ *
+ * Sites are rows of a growing table, so that a terminal's row can point at its site and an evicted terminal's site can
+ * be tried anew.
+ */
+export class Demand {
+  /** Terminals wanted. */
+  readonly wanted: number;
+  /** Terminals served. */
+  served = 0;
+  /** Site in hand after `next`. */
+  site = -1;
+  private readonly by: TerminalsSpec['by'];
+  private readonly stream: SiteStream | null;
+  private readonly minDepth: number;
+  private readonly waiting: number[] = [];
+  private due: number[] = [];
+  private tries: number[] = [];
+  private x: number[] = [];
+  private y: number[] = [];
+  private z: number[] = [];
+  private shares: number[] = [];
+  private fresh = 0;
+  private places = 0;
+
+  /**
+   * @param stream   for `count`: where sites come from; the others have their list
+   * @param list     (3k) m, for `spacing` and `points`, in the order to be tried
+   * @param share    (k) flow share of each listed site; 1 where null
+   * @param minDepth m, asked of streamed sites
+   */
+  constructor(
+    by: TerminalsSpec['by'],
+    wanted: number,
+    stream: SiteStream | null,
+    list: ArrayLike<number> | null,
+    share: readonly number[] | null,
+    minDepth: number,
+  ) {
+    this.by = by;
+    this.wanted = wanted;
+    this.stream = stream;
+    this.minDepth = minDepth;
+    if (list !== null) {
+      for (let k = 0; k < list.length / 3; k++) {
+        this.addSite(list[3 * k]!, list[3 * k + 1]!, list[3 * k + 2]!, share === null ? 1 : share[k]!);
+      }
+    }
+  }
+
+  /** Takes the next site in hand; false when nothing is left that is worth a try. */
+  next(): boolean {
+    if (this.served >= this.wanted) return false;
+    // A site that came back is tried again once the tree has grown; the oldest first.
+    if (this.waiting.length > 0 && this.served >= this.due[this.waiting[0]!]!) return this.take(this.waiting.shift()!);
+    if (this.stream === null) {
+      if (this.fresh < this.x.length) return this.take(this.fresh++);
+    } else if (this.places < MOST_PLACES * this.wanted + 1000 && this.stream.next(this.minDepth)) {
+      this.places++;
+      return this.take(this.addSite(this.stream.x, this.stream.y, this.stream.z, 1));
+    }
+    if (this.waiting.length > 0) return this.take(this.waiting.shift()!);
+    return false;
+  }
+
+  /** Gives the site in hand, or an evicted one, back to be tried later. */
+  giveBack(site: number, evicted: boolean): void {
+    if (evicted) this.served--;
+    const tries = this.tries[site]! + (evicted ? 0 : 1);
+    this.tries[site] = tries;
+    // By count one place is as good as another: a failed one is tried only once more.
+    if (tries >= (this.by === 'count' ? 2 : MOST_TRIES)) return;
+    this.due[site] = evicted ? this.served : Math.ceil(this.served * WAIT) + 1;
+    this.waiting.push(site);
+  }
+
+  /** Forgets how often sites were tried, for another round. */
+  forgive(): void {
+    this.tries.fill(0);
+    this.places = 0;
+  }
+
+  siteX(site: number): number {
+    return this.x[site]!;
+  }
+
+  siteY(site: number): number {
+    return this.y[site]!;
+  }
+
+  siteZ(site: number): number {
+    return this.z[site]!;
+  }
+
+  siteShare(site: number): number {
+    return this.shares[site]!;
+  }
+
+  get siteCount(): number {
+    return this.x.length;
+  }
+
+  private take(site: number): true {
+    this.site = site;
+    return true;
+  }
+
+  private addSite(x: number, y: number, z: number, share: number): number {
+    this.x.push(x);
+    this.y.push(y);
+    this.z.push(z);
+    this.shares.push(share);
+    this.tries.push(0);
+    this.due.push(0);
+    return this.x.length - 1;
+  }
+}

@@ -1,0 +1,114 @@
+import type { Watch } from '../core/progress.ts';
+import { randomStream } from '../core/random.ts';
+import { rootOf } from '../physics/junction.ts';
+import { fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
+import type { Spec, TreeSpec } from '../spec/types.ts';
+import { createSites, spacedSites } from '../tissue/sites.ts';
+import type { Tissue } from '../tissue/tissue.ts';
+import { Demand } from './demand.ts';
+import { firstGuess, Grower, type Stopped } from './grower.ts';
+import { farthestFirst } from './point-order.ts';
+
+/** Terminals of the small tree that is grown first where radii depend on the tree's lengths. */
+const REHEARSAL = 200;
+/** First vessels are planted this much wider than foreseen, so that a longer tree still fits its stub. */
+const SPARE = 1.06;
+/** Times a tree is grown anew because its first vessel came out wider than planted. */
+const RESTARTS = 6;
+
+export interface Growth {
+  readonly grower: Grower;
+  readonly stopped: Stopped;
+}
+
+/**
+ * Grows the spec's trees in a tissue, all promises held at every step, and finishes them with final radii.
+ *
+ * @param salt  0 for the spec's own tree; other numbers give other trees of the same spec (order of explicit points)
+ * @param first sites of each tree to be tried before others, by index (explicit points that an earlier try left out)
+ * @throws InputError where an inlet or the tissue leaves no room for even one terminal
+ */
+export function growForest(
+  spec: Spec,
+  tissue: Tissue,
+  watch: Watch = {},
+  salt = 0,
+  first: readonly (readonly number[])[] = [],
+): Growth {
+  const unknown = spec.trees.map((tree) => Number.isNaN(fixedInletRadius(spec, tree, 1)));
+  let guess: number[] | null = null;
+  if (unknown.includes(true)) guess = rehearse(spec, tissue, unknown, salt);
+  for (let attempt = 0; ; attempt++) {
+    const demands = spec.trees.map((tree, t) => demandOf(spec, tree, t, tissue, guess, salt, first[t] ?? [], Infinity));
+    const grower = new Grower(spec, tissue, demands, guess, watch);
+    let stopped = grower.grow();
+    if (stopped !== 'cancelled') stopped = grower.finish();
+    if (stopped === 'cancelled' || guess === null || attempt >= RESTARTS) return { grower, stopped };
+    const tight = grower.builder.inletRadius.map((radius, t) => unknown[t]! && radius > grower.planted[t]!);
+    if (!tight.includes(true) && stopped === 'complete') return { grower, stopped };
+    if (!tight.includes(true) && grower.misfits().length === 0) return { grower, stopped };
+    guess = guess.map((radius, t) =>
+      tight[t] ? 1.04 * Math.max(grower.builder.inletRadius[t]!, 1.1 * radius) : radius,
+    );
+  }
+}
+
+/** Grows small trees to foresee the first vessels' radii. */
+function rehearse(spec: Spec, tissue: Tissue, unknown: readonly boolean[], salt: number): number[] {
+  let guess = spec.trees.map((_, t) => (unknown[t] ? 1.6 * firstGuess(spec, t, tissue) : Number.NaN));
+  for (let attempt = 0; ; attempt++) {
+    const demands = spec.trees.map((tree, t) => demandOf(spec, tree, t, tissue, guess, salt, [], REHEARSAL));
+    const grower = new Grower(spec, tissue, demands, guess);
+    grower.grow();
+    const radii = grower.foresee(spec.trees.map((tree, t) => wantedBy(tree, demands[t]!)));
+    const tight = radii.map((_, t) => unknown[t]! && grower.builder.inletRadius[t]! > grower.planted[t]!);
+    if (!tight.includes(true) || attempt >= RESTARTS) {
+      return radii.map((radius, t) => (unknown[t] ? SPARE * radius : Number.NaN));
+    }
+    guess = guess.map((radius, t) => (tight[t] ? 1.4 * radius : radius));
+  }
+}
+
+function wantedBy(tree: TreeSpec, demand: Demand): number {
+  return tree.terminals.by === 'count' ? tree.terminals.count : Math.max(demand.siteCount, demand.wanted);
+}
+
+/**
+ * What one tree has to serve.
+ *
+ * @param most for a rehearsal: at most so many terminals
+ */
+function demandOf(
+  spec: Spec,
+  tree: TreeSpec,
+  index: number,
+  tissue: Tissue,
+  guess: readonly number[] | null,
+  salt: number,
+  first: readonly number[],
+  most: number,
+): Demand {
+  const { terminals } = tree;
+  const random = randomStream(spec.seed, `sites ${index}`);
+  const exponent = junctionExponent(spec);
+  const radiusOf = (count: number) => {
+    const fixed = fixedInletRadius(spec, tree, count);
+    return (Number.isNaN(fixed) ? guess![index]! : fixed) / rootOf(count, exponent);
+  };
+  if (terminals.by === 'count') {
+    const wanted = Math.min(terminals.count, most);
+    return new Demand('count', wanted, createSites(tissue, random), null, null, 1.05 * radiusOf(terminals.count));
+  }
+  if (terminals.by === 'spacing') {
+    const count = Math.max(1, tissue.volume / (terminals.spacing * terminals.spacing * terminals.spacing));
+    const sites = spacedSites(tissue, random, terminals.spacing, 1.05 * radiusOf(count));
+    return new Demand('spacing', Math.min(sites.length / 3, most), null, sites, null, 0);
+  }
+  const order = farthestFirst(tree, salt === 0 ? null : randomStream(spec.seed, `points ${index} ${salt}`), first);
+  const list = new Float64Array(3 * order.length);
+  const share = order.map((k) => terminals.share[k]!);
+  order.forEach((k, i) => {
+    list.set(terminals.points[k]!, 3 * i);
+  });
+  return new Demand('points', Math.min(order.length, most), null, list, share, 0);
+}

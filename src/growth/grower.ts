@@ -1,0 +1,326 @@
+import { inputError } from '../core/errors.ts';
+import type { Watch } from '../core/progress.ts';
+import { Room } from '../room/room.ts';
+import { askedDrop, fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
+import type { Spec } from '../spec/types.ts';
+import type { Tissue } from '../tissue/tissue.ts';
+import { ForestBuilder } from '../tree/builder.ts';
+import { Attacher } from './attach.ts';
+import type { Demand } from './demand.ts';
+import { evict } from './evict.ts';
+import { Resizer } from './resize.ts';
+import { hangFirst, plant, type Seedling } from './seedling.ts';
+
+/** Growth of the whole forest between two refreshes of potentials and sizes. */
+const REFRESH = 1.15;
+/** Edge of a grid cell over the spacing of terminals. */
+const CELL = 0.9;
+/** Radius certified over radius needed. */
+const HEADROOM = 1.03;
+/** Rounds of sizing, evicting and growing again before what is left is dropped. */
+const ROUNDS = 24;
+
+interface GrowingTree {
+  readonly seedling: Seedling;
+  readonly demand: Demand;
+  readonly resizer: Resizer;
+  /** True where radii depend on the tree's lengths. */
+  readonly resized: boolean;
+  /** Set when no site is left that could be served. */
+  full: boolean;
+}
+
+export type Stopped = 'complete' | 'no-room' | 'cancelled';
+
+/**
+ * Grows all trees of a spec into one tissue, terminal by terminal, each step feasible; see DEVELOPERS.md, "Growth".
+ *
+ * The forest can be taken at any time from `builder`; `finish` makes it final.
+ */
+export class Grower {
+  readonly builder: ForestBuilder;
+  readonly room: Room;
+  readonly trees: GrowingTree[] = [];
+  /** (trees) m; first vessels' radii for which stubs were made. */
+  readonly planted: number[] = [];
+  private readonly attacher: Attacher;
+  private readonly tissue: Tissue;
+  private readonly watch: Watch;
+  private readonly wanted: number;
+  /** (rows) site of a terminal's row in its tree's demand; −1 elsewhere. */
+  private siteOf = new Int32Array(1024).fill(-1);
+  private nextRefresh = 2;
+  private nextGrid = 8;
+
+  /**
+   * @param demands one a tree of the spec, in its order
+   * @param inletGuess (trees) m; first vessels' radii to plant with where they depend on the tree, NaN: not known yet
+   * @throws InputError where an inlet cannot be planted
+   */
+  constructor(
+    spec: Spec,
+    tissue: Tissue,
+    demands: readonly Demand[],
+    inletGuess: readonly number[] | null,
+    watch: Watch = {},
+  ) {
+    this.tissue = tissue;
+    this.watch = watch;
+    this.wanted = demands.reduce((sum, demand) => sum + demand.wanted, 0);
+    const builder = new ForestBuilder(junctionExponent(spec), Math.max(64, Math.min(4 * this.wanted, 1 << 20)));
+    this.builder = builder;
+    const limits = {
+      gap: spec.clearance.gap,
+      cosMinAngle: Math.cos(1.001 * spec.junctions.minAngle),
+      cosMinBend: 0,
+    };
+    const room = new Room(builder, tissue, limits, Math.cbrt(tissue.volume / 8));
+    this.room = room;
+    for (let t = 0; t < spec.trees.length; t++) {
+      const tree = spec.trees[t]!;
+      const demand = demands[t]!;
+      const fixed = fixedInletRadius(spec, tree, demand.wanted);
+      const resized = Number.isNaN(fixed);
+      const radius = resized ? (inletGuess?.[t] ?? 1.6 * firstGuess(spec, t, tissue)) : fixed;
+      this.planted.push(radius);
+      const seedling = plant(builder, room, tree, `trees[${t}]`, radius);
+      this.trees.push({ seedling, demand, resizer: new Resizer(spec, tree, demand.wanted), resized, full: false });
+    }
+    this.attacher = new Attacher(
+      builder,
+      room,
+      { first: 16, second: 64, headroom: HEADROOM },
+      (row, along, length, share) =>
+        this.trees[builder.tree[row]!]!.resizer.terminalWeight(builder, row, along, length, share),
+    );
+  }
+
+  /** m; first vessels' radii foreseen for trees of so many terminals. */
+  foresee(wanted: readonly number[]): number[] {
+    return this.trees.map((tree, t) =>
+      tree.resized ? tree.resizer.foreseenFor(wanted[t]!) : this.builder.inletRadius[t]!,
+    );
+  }
+
+  get served(): number {
+    return this.trees.reduce((sum, tree) => sum + tree.demand.served, 0);
+  }
+
+  /** Serves what is wanted, as far as there is room. */
+  grow(stage = 'growth'): Stopped {
+    let steps = 0;
+    while (true) {
+      const tree = this.hungriest();
+      if (tree < 0) break;
+      this.step(tree);
+      if ((++steps & 63) === 0) {
+        if (this.watch.signal?.aborted) return 'cancelled';
+        if ((steps & 255) === 0) this.watch.onProgress?.({ stage, done: this.served, total: this.wanted });
+      }
+    }
+    for (const tree of this.trees) {
+      if (tree.demand.served === 0) {
+        const t = this.trees.indexOf(tree);
+        throw inputError(
+          'tissue-too-small',
+          `trees[${t}]`,
+          `got no terminal that a first vessel of radius ${Number((this.builder.inletRadius[t]! * 1e6).toPrecision(4))} µm can reach, expected tissue with room for it`,
+        );
+      }
+    }
+    return this.served === this.wanted ? 'complete' : 'no-room';
+  }
+
+  /**
+   * Gives radii their final values and mends what that breaks: vessels that no longer fit are evicted and grown anew,
+   * until a sizing breaks nothing; in the last round what does not fit is dropped for good.
+   */
+  finish(): Stopped {
+    for (let round = 0; ; round++) {
+      if (this.watch.signal?.aborted) return 'cancelled';
+      let evicted = 0;
+      for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.resized) this.resize(t, true);
+      evicted += this.settleAll(round < ROUNDS);
+      if (evicted === 0 && this.trees.every((tree) => tree.full || tree.demand.served >= tree.demand.wanted)) break;
+      if (round < ROUNDS) {
+        if (round < ROUNDS / 2) {
+          for (const tree of this.trees) {
+            tree.full = false;
+            tree.demand.forgive();
+          }
+        }
+        if (this.grow('proof') === 'cancelled') return 'cancelled';
+        if (evicted === 0 && !this.trees.some((tree) => tree.resized)) break;
+      } else if (evicted === 0) break;
+    }
+    return this.served === this.wanted ? 'complete' : 'no-room';
+  }
+
+  /** Vessels that do not fit with their present radii, which only a stub can still be once `finish` is through. */
+  misfits(): number[] {
+    const rows: number[] = [];
+    for (let row = 0; row < this.builder.count; row++) {
+      if (this.builder.parent[row]! >= 0 && this.room.outgrown(row) && !this.settle(row)) rows.push(row);
+    }
+    return rows;
+  }
+
+  /** Site of a terminal's row in its tree's demand. */
+  siteOfRow(row: number): number {
+    return this.siteOf[row]!;
+  }
+
+  /** Index of the tree that has served the least part of its demand, or −1 when all are full or served. */
+  private hungriest(): number {
+    let best = -1;
+    let least = Infinity;
+    for (let t = 0; t < this.trees.length; t++) {
+      const { demand, full } = this.trees[t]!;
+      if (full || demand.served >= demand.wanted) continue;
+      const part = demand.served / demand.wanted;
+      if (part < least) {
+        least = part;
+        best = t;
+      }
+    }
+    return best;
+  }
+
+  private step(t: number): void {
+    const tree = this.trees[t]!;
+    const { demand } = tree;
+    if (!demand.next()) {
+      tree.full = true;
+      return;
+    }
+    const site = demand.site;
+    const x = demand.siteX(site);
+    const y = demand.siteY(site);
+    const z = demand.siteZ(site);
+    const share = demand.siteShare(site);
+    const first = demand.served === 0;
+    const row = first
+      ? hangFirst(this.builder, this.room, tree.seedling, x, y, z, share)
+      : this.attacher.attach(t, x, y, z, share);
+    if (row < 0) {
+      demand.giveBack(site, false);
+      return;
+    }
+    demand.served++;
+    this.keepSite(row, site);
+    if (!first) {
+      const junction = this.builder.parent[row]!;
+      const a = this.builder.child[2 * junction]!;
+      tree.resizer.extend(this.builder, junction, row, a === row ? this.builder.child[2 * junction + 1]! : a);
+    }
+    if (first) this.attacher.refreshPotential(this.builder.preorder(t));
+    if (this.served >= this.nextRefresh) this.refresh();
+  }
+
+  private refresh(): void {
+    const served = this.served;
+    this.nextRefresh = Math.max(served + 1, Math.ceil(served * REFRESH));
+    if (served >= this.nextGrid) {
+      this.nextGrid = 2 * served;
+      this.room.rebuild(CELL * Math.cbrt(this.tissue.volume / served));
+    }
+    let changed = false;
+    for (let t = 0; t < this.trees.length; t++) {
+      if (this.trees[t]!.demand.served === 0) continue;
+      if (this.trees[t]!.resized) {
+        this.resize(t, false);
+        changed = true;
+      }
+    }
+    if (changed) this.settleAll(true);
+    for (let t = 0; t < this.trees.length; t++) {
+      if (this.trees[t]!.demand.served > 0) this.attacher.refreshPotential(this.builder.preorder(t));
+    }
+  }
+
+  private resize(t: number, final: boolean): void {
+    const { resizer, demand } = this.trees[t]!;
+    resizer.resize(this.builder, this.builder.preorder(t), t, demand.served, final);
+  }
+
+  /**
+   * Certifies every vessel that has outgrown its reserve and evicts what does not fit.
+   *
+   * @param again whether evicted sites are to be tried again
+   * @returns number of terminals evicted
+   */
+  private settleAll(again: boolean): number {
+    let evicted = 0;
+    for (let t = 0; t < this.trees.length; t++) {
+      if (this.trees[t]!.demand.served === 0) continue;
+      const order = this.builder.preorder(t);
+      for (let k = 1; k < order.length; k++) {
+        const row = order[k]!;
+        // An eviction further up may have taken the row, or given it to another place.
+        for (let tries = 0; tries < 8 && this.builder.parent[row]! >= 0 && this.room.outgrown(row); tries++) {
+          if (this.settle(row)) break;
+          const gone = this.evictFor(row, again);
+          if (gone === 0) break;
+          evicted += gone;
+        }
+      }
+    }
+    return evicted;
+  }
+
+  private settle(row: number): boolean {
+    const { room, builder } = this;
+    room.begin();
+    if (!room.certify(row, HEADROOM)) return false;
+    if (!room.fits(row) || !room.fits(builder.parent[row]!)) return false;
+    room.commit();
+    return true;
+  }
+
+  /** Evicts the smaller of the vessels that a refused row stands against. */
+  private evictFor(row: number, again: boolean): number {
+    const { room, builder } = this;
+    let victim = row;
+    const { blocker } = room;
+    if (room.refusal === 'vessel') {
+      if (builder.load[blocker]! < builder.load[row]!) victim = blocker;
+    } else if (room.refusal === 'junction') {
+      // The node's tubes are too close together: its lesser child goes; at a bend or a terminal what ends there.
+      const a = builder.child[2 * blocker]!;
+      const b = builder.child[2 * blocker + 1]!;
+      victim = b >= 0 ? (builder.load[a]! <= builder.load[b]! ? a : b) : blocker;
+      if (builder.parent[victim]! < 0) victim = row;
+    }
+    let count = 0;
+    const t = builder.tree[victim]!;
+    const { demand } = this.trees[t]!;
+    evict(builder, room, victim, (terminal) => {
+      count++;
+      if (again) demand.giveBack(this.siteOf[terminal]!, true);
+      else demand.served--;
+      this.siteOf[terminal] = -1;
+    });
+    return count;
+  }
+
+  private keepSite(row: number, site: number): void {
+    if (row >= this.siteOf.length) {
+      const wider = new Int32Array(Math.max(row + 1, 2 * this.siteOf.length)).fill(-1);
+      wider.set(this.siteOf);
+      this.siteOf = wider;
+    }
+    this.siteOf[row] = site;
+  }
+}
+
+/** m; a first vessel that drops half of what is asked on the way to the tissue's middle. */
+export function firstGuess(spec: Spec, t: number, tissue: Tissue): number {
+  const tree = spec.trees[t]!;
+  const [x, y, z] = tree.inlet.position;
+  const dx = Math.max(tissue.max[0] - x, x - tissue.min[0]);
+  const dy = Math.max(tissue.max[1] - y, y - tissue.min[1]);
+  const dz = Math.max(tissue.max[2] - z, z - tissue.min[2]);
+  const length = Math.sqrt(dx * dx + dy * dy + dz * dz);
+  const drop = askedDrop(tree);
+  return Math.sqrt(Math.sqrt((2 * 8 * spec.blood.viscosity.value * 0.5 * length * tree.inlet.flow) / (Math.PI * drop)));
+}
