@@ -5,10 +5,10 @@ import { formatPath } from './path.ts';
 /** Lists and objects inside one another; a spec of any sense needs a dozen. */
 export const MOST_NESTED = 60;
 
-/** A JSON value, and keys that an object gives twice (which plain parsing would drop without a word). */
+/** A JSON value, and faults of keys that would be dropped without a word later: given twice, or `__proto__`. */
 export interface JsonText {
   readonly value: unknown;
-  readonly doubled: readonly Fault[];
+  readonly faults: readonly Fault[];
 }
 
 /**
@@ -25,7 +25,7 @@ export function readJsonText(text: string, where: string): JsonText {
     const { line, column } = placeOf(body, broken.offset);
     throw inputError(broken.code, `${where}:${line}:${column}`, broken.message);
   }
-  return { value: JSON.parse(body), doubled: scan.doubled };
+  return { value: JSON.parse(body), faults: scan.faults };
 }
 
 /** Line and column, both from 1, of an offset into a text. */
@@ -57,7 +57,7 @@ const ESCAPE = /\\(?:["\\/bfnrt]|u[0-9a-fA-F]{4})/y;
 
 /** Walks a text once by the grammar of RFC 8259; keeps no values. */
 class JsonScan {
-  readonly doubled: Fault[] = [];
+  readonly faults: Fault[] = [];
   private readonly text: string;
   private readonly path: (string | number)[] = [];
   private at = 0;
@@ -105,6 +105,7 @@ class JsonScan {
       const key = this.readString();
       this.path.push(key);
       if (seen.has(key)) this.reportDoubled(start);
+      if (key === '__proto__') this.reportPrototype();
       seen.add(key);
       this.skipSpace();
       if (this.text[this.at] !== ':') throw this.expected(`a colon after the key ${quote(key)}`);
@@ -176,7 +177,12 @@ class JsonScan {
   private reportDoubled(offset: number): void {
     const { line, column } = placeOf(this.text, offset);
     const message = `got the key twice (again in line ${line}, column ${column}), expected it once`;
-    this.doubled.push({ code: 'doubled-key', where: formatPath(this.path), message });
+    this.faults.push({ code: 'doubled-key', where: formatPath(this.path), message });
+  }
+
+  private reportPrototype(): void {
+    const message = 'got an unknown key, expected a known one';
+    this.faults.push({ code: 'unknown-key', where: formatPath(this.path), message });
   }
 
   private expected(wanted: string, offset = this.at, word = ''): Broken {

@@ -18,8 +18,8 @@ const MOST_FAULTS = 500;
  * @throws  InputError with every fault: broken JSON as `where:line:column`, all others by spec path
  */
 export function parseSpec(text: string, where = 'spec'): Spec {
-  const { value, doubled } = readJsonText(text, where);
-  return specOf(value, doubled);
+  const { value, faults } = readJsonText(text, where);
+  return specOf(value, faults);
 }
 
 /**

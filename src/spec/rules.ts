@@ -36,7 +36,7 @@ function judgeNames(trees: readonly unknown[]): Fault[] {
     const twin = firstAt.get(name);
     if (twin === undefined) firstAt.set(name, row);
     else {
-      const message = `got ${quote(name)}, the name of trees[${twin}] too; expected a name of its own`;
+      const message = `got ${quote(name)}, the name of trees[${twin}] too, expected a name of its own`;
       faults.push({ code: 'duplicate', where: `trees[${row}].name`, message });
     }
   });

@@ -1,7 +1,6 @@
 import { z } from 'zod';
 import { amount, amountOrNone, later, peekKey, type Raw, readTriple, triple, triplesOrNone, value } from './fields.ts';
 import { describeValue } from './got.ts';
-import { keysOf } from './quantity.ts';
 import { type Report, record } from './record.ts';
 import { COORDINATE, EXTENT } from './shape-schema.ts';
 import { whole, word } from './text-schema.ts';
@@ -85,8 +84,8 @@ export const TERMINAL_FIELDS = {
 
 /** Exactly one way to say where terminals go; shares that fit the points; no point twice. */
 function judgeTerminals(raw: Raw, report: Report): void {
-  const ways = ['count', ...keysOf('spacing', 'length'), ...keysOf('points', 'length')];
-  const given = ways.filter((key) => raw[key] !== undefined);
+  // By the start of the key, so that a way given with a wrong unit is not reported as no way at all.
+  const given = Object.keys(raw).filter((key) => raw[key] !== undefined && /^(count$|spacing|points)/.test(key));
   const kinds = new Set(given.map((key) => key.split('_')[0]));
   const wanted = 'expected exactly one of count, spacing_um and points_mm (or their other length units)';
   if (kinds.size === 0) report([], 'missing', `got none, ${wanted}`);
