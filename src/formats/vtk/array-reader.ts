@@ -1,0 +1,232 @@
+import { decodeText } from '../../core/text.ts';
+import type { FaultList } from '../faults.ts';
+import { parseReal } from '../text/numbers.ts';
+import { decodeBase64 } from './base64.ts';
+import { type Element, scanXml } from './xml.ts';
+
+const SIZES: Readonly<Record<string, number>> = {
+  Int8: 1,
+  UInt8: 1,
+  Int16: 2,
+  UInt16: 2,
+  Int32: 4,
+  UInt32: 4,
+  Int64: 8,
+  UInt64: 8,
+  Float32: 4,
+  Float64: 8,
+};
+
+/** A VTK XML file of which arrays are read one by one when they are asked for. */
+export interface VtkFile {
+  readonly name: string;
+  readonly root: Element;
+  /** `PolyData`, `UnstructuredGrid`, … */
+  readonly type: string;
+  /** Numbers of an array, all as float64; null after a fault. */
+  numbers(array: Element): Float64Array | null;
+  /** Texts of an array of type String; null after a fault. */
+  texts(array: Element): string[] | null;
+}
+
+/**
+ * Opens a VTK XML file: raw or base64 appended data, inline base64 and inline numbers, either byte order, either header
+ * size, uncompressed.
+ *
+ * @returns null after a fault
+ * Source: VTK XML formats as documented by Kitware: `[count of bytes][data]` a block, offsets from the byte after `_`.
+ */
+export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): VtkFile | null {
+  const root = scanXml(bytes, name, faults);
+  if (root === null) return null;
+  const attributes = root.attributes;
+  if (root.name !== 'VTKFile') {
+    faults.add('not-vtk', name, `got <${root.name}>, expected <VTKFile>`);
+    return null;
+  }
+  if ((attributes.compressor ?? '') !== '') {
+    faults.add('compressed', name, `got data packed by ${attributes.compressor}, expected a file written uncompressed`);
+  }
+  const order = attributes.byte_order ?? 'LittleEndian';
+  if (order !== 'LittleEndian' && order !== 'BigEndian') {
+    faults.add('byte-order', name, `got byte_order ${order}, expected LittleEndian or BigEndian`);
+  }
+  const header = attributes.header_type ?? 'UInt32';
+  if (header !== 'UInt32' && header !== 'UInt64') {
+    faults.add('header-type', name, `got header_type ${header}, expected UInt32 or UInt64`);
+  }
+  const appended = root.children.find((child) => child.name === 'AppendedData');
+  let pool: Uint8Array | null = null;
+  if (appended !== undefined) {
+    const encoding = appended.attributes.encoding ?? 'base64';
+    const mark = bytes.indexOf(0x5f, appended.from);
+    if (mark < 0) faults.add('appended', name, 'got appended data without the mark _ before it');
+    else if (encoding === 'raw') pool = bytes.subarray(mark + 1);
+    else if (encoding === 'base64') {
+      const end = bytes.indexOf(0x3c, mark);
+      pool = bytes.subarray(mark + 1, end < 0 ? bytes.length : end);
+    } else faults.add('appended', name, `got appended data encoded as ${encoding}, expected raw or base64`);
+  }
+  if (faults.count > 0) return null;
+
+  const big = order === 'BigEndian';
+  const headerSize = header === 'UInt64' ? 8 : 4;
+  const base64 = appended?.attributes.encoding !== 'raw';
+
+  const place = (array: Element): string => `${name} ${array.attributes.Name ?? array.name}`;
+  const fault = (array: Element, code: string, message: string): null => {
+    faults.add(code, place(array), message);
+    return null;
+  };
+  /** The data of a block, whose header says how long it is. */
+  const unwrap = (array: Element, block: Uint8Array, from: number): Uint8Array | null => {
+    if (from + headerSize > block.length) {
+      return fault(array, 'truncated', `starts at byte ${from} of ${block.length}: the file is cut short`);
+    }
+    const view = new DataView(block.buffer, block.byteOffset + from, headerSize);
+    const size = headerSize === 8 ? Number(view.getBigUint64(0, !big)) : view.getUint32(0, !big);
+    const start = from + headerSize;
+    if (size > block.length - start) {
+      return fault(
+        array,
+        'truncated',
+        `should be ${size} bytes long, ${block.length - start} are left: the file is cut short`,
+      );
+    }
+    return block.subarray(start, start + size);
+  };
+  const block = (array: Element): Uint8Array | null => {
+    if (array.attributes.format === 'appended') {
+      const offset = parseReal(array.attributes.offset ?? '');
+      if (pool === null) return fault(array, 'appended', 'is said to be in the appended data, of which there is none');
+      if (!(Number.isInteger(offset) && offset >= 0)) {
+        return fault(array, 'offset', `got offset "${array.attributes.offset}", expected a whole number`);
+      }
+      if (!base64) return unwrap(array, pool, offset);
+      if (offset > pool.length) return fault(array, 'truncated', `starts at byte ${offset} of ${pool.length}`);
+      return decodeBlock(array, pool.subarray(offset), true);
+    }
+    return decodeBlock(array, bytes.subarray(array.from, array.to), false);
+  };
+  /** Base64 text of a block; what follows it in a pool is not looked at. */
+  const decodeBlock = (array: Element, text: Uint8Array, shared: boolean): Uint8Array | null => {
+    let own = text;
+    if (shared) {
+      const head = decodeBase64(text.subarray(0, headerSize === 8 ? 12 : 8));
+      if (head === null || head.length < headerSize) return fault(array, 'base64', 'got no base64 header');
+      const view = new DataView(head.buffer, head.byteOffset, head.length);
+      const size = headerSize === 8 ? Number(view.getBigUint64(0, !big)) : view.getUint32(0, !big);
+      // The header may have been encoded by itself, with padding of its own.
+      const apart = text[headerSize === 8 ? 11 : 7] === 0x3d;
+      const inGroups = (count: number) => 4 * Math.ceil(count / 3);
+      const length = apart ? inGroups(headerSize) + inGroups(size) : inGroups(headerSize + size);
+      if (length > text.length) return fault(array, 'truncated', `should be ${size} bytes long: the file is cut short`);
+      own = text.subarray(0, length);
+    }
+    const decoded = decodeBase64(own);
+    return decoded === null ? fault(array, 'base64', 'got text that is not base64') : unwrap(array, decoded, 0);
+  };
+  const isText = (array: Element): boolean => (array.attributes.format ?? 'ascii') === 'ascii';
+  const numbers = (array: Element): Float64Array | null => {
+    const type = array.attributes.type ?? '';
+    if (isText(array)) return parseNumbers(array, bytes.subarray(array.from, array.to), fault);
+    const size = SIZES[type];
+    if (size === undefined)
+      return fault(array, 'type', `got type ${type}, expected one of ${Object.keys(SIZES).join(', ')}`);
+    const data = block(array);
+    if (data === null) return null;
+    if (data.length % size !== 0)
+      return fault(array, 'length', `got ${data.length} bytes, expected a multiple of ${size}`);
+    // A copy puts the bytes where a typed array may look at them, and in this machine's order.
+    const copy = data.slice();
+    if (big !== IS_BIG) swapBytes(copy, size);
+    return widen(type, copy.buffer);
+  };
+  const texts = (array: Element): string[] | null => {
+    let data: Uint8Array | null;
+    if (isText(array)) {
+      // Numbers are the bytes of the texts, each text ended by a 0.
+      const codes = parseNumbers(array, bytes.subarray(array.from, array.to), fault);
+      data = codes === null ? null : Uint8Array.from(codes);
+    } else data = block(array);
+    if (data === null) return null;
+    const list: string[] = [];
+    for (let from = 0; from < data.length; ) {
+      const end = data.indexOf(0, from);
+      list.push(decodeText(data.subarray(from, end < 0 ? data.length : end)));
+      from = end < 0 ? data.length : end + 1;
+    }
+    return list;
+  };
+  return { name, root, type: attributes.type ?? '', numbers, texts };
+}
+
+const IS_BIG = new Uint8Array(Uint32Array.of(1).buffer)[0] === 0;
+
+function swapBytes(bytes: Uint8Array, size: number): void {
+  if (size === 1) return;
+  for (let at = 0; at < bytes.length; at += size) bytes.subarray(at, at + size).reverse();
+}
+
+function widen(type: string, buffer: ArrayBuffer): Float64Array {
+  switch (type) {
+    case 'Float64':
+      return new Float64Array(buffer);
+    case 'Float32':
+      return Float64Array.from(new Float32Array(buffer));
+    case 'Int8':
+      return Float64Array.from(new Int8Array(buffer));
+    case 'UInt8':
+      return Float64Array.from(new Uint8Array(buffer));
+    case 'Int16':
+      return Float64Array.from(new Int16Array(buffer));
+    case 'UInt16':
+      return Float64Array.from(new Uint16Array(buffer));
+    case 'Int32':
+      return Float64Array.from(new Int32Array(buffer));
+    case 'UInt32':
+      return Float64Array.from(new Uint32Array(buffer));
+    default: {
+      // Int64 and UInt64 by halves, four times as fast as by BigInt; exact to 2⁵³, and no index is larger.
+      const low = new Uint32Array(buffer);
+      const out = new Float64Array(low.length / 2);
+      const [l, h] = IS_BIG ? [1, 0] : [0, 1];
+      for (let i = 0; i < out.length; i++) {
+        const high = low[2 * i + h]!;
+        out[i] = (type === 'Int64' ? high | 0 : high) * 4294967296 + low[2 * i + l]!;
+      }
+      return out;
+    }
+  }
+}
+
+function parseNumbers(
+  array: Element,
+  bytes: Uint8Array,
+  fault: (array: Element, code: string, message: string) => null,
+): Float64Array | null {
+  let out = new Float64Array(64);
+  let size = 0;
+  let from = -1;
+  for (let at = 0; at <= bytes.length; at++) {
+    const space = at === bytes.length || bytes[at]! <= 0x20;
+    if (!space) {
+      if (from < 0) from = at;
+      continue;
+    }
+    if (from < 0) continue;
+    const word = decodeText(bytes.subarray(from, Math.min(at, from + 64)));
+    from = -1;
+    const value = parseReal(word);
+    if (Number.isNaN(value) && word.toLowerCase() !== 'nan') {
+      return fault(array, 'number', `got "${word}" at position ${size}, expected a number`);
+    }
+    if (size === out.length) {
+      const grown = new Float64Array(2 * size);
+      grown.set(out);
+      out = grown;
+    }
+    out[size++] = value;
+  }
+  return out.slice(0, size);
+}
