@@ -27,8 +27,14 @@ export function normaliseDirection(direction: Triple): Triple {
  * @param shares each finite and > 0
  */
 export function normaliseShares(shares: readonly number[]): number[] {
+  if (areNormalised(shares)) return [...shares];
   const sum = compensatedSum(shares);
-  return Math.abs(sum - 1) <= NEAR_ONE ? [...shares] : shares.map((share) => share / sum);
+  return shares.map((share) => share / sum);
+}
+
+/** True if shares sum to 1 already, as they do once normalised. */
+export function areNormalised(shares: readonly number[]): boolean {
+  return Math.abs(compensatedSum(shares) - 1) <= NEAR_ONE;
 }
 
 /** Equal shares that sum to 1. */
@@ -37,7 +43,7 @@ export function equalShares(count: number): number[] {
 }
 
 /** Sum whose error does not grow with the number of terms. Source: Neumaier (1974); from memory. */
-function compensatedSum(terms: readonly number[]): number {
+export function compensatedSum(terms: readonly number[]): number {
   let sum = 0;
   let lost = 0;
   for (const term of terms) {

@@ -1,6 +1,6 @@
 import type { Fault } from '../core/errors.ts';
 import { fromSi, toSi } from '../core/units.ts';
-import { isObject, peekKey, peekNumber, peekTriple, readTriple } from './fields.ts';
+import { isObject, peekKey, peekNumber, peekTriple, type Raw, readTriple } from './fields.ts';
 import { quote, shortNumber } from './got.ts';
 
 /** Pa; pressures where a spec gives none. Source: common practice, no source (large artery, arteriole, large vein). */
@@ -46,6 +46,8 @@ function judgeNames(trees: readonly unknown[]): Fault[] {
 function judgePressures(tree: unknown, row: number, leastPower: boolean): Fault[] {
   if (!isObject(tree) || !isObject(tree.inlet) || !isObject(tree.terminals)) return [];
   const drain = tree.kind === 'drain';
+  // A pressure that is there and cannot be read is reported as such; no default stands in for it.
+  if (isGarbled(tree.inlet) || isGarbled(tree.terminals)) return [];
   const asked = peekKey(tree.terminals, 'pressure', 'pressure');
   if (leastPower && !asked) return [];
   const terminal = asked ? peekNumber(tree.terminals, 'pressure', 'pressure') : TERMINAL_PRESSURE;
@@ -64,6 +66,11 @@ function judgePressures(tree: unknown, row: number, leastPower: boolean): Fault[
       message: `${got}, expected ${drain ? 'below' : 'above'} ${limit}`,
     },
   ];
+}
+
+function isGarbled(holder: Raw): boolean {
+  const mentioned = Object.keys(holder).some((key) => key.startsWith('pressure') && holder[key] !== undefined);
+  return mentioned && peekNumber(holder, 'pressure', 'pressure') === undefined;
 }
 
 function judgePoints(tree: unknown, row: number): Fault[] {

@@ -1,6 +1,7 @@
 import { z } from 'zod';
 import { amount, amountOrNone, later, peekKey, type Raw, readTriple, triple, triplesOrNone, value } from './fields.ts';
 import { describeValue } from './got.ts';
+import { areNormalised, compensatedSum } from './normalise.ts';
 import { type Report, record } from './record.ts';
 import { COORDINATE, EXTENT } from './shape-schema.ts';
 import { whole, word } from './text-schema.ts';
@@ -12,6 +13,9 @@ const FLOW = { min: 1e-18, max: 1e-2 };
 const MOST_TERMINALS = 20_000_000;
 const MOST_POINTS = 1_000_000;
 const MOST_TREES = 100;
+/** Of the sum. A key may hold a tenth of it, so that what rounding does to a share just above it is still accepted. */
+const LEAST_SHARE = 1e-15;
+const SHARE_KEY = { min: 1e-16, max: 1e9 };
 
 const directionError = (issue: { readonly input?: unknown }) =>
   `got ${describeValue(issue.input)}, expected three numbers [x, y, z] from -1e6 to 1e6, not all nearly 0`;
@@ -44,11 +48,11 @@ export const INLET_FIELDS = {
 } as const;
 
 const shareError = (issue: { readonly input?: unknown }) =>
-  `got ${describeValue(issue.input)}, expected a number from 1e-9 to 1e9`;
+  `got ${describeValue(issue.input)}, expected a number from ${SHARE_KEY.min} to ${SHARE_KEY.max}`;
 const sharesError = (issue: { readonly input?: unknown }) =>
   `got ${describeValue(issue.input)}, expected a list of numbers, one for each point`;
 const shares = z.array(
-  z.number({ error: shareError }).min(1e-9, { error: shareError }).max(1e9, { error: shareError }),
+  z.number({ error: shareError }).min(SHARE_KEY.min, { error: shareError }).max(SHARE_KEY.max, { error: shareError }),
   {
     error: sharesError,
   },
@@ -72,7 +76,7 @@ export const TERMINAL_FIELDS = {
   }),
   flow_share: value(shares.optional(), {
     doc: 'Share of the flow of each point, scaled to sum 1; only with `points_*`.',
-    range: 'numbers > 0, one for each point',
+    range: '1e-15 to 1 of their sum, one for each point',
     fallback: 'equal',
   }),
   pressure: amountOrNone('pressure', {
@@ -105,6 +109,7 @@ function judgeTerminals(raw: Raw, report: Report): void {
     const got = `got ${describeValue(share)}`;
     report(['flow_share'], 'out-of-range', `${got}, expected ${points.value.length} numbers, one for each point`);
   }
+  if (Array.isArray(share)) judgeShares(share, report);
   const firstAt = new Map<string, number>();
   points.value.forEach((value: unknown, row) => {
     const point = readTriple(value, points.unit);
@@ -113,6 +118,16 @@ function judgeTerminals(raw: Raw, report: Report): void {
     if (twin === undefined) firstAt.set(point.join(), row);
     else
       report([points.key, row], 'duplicate', `got the same point as ${points.key}[${twin}], expected distinct points`);
+  });
+}
+
+function judgeShares(share: readonly unknown[], report: Report): void {
+  if (!share.every((one): one is number => typeof one === 'number' && Number.isFinite(one) && one > 0)) return;
+  if (areNormalised(share)) return;
+  const sum = compensatedSum(share);
+  share.forEach((one, row) => {
+    if (one >= LEAST_SHARE * sum) return;
+    report(['flow_share', row], 'out-of-range', `got ${one} of a sum of ${sum}, expected at least 1e-15 of the sum`);
   });
 }
 
