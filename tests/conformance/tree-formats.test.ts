@@ -60,10 +60,11 @@ for (const format of TREE_FORMATS as readonly TreeFormat[]) {
 
     for (const [name, record] of Object.entries(ZOO)) {
       it(`carries ${name} there and back`, () => {
-        const before = snapshot(record);
+        const small = record.forest.count < 1000;
+        const before = small ? snapshot(record) : '';
         const files = filesOf(format, record);
         expect(files.map((file) => file.name)).toEqual(format.parts.map((part) => `tree${part}`));
-        if (record.forest.count < 1000) expect(snapshot(record)).toBe(before);
+        if (small) expect(snapshot(record)).toBe(before);
         const { record: back, notes } = format.decode(files);
         const { forest } = back;
         expect(Array.from(forest.parent)).toEqual(Array.from(record.forest.parent));

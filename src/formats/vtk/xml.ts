@@ -6,7 +6,7 @@ export interface Element {
   readonly name: string;
   readonly attributes: Readonly<Record<string, string>>;
   readonly children: Element[];
-  /** Bytes between the element's tags: first, and one past the last. */
+  /** Its text before its first child: first byte, and one past the last. */
   readonly from: number;
   to: number;
 }
@@ -60,7 +60,7 @@ export function scanXml(bytes: Uint8Array, name: string, faults: FaultList): Ele
       if (element === undefined || element.name !== tag.slice(1).trim()) {
         return broken(`got <${tag}>, expected ${element === undefined ? 'an element' : `</${element.name}>`}`);
       }
-      element.to = at;
+      if (element.to < 0) element.to = at;
       if (open.length === 0) return outermost;
       at = close + 1;
       continue;
@@ -70,12 +70,17 @@ export function scanXml(bytes: Uint8Array, name: string, faults: FaultList): Ele
     if (element === null) return broken(`got <${tag.slice(0, 60)}>, expected a name and attributes in quotes`);
     if (outermost === null) outermost = element;
     else if (open.length === 0) return broken('got a second outermost element');
-    open.at(-1)?.children.push(element);
+    const parent = open.at(-1);
+    if (parent !== undefined) {
+      if (parent.to < 0) parent.to = at;
+      parent.children.push(element);
+    }
     if (element.name === 'AppendedData' && !empty) {
       element.to = bytes.length;
       return outermost;
     }
     if (empty) {
+      element.to = element.from;
       if (open.length === 0) return outermost;
     } else {
       if (open.length === DEEPEST) return broken(`got elements more than ${DEEPEST} deep`);
@@ -127,5 +132,5 @@ function parseTag(tag: string, from: number): Element | null {
     end = attribute.lastIndex;
   }
   if (tag.slice(end).trim() !== '') return null;
-  return { name, attributes, children: [], from, to: from };
+  return { name, attributes, children: [], from, to: -1 };
 }
