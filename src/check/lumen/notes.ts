@@ -1,0 +1,57 @@
+import { inputError } from '../../core/errors.ts';
+
+/** What the checker reads of `mesh.json`; everything else in it is for others. */
+export interface MeshNotes {
+  /** m, one unit of length of the surface files. */
+  readonly unit: number;
+  /** Segments round a vessel that were asked for. */
+  readonly around: number;
+  /** Pa·s, or NaN where the file does not say. */
+  readonly viscosity: number;
+  /** kg/m³, or NaN. */
+  readonly density: number;
+  /** Names of a binary file's patches by number, or null. */
+  readonly patches: readonly string[] | null;
+}
+
+const UNIT: Readonly<Record<string, number>> = { m: 1, mm: 1e-3, um: 1e-6 };
+
+/**
+ * Reads `mesh.json`: keys `unit`, `around`, `viscosity_Pa_s`, `density_kg_m3`, `patches` (names), all optional.
+ *
+ * @param text null where there is no such file: metres, 24 round a vessel
+ * @throws InputError where it is not JSON or a key is not what it should be
+ */
+export function readMeshNotes(file: string, text: string | null): MeshNotes {
+  let value: unknown = {};
+  if (text !== null) {
+    try {
+      value = JSON.parse(text);
+    } catch (error) {
+      throw inputError('bad-json', file, `got no JSON: ${(error as Error).message}`);
+    }
+  }
+  if (typeof value !== 'object' || value === null) throw inputError('bad-json', file, 'got no object, expected one');
+  const notes = value as Readonly<Record<string, unknown>>;
+  const unit = notes.unit ?? 'm';
+  if (typeof unit !== 'string' || UNIT[unit] === undefined) {
+    throw inputError('bad-unit', file, `unit: got ${JSON.stringify(unit)}, expected m, mm or um`);
+  }
+  const number = (key: string, otherwise: number) => {
+    const got = notes[key];
+    if (got === undefined || got === null) return otherwise;
+    if (typeof got !== 'number' || !(got > 0)) {
+      throw inputError('bad-number', file, `${key}: got ${JSON.stringify(got)}, expected > 0`);
+    }
+    return got;
+  };
+  const patches = notes.patches;
+  const named = Array.isArray(patches) && patches.every((patch) => typeof patch === 'string');
+  return {
+    unit: UNIT[unit]!,
+    around: number('around', 24),
+    viscosity: number('viscosity_Pa_s', Number.NaN),
+    density: number('density_kg_m3', Number.NaN),
+    patches: named ? patches : null,
+  };
+}
