@@ -36,8 +36,10 @@ export function decodePly(bytes: Uint8Array, file: string): TriangleSurface {
   if (bytes.length === 0) throw inputError('empty-surface', file, 'got an empty file, expected PLY');
   const reader = new TextReader(bytes, file);
   const header = readPlyHeader(reader);
+  if (!header.elements.some(({ name }) => name === 'vertex'))
+    throw reader.fault('bad-syntax', 'got no element "vertex", expected one');
   const source = header.encoding === 'ascii' ? textSource(reader) : binarySource(reader, header);
-  let corner: Float64Array | null = null;
+  let corner = new Float64Array(0);
   const fans = new PolygonFans();
   for (const element of header.elements) {
     const least = element.properties.reduce((sum, { type, listCount }) => sum + source.least(listCount ?? type), 0);
@@ -52,7 +54,6 @@ export function decodePly(bytes: Uint8Array, file: string): TriangleSurface {
     else if (element.name === 'tristrips') throw source.fault('not-supported', 'got triangle strips, expected faces');
     else for (let i = 0; i < element.count; i++) for (const property of element.properties) skip(source, property);
   }
-  if (corner === null) throw inputError('bad-syntax', file, 'got no element "vertex", expected one');
   if (fans.triangle.length === 0)
     throw inputError('empty-surface', file, 'got an empty surface without faces, expected some');
   return mergeCorners(corner, fans.triangle);

@@ -20,6 +20,7 @@ export function decodeStl(bytes: Uint8Array, file: string): TriangleSurface {
   const claimed = bytes.length >= HEADER ? view.getUint32(80, true) : -1;
   if (claimed >= 0 && bytes.length === HEADER + RECORD * claimed) return decodeBinary(view, claimed, file);
   if (looksAscii(bytes)) return decodeAscii(bytes, file);
+  if (looksText(bytes)) throw inputError('bad-syntax', file, 'got text that does not start with "solid", expected STL');
   if (claimed < 0)
     throw inputError(
       'truncated',
@@ -36,10 +37,18 @@ export function decodeStl(bytes: Uint8Array, file: string): TriangleSurface {
   );
 }
 
-/** Starts with `solid` and has no zero byte in the first kilobyte. */
+/** Starts with `solid` and is text as far as its first kilobyte shows. */
 function looksAscii(bytes: Uint8Array): boolean {
-  const head = textOf(bytes, 0, Math.min(bytes.length, 1024));
-  return /^(?:\xef\xbb\xbf)?\s*solid/i.test(head) && !head.includes('\0');
+  return looksText(bytes) && /^(?:\xef\xbb\xbf)?\s*solid/i.test(textOf(bytes, 0, Math.min(bytes.length, 64)));
+}
+
+/** No zero byte and hardly another control character in the first kilobyte: binary STL has a count and floats there. */
+function looksText(bytes: Uint8Array): boolean {
+  const head = bytes.subarray(0, 1024);
+  if (head.includes(0)) return false;
+  let odd = 0;
+  for (const byte of head) if (byte < 32 && byte !== 9 && byte !== 10 && byte !== 13) odd++;
+  return odd <= 0.02 * head.length;
 }
 
 function decodeBinary(view: DataView, count: number, file: string): TriangleSurface {
