@@ -57,6 +57,8 @@ def main(path):
     append = vtk.vtkAppendFilter()
     append.AddInputData(data)
     append.Update()
+    # meshio knows no arrays of text.
+    append.GetOutput().GetFieldData().Initialize()
     with tempfile.TemporaryDirectory() as folder:
         grid = os.path.join(folder, "tree.vtu")
         writer = vtk.vtkXMLUnstructuredGridWriter()

@@ -87,7 +87,7 @@ function decodeCsv(files: readonly NamedBytes[]): DecodedTree {
   faults.throwIfAny();
   const whole = (base: string): Int32Array | null => {
     const values = column(vessels!, base, null, false, faults);
-    return values === null ? null : Int32Array.from(values);
+    return values === null ? null : new Int32Array(values);
   };
   const vesselField: Partial<Record<VesselKey, Float64Array>> = {};
   for (const spec of VESSEL_COLUMNS) {

@@ -94,12 +94,15 @@ function decodeJson(files: readonly NamedBytes[]): DecodedTree {
   };
   same('nodes', count, [...axes, ...Object.values(nodeField)]);
   same('vessels', length, [to, radius, flow, tree, order, ...Object.values(vesselField)]);
-  const ends = (values: Float64Array, what: string) =>
-    Int32Array.from(values, (node, v) => {
-      if (Number.isInteger(node) && node >= 0 && node < count) return node;
+  const ends = (values: Float64Array, what: string): Int32Array => {
+    const rows = new Int32Array(values);
+    for (let v = 0; v < values.length; v++) {
+      const node = values[v]!;
+      if (Number.isInteger(node) && node >= 0 && node < count) continue;
       faults.add('no-node', `${name} vessels.${what}[${v}]`, `got ${node}, expected a node from 0 to ${count - 1}`);
-      return -1;
-    });
+    }
+    return rows;
+  };
   const fromRow = ends(from!, 'from');
   const toRow = ends(to!, 'to');
   const position = new Float64Array(3 * count);
@@ -119,8 +122,8 @@ function decodeJson(files: readonly NamedBytes[]): DecodedTree {
       to: toRow,
       radius: radius!,
       flow,
-      tree: tree === null ? null : Int32Array.from(tree),
-      order: order === null ? null : Int32Array.from(order),
+      tree: tree === null ? null : new Int32Array(tree),
+      order: order === null ? null : new Int32Array(order),
       vesselField,
       nodeField,
       names: textsOf('name'),

@@ -87,6 +87,8 @@ function decodeSwc(files: readonly NamedBytes[]): DecodedTree {
   }
   faults.throwIfAny();
   const to = Int32Array.from(vesselSample);
+  const radius = new Float64Array(to.length);
+  for (let v = 0; v < to.length; v++) radius[v] = columns[7 * to[v]! + 5]!;
   return assembleTree(
     {
       where: name,
@@ -95,7 +97,7 @@ function decodeSwc(files: readonly NamedBytes[]): DecodedTree {
       position,
       from: to.map((i) => parent[i]!),
       to,
-      radius: Float64Array.from(to, (i) => toSi(columns[7 * i + 5]!, 'um')),
+      radius: radius.map((value) => toSi(value, 'um')),
       flow: null,
       tree: null,
       order: null,

@@ -86,16 +86,17 @@ function decodeVtp(files: readonly NamedBytes[]): DecodedTree {
     faults.add('format-version', `${name} format_version`, `got ${found}, expected ${FORMAT_VERSION}`);
   }
   const vessels = from.length;
+  // Loops, because TypedArray.from with a function goes through a list of boxed values.
   const spread = (cell: Float64Array | null): Float64Array | null =>
-    cell === null ? null : Float64Array.from(line, (l) => cell[data!.cellsBefore + l]!);
+    cell === null ? null : gather(cell, line, data!.cellsBefore, new Float64Array(vessels));
   const whole = (cell: Float64Array | null): Int32Array | null =>
-    cell === null ? null : Int32Array.from(line, (l) => cell[data!.cellsBefore + l]!);
+    cell === null ? null : gather(cell, line, data!.cellsBefore, new Int32Array(vessels));
   let radius = spread(arrays.cell('radius', 'length'));
   if (radius === null) {
     const ofPoint = arrays.point('radius', 'length');
     if (ofPoint === null) faults.add('missing', `${name} CellData`, 'got no array radius_m, expected one');
     else {
-      radius = Float64Array.from(to, (node) => ofPoint[node]!);
+      radius = gather(ofPoint, to, 0, new Float64Array(vessels));
       notes.push(`${name}: radii are of points; each vessel was given that of its far end`);
     }
   }
@@ -143,6 +144,16 @@ function decodeVtp(files: readonly NamedBytes[]): DecodedTree {
     faults,
     notes,
   );
+}
+
+function gather<Column extends Float64Array | Int32Array>(
+  values: Float64Array,
+  at: Int32Array,
+  before: number,
+  out: Column,
+): Column {
+  for (let i = 0; i < at.length; i++) out[i] = values[before + at[i]!]!;
+  return out;
 }
 
 /** Vessels of lines: a line of k points is k − 1 vessels, each with the line's values. */

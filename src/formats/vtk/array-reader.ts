@@ -173,19 +173,19 @@ function widen(type: string, buffer: ArrayBuffer): Float64Array {
     case 'Float64':
       return new Float64Array(buffer);
     case 'Float32':
-      return Float64Array.from(new Float32Array(buffer));
+      return new Float64Array(new Float32Array(buffer));
     case 'Int8':
-      return Float64Array.from(new Int8Array(buffer));
+      return new Float64Array(new Int8Array(buffer));
     case 'UInt8':
-      return Float64Array.from(new Uint8Array(buffer));
+      return new Float64Array(new Uint8Array(buffer));
     case 'Int16':
-      return Float64Array.from(new Int16Array(buffer));
+      return new Float64Array(new Int16Array(buffer));
     case 'UInt16':
-      return Float64Array.from(new Uint16Array(buffer));
+      return new Float64Array(new Uint16Array(buffer));
     case 'Int32':
-      return Float64Array.from(new Int32Array(buffer));
+      return new Float64Array(new Int32Array(buffer));
     case 'UInt32':
-      return Float64Array.from(new Uint32Array(buffer));
+      return new Float64Array(new Uint32Array(buffer));
     default: {
       // Int64 and UInt64 by halves, four times as fast as by BigInt; exact to 2⁵³, and no index is larger.
       const low = new Uint32Array(buffer);
