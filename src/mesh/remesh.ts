@@ -1,0 +1,444 @@
+import type { JunctionShape } from './junction-shape.ts';
+import { FREE, type PatchMesh } from './patch-mesh.ts';
+
+/** Longest edge allowed, in edge lengths wanted. */
+const LONG = 1.3;
+/** Shortest edge wanted. */
+const SHORT = 0.62;
+/** Least cosine between a triangle and the wall under its centre. */
+const UPRIGHT = 0.1;
+/** Least distance of a triangle's plane from the node, in radii of the thinnest tube, while the patch is coarse. */
+const STAR = 0.2;
+/** sin² of the smallest angle that smoothing must keep: 35°. */
+const GOOD = 0.33;
+/** sin² of the smallest angle below which a triangle is worked on at the end: 28°. */
+const POOR = 0.22;
+
+/**
+ * Turns a coarse closed triangulation of a node's wall into one of even, well-shaped triangles: edges are split,
+ * collapsed and flipped and vertices moved along the wall until edge lengths are near those wanted and the smallest
+ * angles are as large as can be had. Rims stay.
+ *
+ * Every step is judged by the score of the triangles it touches: sin² of the smallest angle, or, where a triangle does
+ * not face out of the wall, a negative number. Once a patch has no negative score it never gets one again.
+ *
+ * Source: the split–collapse–flip–smooth cycle is common practice, no source.
+ */
+export class Remesher {
+  private readonly mesh: PatchMesh;
+  private readonly shape: JunctionShape;
+  private mark = new Int32Array(1024);
+  private round = 0;
+  private star = true;
+  private thin = 1;
+
+  constructor(mesh: PatchMesh, shape: JunctionShape) {
+    this.mesh = mesh;
+    this.shape = shape;
+  }
+
+  /** @returns the worst score of the patch */
+  run(): number {
+    const { mesh } = this;
+    this.star = true;
+    this.thin = Math.min(...this.shape.radius.subarray(0, this.shape.count));
+    for (let t = 0; t < mesh.triangles; t++) this.rescore(t);
+    for (let pass = 0; pass < 16; pass++) {
+      const splits = this.splitLong();
+      this.flipAll();
+      if (pass % 2 === 1) this.smoothAll();
+      if (splits === 0) break;
+    }
+    this.star = false;
+    for (let t = 0; t < mesh.triangles; t++) this.rescore(t);
+    for (let pass = 0; pass < 3; pass++) {
+      this.collapseShort();
+      this.splitLong();
+      this.flipAll();
+      this.smoothAll();
+      this.flipAll();
+      this.smoothAll();
+    }
+    this.flipAll();
+    for (let pass = 0; pass < 8; pass++) if (this.mendPoor() === 0) break;
+    let worst = 1;
+    for (let t = 0; t < mesh.triangles; t++) {
+      if (mesh.from[3 * t]! >= 0 && mesh.cap[t] === 0 && mesh.score[t]! < worst) worst = mesh.score[t]!;
+    }
+    return worst;
+  }
+
+  private splitLong(): number {
+    const { mesh, shape } = this;
+    let splits = 0;
+    const end = 3 * mesh.triangles;
+    for (let h = 0; h < end; h++) {
+      const a = mesh.from[h]!;
+      if (a < 0) continue;
+      const t = mesh.twin[h]!;
+      if (t < h || mesh.locked(h)) continue;
+      const b = mesh.from[t]!;
+      const size = 0.5 * (mesh.size[a]! + mesh.size[b]!);
+      const square = mesh.squaredLength(a, b);
+      if (square < LONG * LONG * size * size) continue;
+      this.project(a, b, this.star);
+      const m = mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeAt(shape.x, shape.y, shape.z), FREE);
+      const [n1, n2] = mesh.split(h, m);
+      this.rescore((h / 3) | 0);
+      this.rescore((t / 3) | 0);
+      this.rescore(n1);
+      this.rescore(n2);
+      splits++;
+    }
+    return splits;
+  }
+
+  /** Finds the point of the wall between two vertices. */
+  private project(a: number, b: number, coarse: boolean): void {
+    const { shape } = this;
+    const p = this.mesh.position;
+    const x = 0.5 * (p[3 * a]! + p[3 * b]!);
+    const y = 0.5 * (p[3 * a + 1]! + p[3 * b + 1]!);
+    const z = 0.5 * (p[3 * a + 2]! + p[3 * b + 2]!);
+    if (coarse) {
+      // Far from the wall the gradient may lead anywhere; the ray from the node keeps the patch a star.
+      shape.shoot(x, y, z);
+      return;
+    }
+    shape.project(x, y, z);
+  }
+
+  private flipAll(): void {
+    const { mesh } = this;
+    for (let sweep = 0; sweep < 8; sweep++) {
+      let flips = 0;
+      for (let h = 0; h < 3 * mesh.triangles; h++) {
+        if (mesh.from[h]! < 0) continue;
+        const t = mesh.twin[h]!;
+        if (t < h || mesh.locked(h)) continue;
+        if (this.tryFlip(h, t)) flips++;
+      }
+      if (flips === 0) break;
+    }
+  }
+
+  private tryFlip(h: number, t: number): boolean {
+    const { mesh } = this;
+    const s = (h / 3) | 0;
+    const u = (t / 3) | 0;
+    const before = Math.min(mesh.score[s]!, mesh.score[u]!);
+    const a = mesh.from[h]!;
+    const b = mesh.from[t]!;
+    const c = mesh.from[mesh.previous(h)]!;
+    const d = mesh.from[mesh.previous(t)]!;
+    const first = this.scoreOf(a, d, c, before);
+    if (!(first > before + 1e-9)) return false;
+    const second = this.scoreOf(b, c, d, before);
+    if (!(second > before + 1e-9)) return false;
+    if (mesh.adjacent(c, d)) return false;
+    mesh.flip(h);
+    mesh.score[s] = first;
+    mesh.score[u] = second;
+    return true;
+  }
+
+  private collapseShort(): void {
+    const { mesh } = this;
+    for (let h = 0; h < 3 * mesh.triangles; h++) {
+      const a = mesh.from[h]!;
+      if (a < 0 || mesh.kind[a] !== FREE) continue;
+      const b = mesh.from[mesh.twin[h]!]!;
+      const size = Math.min(mesh.size[a]!, mesh.size[b]!);
+      if (mesh.squaredLength(a, b) > SHORT * SHORT * size * size) continue;
+      this.tryCollapse(h, 0.1, 1.2);
+    }
+  }
+
+  /** Draws the start of h into its end if no triangle gets worse than `floor` (or than it was) and no edge too long. */
+  private tryCollapse(h: number, floor: number, stretch: number): boolean {
+    const { mesh, shape } = this;
+    const t = mesh.twin[h]!;
+    const a = mesh.from[h]!;
+    const b = mesh.from[t]!;
+    if (mesh.vertices > this.mark.length) this.mark = new Int32Array(2 * mesh.vertices);
+    const round = ++this.round;
+    let common = 0;
+    let worst = 1;
+    let g = h;
+    do {
+      this.mark[mesh.from[mesh.next(g)]!] = round;
+      worst = Math.min(worst, mesh.score[(g / 3) | 0]!);
+      g = mesh.twin[mesh.previous(g)]!;
+    } while (g !== h);
+    const moves = mesh.kind[b] === FREE;
+    g = t;
+    do {
+      if (this.mark[mesh.from[mesh.next(g)]!] === round) common++;
+      if (moves) worst = Math.min(worst, mesh.score[(g / 3) | 0]!);
+      g = mesh.twin[mesh.previous(g)]!;
+    } while (g !== t);
+    if (common !== 2) return false;
+    if (moves) this.project(a, b, false);
+    else this.put(b);
+    const x = shape.x;
+    const y = shape.y;
+    const z = shape.z;
+    const limit = Math.min(worst, floor);
+    const longest = stretch * LONG * mesh.size[a]!;
+    const fits = (start: number): boolean => {
+      let e = start;
+      do {
+        const p = mesh.from[mesh.next(e)]!;
+        const q = mesh.from[mesh.previous(e)]!;
+        const gone = p === a || q === a || p === b || q === b;
+        if (!gone) {
+          if (mesh.cap[(e / 3) | 0] === 1) {
+            if (start === h) return false;
+          } else {
+            const dx = x - mesh.position[3 * p]!;
+            const dy = y - mesh.position[3 * p + 1]!;
+            const dz = z - mesh.position[3 * p + 2]!;
+            if (dx * dx + dy * dy + dz * dz > longest * longest) return false;
+            if (!(this.scoreAt(x, y, z, p, q, limit) > limit)) return false;
+          }
+        }
+        e = mesh.twin[mesh.previous(e)]!;
+      } while (e !== start);
+      return true;
+    };
+    if (!fits(h) || (moves && !fits(t))) return false;
+    mesh.collapse(h);
+    if (moves) {
+      this.set(b, x, y, z);
+    }
+    this.rescoreStar(b);
+    return true;
+  }
+
+  private put(v: number): void {
+    const p = this.mesh.position;
+    this.shape.x = p[3 * v]!;
+    this.shape.y = p[3 * v + 1]!;
+    this.shape.z = p[3 * v + 2]!;
+  }
+
+  private set(v: number, x: number, y: number, z: number): void {
+    const p = this.mesh.position;
+    p[3 * v] = x;
+    p[3 * v + 1] = y;
+    p[3 * v + 2] = z;
+    this.mesh.size[v] = this.shape.edgeAt(x, y, z);
+  }
+
+  private smoothAll(): void {
+    const { mesh } = this;
+    for (let v = 0; v < mesh.vertices; v++) if (mesh.kind[v] === FREE) this.smooth(v);
+  }
+
+  /** Moves a vertex to the middle of its neighbours, on the wall, unless that spoils a triangle. */
+  private smooth(v: number): boolean {
+    const { mesh } = this;
+    const p = mesh.position;
+    const start = mesh.leaving[v]!;
+    let h = start;
+    let worst = 1;
+    let sx = 0;
+    let sy = 0;
+    let sz = 0;
+    let sum = 0;
+    do {
+      const n = mesh.from[mesh.next(h)]!;
+      sx += p[3 * n]!;
+      sy += p[3 * n + 1]!;
+      sz += p[3 * n + 2]!;
+      sum++;
+      const score = mesh.score[(h / 3) | 0]!;
+      if (score < worst) worst = score;
+      h = mesh.twin[mesh.previous(h)]!;
+    } while (h !== start);
+    const x = p[3 * v]!;
+    const y = p[3 * v + 1]!;
+    const z = p[3 * v + 2]!;
+    return this.moveTo(
+      v,
+      x + 0.9 * (sx / sum - x),
+      y + 0.9 * (sy / sum - y),
+      z + 0.9 * (sz / sum - z),
+      Math.min(worst, GOOD),
+    );
+  }
+
+  /** Moves a vertex to a point brought to the wall if all its triangles then score more than `limit`. */
+  private moveTo(v: number, tx: number, ty: number, tz: number, limit: number): boolean {
+    const { mesh, shape } = this;
+    shape.project(tx, ty, tz);
+    const { x, y, z } = shape;
+    const start = mesh.leaving[v]!;
+    let h = start;
+    let at = 0;
+    const scores = this.scores;
+    do {
+      const score = this.scoreAt(x, y, z, mesh.from[mesh.next(h)]!, mesh.from[mesh.previous(h)]!, limit);
+      if (!(score > limit)) return false;
+      scores[at++] = score;
+      h = mesh.twin[mesh.previous(h)]!;
+    } while (h !== start);
+    this.set(v, x, y, z);
+    at = 0;
+    do {
+      mesh.score[(h / 3) | 0] = scores[at++]!;
+      h = mesh.twin[mesh.previous(h)]!;
+    } while (h !== start);
+    return true;
+  }
+
+  private scores = new Float64Array(512);
+
+  /** Works on the triangles of small angle: flips, collapses, then small moves that raise the worst angle of a star. */
+  private mendPoor(): number {
+    const { mesh } = this;
+    let poor = 0;
+    for (let t = 0; t < mesh.triangles; t++) {
+      if (mesh.from[3 * t]! < 0 || mesh.cap[t] === 1 || mesh.score[t]! >= POOR) continue;
+      poor++;
+      if (this.flipAround(t)) continue;
+      if (this.collapseShortest(t)) continue;
+      for (let h = 3 * t; h < 3 * t + 3; h++) {
+        const v = mesh.from[h]!;
+        if (v >= 0 && mesh.kind[v] === FREE) this.raise(v);
+        // The neighbours of a triangle on a rim may have to make room.
+        const w = mesh.from[mesh.previous(mesh.twin[h]!)]!;
+        if (mesh.kind[w] === FREE) this.smooth(w);
+      }
+    }
+    return poor;
+  }
+
+  private flipAround(t: number): boolean {
+    const { mesh } = this;
+    for (let h = 3 * t; h < 3 * t + 3; h++) {
+      if (!mesh.locked(h) && this.tryFlip(h, mesh.twin[h]!)) return true;
+    }
+    return false;
+  }
+
+  private collapseShortest(t: number): boolean {
+    const { mesh } = this;
+    let shortest = Infinity;
+    let edge = -1;
+    for (let h = 3 * t; h < 3 * t + 3; h++) {
+      const square = mesh.squaredLength(mesh.from[h]!, mesh.from[mesh.twin[h]!]!);
+      if (square < shortest) {
+        shortest = square;
+        edge = h;
+      }
+    }
+    const floor = mesh.score[t]! + 1e-3;
+    if (mesh.kind[mesh.from[edge]!] === FREE && this.tryCollapse(edge, floor, 1.15)) return true;
+    const twin = mesh.twin[edge]!;
+    return mesh.kind[mesh.from[twin]!] === FREE && this.tryCollapse(twin, floor, 1.15);
+  }
+
+  /** Pattern search for the place of a vertex that makes the worst triangle of its star best. */
+  private raise(v: number): void {
+    const { mesh, shape } = this;
+    let step = 0.3 * mesh.size[v]!;
+    for (let round = 0; round < 6; round++) {
+      let worst = 1;
+      const start = mesh.leaving[v]!;
+      let h = start;
+      do {
+        const score = mesh.score[(h / 3) | 0]!;
+        if (score < worst) worst = score;
+        h = mesh.twin[mesh.previous(h)]!;
+      } while (h !== start);
+      if (worst > GOOD) return;
+      const x = mesh.position[3 * v]!;
+      const y = mesh.position[3 * v + 1]!;
+      const z = mesh.position[3 * v + 2]!;
+      shape.evaluate(x, y, z);
+      const size = Math.sqrt(shape.gx * shape.gx + shape.gy * shape.gy + shape.gz * shape.gz);
+      const nx = shape.gx / size;
+      const ny = shape.gy / size;
+      const nz = shape.gz / size;
+      // Any tangent, and the one square to it.
+      let ax = Math.abs(nx) < 0.6 ? 1 : 0;
+      let ay = ax === 1 ? 0 : 1;
+      let az = 0;
+      const dot = ax * nx + ay * ny;
+      ax -= dot * nx;
+      ay -= dot * ny;
+      az -= dot * nz;
+      const scale = step / Math.sqrt(ax * ax + ay * ay + az * az);
+      ax *= scale;
+      ay *= scale;
+      az *= scale;
+      const bx = ny * az - nz * ay;
+      const by = nz * ax - nx * az;
+      const bz = nx * ay - ny * ax;
+      let moved = false;
+      for (let k = 0; k < 8 && !moved; k++) {
+        const c = Math.cos((k * Math.PI) / 4);
+        const s = Math.sin((k * Math.PI) / 4);
+        moved = this.moveTo(v, x + c * ax + s * bx, y + c * ay + s * by, z + c * az + s * bz, worst + 1e-4);
+      }
+      if (!moved) step *= 0.5;
+    }
+  }
+
+  private rescore(t: number): void {
+    const { mesh } = this;
+    if (mesh.from[3 * t]! < 0) return;
+    mesh.score[t] =
+      mesh.cap[t] === 1 ? 1 : this.scoreOf(mesh.from[3 * t]!, mesh.from[3 * t + 1]!, mesh.from[3 * t + 2]!, -2);
+  }
+
+  private rescoreStar(v: number): void {
+    const { mesh } = this;
+    const start = mesh.leaving[v]!;
+    let h = start;
+    do {
+      this.rescore((h / 3) | 0);
+      h = mesh.twin[mesh.previous(h)]!;
+    } while (h !== start);
+  }
+
+  private scoreOf(a: number, b: number, c: number, enough: number): number {
+    const p = this.mesh.position;
+    return this.scoreAt(p[3 * a]!, p[3 * a + 1]!, p[3 * a + 2]!, b, c, enough);
+  }
+
+  /** Score of the triangle of a point and two vertices; cut short once it cannot be more than `enough`. */
+  private scoreAt(x: number, y: number, z: number, b: number, c: number, enough: number): number {
+    const { shape } = this;
+    const p = this.mesh.position;
+    const ux = p[3 * b]! - x;
+    const uy = p[3 * b + 1]! - y;
+    const uz = p[3 * b + 2]! - z;
+    const vx = p[3 * c]! - x;
+    const vy = p[3 * c + 1]! - y;
+    const vz = p[3 * c + 2]! - z;
+    const nx = uy * vz - uz * vy;
+    const ny = uz * vx - ux * vz;
+    const nz = ux * vy - uy * vx;
+    const nn = nx * nx + ny * ny + nz * nz;
+    const uu = ux * ux + uy * uy + uz * uz;
+    const vv = vx * vx + vy * vy + vz * vz;
+    const wx = vx - ux;
+    const wy = vy - uy;
+    const wz = vz - uz;
+    const ww = wx * wx + wy * wy + wz * wz;
+    const least = uu < vv ? (uu < ww ? uu : ww) : vv < ww ? vv : ww;
+    const quality = (nn * least) / (uu * vv * ww);
+    if (!(nn > 0)) return -2;
+    if (quality <= enough) return quality;
+    if (this.star) {
+      const depth = (nx * x + ny * y + nz * z) / Math.sqrt(nn) / this.thin;
+      return depth > STAR ? quality : depth - 1 - STAR;
+    }
+    shape.evaluate(x + (ux + vx) / 3, y + (uy + vy) / 3, z + (uz + vz) / 3);
+    const gg = shape.gx * shape.gx + shape.gy * shape.gy + shape.gz * shape.gz;
+    const upright = (nx * shape.gx + ny * shape.gy + nz * shape.gz) / Math.sqrt(nn * gg);
+    return upright > UPRIGHT ? quality : Math.min(upright, UPRIGHT) - 1 - UPRIGHT;
+  }
+}
