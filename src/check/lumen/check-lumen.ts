@@ -33,7 +33,7 @@ const LEGAL_NAME = /^[A-Za-z][A-Za-z0-9_]*$/;
  * Recomputes every promise of a lumen mesh from its files.
  *
  * @throws InputError where a file is not what its name says, naming the lines
- * Cost: about 10 s and 1 GB for 10⁶ triangles.
+ * Cost: O(f log f); 10⁵ triangles take about 3 s.
  */
 export function checkLumen(files: LumenFiles, options: CheckLumenOptions = {}): CheckResult {
   const notes = readMeshNotes('mesh.json', files.notes ? decodeText(files.notes) : null);
