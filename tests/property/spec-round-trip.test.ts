@@ -7,7 +7,8 @@ import { unitsOf } from '../../src/spec/quantity.ts';
 import { specToJson } from '../../src/spec/write.ts';
 import { type Bendable, soundSpec } from '../support/bend-spec.ts';
 
-const SEED = { seed: 20_240_611 };
+// The limit also ends shrinking, which can go on for minutes on values as deep as these.
+const SEED = { seed: 20_240_611, interruptAfterTimeLimit: 20_000, markInterruptAsFailure: true };
 
 const inside = (min: number, max: number) => fc.double({ min, max, noNaN: true });
 const unitOf = (quantity: Quantity): fc.Arbitrary<Unit> => fc.constantFrom(...unitsOf(quantity));
