@@ -4,13 +4,26 @@ import type { Tally } from './result.ts';
 
 /** Points round a ring; the shallowest is then searched for between its neighbours. */
 const AROUND = 16;
-/** Golden-section steps of that search: the angle is then known to 4 mrad, the depth to 1e-5 radii. */
-const NARROWINGS = 12;
-/** Stations along a tube are at most this many radii apart. */
+/** Stations along a tube are at most this many radii apart; the shallowest is then searched for between its neighbours. */
 const SPACING = 0.5;
+/** Golden-section steps of both searches: round the ring, the angle is then known to 4 mrad, the depth to 1e-5 radii. */
+const NARROWINGS = 12;
+
+/** The tube at hand, and two vectors square to it and as long as its radius. */
+interface Tube {
+  r: number;
+  length: number;
+  /** m */
+  readonly from: Float64Array;
+  /** Unit vector along the axis. */
+  readonly along: Float64Array;
+  readonly across: Float64Array;
+  readonly aside: Float64Array;
+}
 
 /**
- * Measures how deep the lumen surface of every tube lies in the tissue.
+ * Measures how deep the lumen of every tube lies in the tissue: its surface, and its axis, so that a hole which lies
+ * within the lumen is not missed either.
  *
  * A stretch of axis of half-length h round a point of depth d holds all its surface points within √(r² + h²) of that
  * point, so they lie at least d − √(r² + h²) deep. Stretches are halved until that bound shows them to be neither
@@ -18,154 +31,164 @@ const SPACING = 0.5;
  * cost one look-up.
  *
  * @param exempt (n) 1 where a tube is not looked at
- * @param tally  sees one value a vessel: its shallowest surface point met, in m
+ * @param tally  sees one value a vessel: its shallowest point met, in m
  */
 export function measureContainment(forest: Forest, region: Region, exempt: Uint8Array, tally: Tally): void {
-  const { count, parent, position, radius } = forest;
-  const { depth } = region;
+  const { count, parent } = forest;
   const low = new Float64Array(256);
   const high = new Float64Array(256);
-  const ring = new Float64Array(9);
+  const vector = () => new Float64Array(3);
+  const tube: Tube = { r: 0, length: 0, from: vector(), along: vector(), across: vector(), aside: vector() };
   for (let i = 0; i < count; i++) {
-    const p = parent[i]!;
-    if (p < 0 || exempt[i] === 1) continue;
-    const r = radius[i]!;
-    const ax = position[3 * p]!;
-    const ay = position[3 * p + 1]!;
-    const az = position[3 * p + 2]!;
-    let ux = position[3 * i]! - ax;
-    let uy = position[3 * i + 1]! - ay;
-    let uz = position[3 * i + 2]! - az;
-    const length = Math.hypot(ux, uy, uz);
-    if (length > 0) {
-      ux /= length;
-      uy /= length;
-      uz /= length;
-    } else ux = 1;
-    const enough = Math.max(0, Number.isNaN(tally.worst) ? Infinity : tally.worst);
+    if (parent[i]! < 0 || exempt[i] === 1) continue;
+    layTube(tube, forest, i);
+    const { r, length, from, along } = tube;
+    const worst = Number.isNaN(tally.worst) ? Infinity : tally.worst;
+    // Depths from here on need not be known: the vessel is no finding and not the worst. Once it is a finding that will
+    // not be listed, only a new worst is of interest.
+    let enough = Math.max(0, worst);
     let shallowest = Infinity;
+    let place = 0;
+    const look = (s: number) => {
+      const depth = measureRing(region, tube, s, enough);
+      if (depth >= shallowest) return;
+      shallowest = depth;
+      place = s;
+      if (tally.failures >= tally.head.cap && tally.breaks(depth)) enough = Math.min(worst, depth);
+    };
     let top = 0;
     low[0] = 0;
     high[top++] = length;
     let whole = true;
     while (top > 0) {
       top--;
-      const from = low[top]!;
-      const to = high[top]!;
-      const half = 0.5 * (to - from);
-      const s = from + half;
-      const bound = depth(ax + s * ux, ay + s * uy, az + s * uz) - Math.sqrt(r * r + half * half);
-      if (bound >= enough) continue;
+      const a = low[top]!;
+      const b = high[top]!;
+      const half = 0.5 * (b - a);
+      const s = a + half;
+      const middle = region.depth(from[0]! + s * along[0]!, from[1]! + s * along[1]!, from[2]! + s * along[2]!);
+      if (middle - Math.sqrt(r * r + half * half) >= enough) continue;
       if (whole) {
-        // The two rims; with them the ends of the tube are measured, not only bounded.
-        frame(ring, ux, uy, uz, r);
-        shallowest = Math.min(shallowest, measureRing(region, ring, ax, ay, az, r, enough));
-        shallowest = Math.min(
-          shallowest,
-          measureRing(region, ring, ax + length * ux, ay + length * uy, az + length * uz, r, enough),
-        );
         whole = false;
+        squareUp(tube);
+        look(0);
+        look(length);
       }
       if (2 * half <= SPACING * r || top > 250) {
-        shallowest = Math.min(shallowest, measureRing(region, ring, ax + s * ux, ay + s * uy, az + s * uz, r, enough));
+        look(s);
         continue;
       }
-      low[top] = from;
+      low[top] = a;
       high[top++] = s;
       low[top] = s;
-      high[top++] = to;
+      high[top++] = b;
+    }
+    // Between two stations the depth can fall by no more than half their distance.
+    if (shallowest - 0.5 * SPACING * r < enough) {
+      const a = Math.max(0, place - SPACING * r);
+      const b = Math.min(length, place + SPACING * r);
+      shallowest = Math.min(
+        shallowest,
+        leastBetween(a, b, (s) => measureRing(region, tube, s, enough)),
+      );
     }
     if (shallowest < Infinity) tally.see(shallowest, i);
     else tally.checked++;
   }
 }
 
-/** Two vectors of length r square to a unit vector u and to each other, into ring[0…5]. */
-function frame(ring: Float64Array, ux: number, uy: number, uz: number, r: number): void {
-  // Square to u and to the coordinate axis least along u.
+function layTube(tube: Tube, forest: Forest, row: number): void {
+  const { position } = forest;
+  const parent = forest.parent[row]!;
+  tube.r = forest.radius[row]!;
+  for (let k = 0; k < 3; k++) {
+    tube.from[k] = position[3 * parent + k]!;
+    tube.along[k] = position[3 * row + k]! - position[3 * parent + k]!;
+  }
+  tube.length = Math.hypot(tube.along[0]!, tube.along[1]!, tube.along[2]!);
+  if (tube.length > 0) for (let k = 0; k < 3; k++) tube.along[k]! /= tube.length;
+  else tube.along[0] = 1;
+}
+
+/** Fills in the two vectors square to a tube's axis. */
+function squareUp(tube: Tube): void {
+  const [ux, uy, uz] = tube.along as unknown as [number, number, number];
+  // Square to the axis and to the coordinate axis least along it.
   const x = Math.abs(ux);
   const y = Math.abs(uy);
   const z = Math.abs(uz);
-  let ex = 0;
-  let ey = 0;
-  let ez = 0;
-  if (x <= y && x <= z) {
-    ey = -uz;
-    ez = uy;
-  } else if (y <= z) {
-    ex = uz;
-    ez = -ux;
-  } else {
-    ex = -uy;
-    ey = ux;
-  }
-  const scale = r / Math.hypot(ex, ey, ez);
-  ex *= scale;
-  ey *= scale;
-  ez *= scale;
-  ring[0] = ex;
-  ring[1] = ey;
-  ring[2] = ez;
-  ring[3] = uy * ez - uz * ey;
-  ring[4] = uz * ex - ux * ez;
-  ring[5] = ux * ey - uy * ex;
+  const [ex, ey, ez] = x <= y && x <= z ? [0, -uz, uy] : y <= z ? [uz, 0, -ux] : [-uy, ux, 0];
+  const scale = tube.r / Math.hypot(ex, ey, ez);
+  const { across, aside } = tube;
+  across[0] = ex * scale;
+  across[1] = ey * scale;
+  across[2] = ez * scale;
+  aside[0] = uy * across[2]! - uz * across[1]!;
+  aside[1] = uz * across[0]! - ux * across[2]!;
+  aside[2] = ux * across[1]! - uy * across[0]!;
 }
 
-/** Least depth met on the circle of a ring's vectors round a centre. */
-function measureRing(
-  region: Region,
-  ring: Float64Array,
-  x: number,
-  y: number,
-  z: number,
-  r: number,
-  enough: number,
-): number {
-  // No point of the circle is more than r shallower than its centre.
-  const middle = region.depth(x, y, z) - r;
-  if (middle >= enough) return middle;
+/** Least depth met on the axis and on the ring at s metres along a tube; above `enough` it may be a bound from below. */
+function measureRing(region: Region, tube: Tube, s: number, enough: number): number {
+  const { r, from, along, across, aside } = tube;
+  const x = from[0]! + s * along[0]!;
+  const y = from[1]! + s * along[1]!;
+  const z = from[2]! + s * along[2]!;
+  const middle = region.depth(x, y, z);
+  // No point of the ring is more than r shallower than its centre.
+  if (middle - r >= enough) return middle - r;
   const at = (angle: number) => {
     const c = Math.cos(angle);
-    const s = Math.sin(angle);
+    const d = Math.sin(angle);
     return region.depth(
-      x + c * ring[0]! + s * ring[3]!,
-      y + c * ring[1]! + s * ring[4]!,
-      z + c * ring[2]! + s * ring[5]!,
+      x + c * across[0]! + d * aside[0]!,
+      y + c * across[1]! + d * aside[1]!,
+      z + c * across[2]! + d * aside[2]!,
     );
   };
   const step = (2 * Math.PI) / AROUND;
   let best = Infinity;
   let angle = 0;
   for (let k = 0; k < AROUND; k++) {
-    const d = at(k * step);
-    if (d < best) {
-      best = d;
+    const depth = at(k * step);
+    if (depth < best) {
+      best = depth;
       angle = k * step;
     }
   }
   // No point of the circle is farther than half a step from a ring point.
-  if (best - 2 * r * Math.sin(0.25 * step) >= enough) return best;
+  if (best - 2 * r * Math.sin(0.25 * step) < enough) {
+    best = Math.min(best, leastBetween(angle - step, angle + step, at));
+  }
+  return Math.min(best, middle);
+}
+
+/** Least value met by golden-section search between two places. */
+function leastBetween(from: number, to: number, value: (at: number) => number): number {
   const golden = 0.6180339887498949;
-  let a = angle - step;
-  let b = angle + step;
+  let a = from;
+  let b = to;
   let c = b - golden * (b - a);
   let d = a + golden * (b - a);
-  let atC = at(c);
-  let atD = at(d);
+  let atC = value(c);
+  let atD = value(d);
+  let least = Math.min(atC, atD);
   for (let k = 0; k < NARROWINGS; k++) {
     if (atC < atD) {
       b = d;
       d = c;
       atD = atC;
       c = b - golden * (b - a);
-      atC = at(c);
+      atC = value(c);
+      least = Math.min(least, atC);
     } else {
       a = c;
       c = d;
       atC = atD;
       d = a + golden * (b - a);
-      atD = at(d);
+      atD = value(d);
+      least = Math.min(least, atD);
     }
   }
-  return Math.min(best, atC, atD);
+  return least;
 }
