@@ -16,6 +16,7 @@ import { fillPanel } from './vessel-panel.ts';
 import { wayToRoot } from './way.ts';
 
 const PAPER: Colour = [0.965, 0.961, 0.945];
+const SHEET: Colour = [0.992, 0.988, 0.98];
 const INK: Colour = [0.09, 0.145, 0.176];
 const ACCENT: Colour = [0.78, 0.16, 0.12];
 
@@ -187,7 +188,7 @@ export class Application {
   /** Lists tree files and opens the first. */
   async #offer(sources: Source[]): Promise<void> {
     if (sources.length === 0) {
-      this.#fail('Got no tree file, expected a run with its tree.vtp, or one of .vtp, .json, .csv, .swc.');
+      this.#fail('Got no tree file, expected a run with its tree.vtp, or one of .vtp, .json, .swc.');
       return;
     }
     this.#sources = sources;
@@ -370,6 +371,7 @@ export class Application {
       camera: stage.camera,
       metres: 1 / this.#scene.scale,
       ink: cssOf(INK),
+      sheet: cssOf(SHEET),
     });
     pen.setTransform(1, 0, 0, 1, 0, 0);
   }

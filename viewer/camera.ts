@@ -18,13 +18,48 @@ const STEEPEST = Math.PI / 2 - 1e-3;
 const NEAREST = 0.004;
 const FARTHEST = 20;
 
+/** The direction that a result opens with: from the front, a little above. */
+export function homeCamera(perspective: boolean): Camera {
+  return { target: [0, 0, 0], azimuth: -Math.PI / 3, elevation: Math.PI / 9, distance: 3.6, perspective };
+}
+
+/** Part of the picture's width and height that a fitted view fills. */
+const FILL = 0.88;
+
 /**
- * The view that a result opens with: from the front, a little above, all of it in sight.
+ * The same direction, placed so that all points are in sight and fill the picture.
  *
- * @param reach radius in scene units of what is to be seen round the origin
+ * @param lists each (3 × points, stride apart) x, y, z in scene units; the middle of their box is looked at
  */
-export function homeCamera(perspective: boolean, reach = 1): Camera {
-  return { target: [0, 0, 0], azimuth: -Math.PI / 3, elevation: Math.PI / 9, distance: 3.6 * reach, perspective };
+export function fitted(
+  camera: Camera,
+  aspect: number,
+  lists: readonly { readonly points: ArrayLike<number>; readonly stride: number }[],
+): Camera {
+  const low = [Infinity, Infinity, Infinity];
+  const high = [-Infinity, -Infinity, -Infinity];
+  for (const { points, stride } of lists) {
+    for (let i = 0; i + 2 < points.length; i += stride) {
+      for (let k = 0; k < 3; k++) {
+        low[k] = Math.min(low[k]!, points[i + k]!);
+        high[k] = Math.max(high[k]!, points[i + k]!);
+      }
+    }
+  }
+  if (!(low[0]! <= high[0]!)) return camera;
+  const target = low.map((x, k) => 0.5 * (x + high[k]!)) as [number, number, number];
+  const { right, up, forward } = frameOf(camera);
+  const tall = 0.5 * OPENING * FILL;
+  const wide = tall * aspect;
+  let distance = NEAREST;
+  for (const { points, stride } of lists) {
+    for (let i = 0; i + 2 < points.length; i += stride) {
+      const w: Vector = [points[i]! - target[0], points[i + 1]! - target[1], points[i + 2]! - target[2]];
+      const needed = Math.max(Math.abs(dot(w, right)) / wide, Math.abs(dot(w, up)) / tall);
+      distance = Math.max(distance, camera.perspective ? needed - dot(w, forward) : needed);
+    }
+  }
+  return { ...camera, target, distance: Math.min(FARTHEST, distance) };
 }
 
 /** Unit vectors to the right, up and into the picture, and the eye. */

@@ -59,12 +59,24 @@ export function describeLegend(
   };
 }
 
+const TITLE_FONT = '600 13px system-ui, sans-serif';
+const TEXT_FONT = '12px system-ui, sans-serif';
 const BAR = { width: 14, height: 190 };
 
 /** Height in CSS pixels that drawLegend will use. */
 export function legendHeight(legend: Legend): number {
   const body = legend.swatches.length > 0 ? 20 * legend.swatches.length : BAR.height + 16;
   return 26 + body + (legend.rings ? 44 : 0);
+}
+
+/** Width in CSS pixels that drawLegend will use. */
+export function legendWidth(pen: CanvasRenderingContext2D, legend: Legend): number {
+  pen.font = TITLE_FONT;
+  let widest = pen.measureText(legend.title).width;
+  pen.font = TEXT_FONT;
+  for (const { label } of legend.ticks) widest = Math.max(widest, BAR.width + 9 + pen.measureText(label).width);
+  for (const { label } of legend.swatches) widest = Math.max(widest, 34 + pen.measureText(label).width);
+  return widest;
 }
 
 /** Draws with its top left corner at x, y. */
@@ -74,9 +86,9 @@ export function drawLegend(pen: CanvasRenderingContext2D, legend: Legend, x: num
   pen.lineWidth = 1;
   pen.textBaseline = 'middle';
   pen.textAlign = 'left';
-  pen.font = '600 13px system-ui, sans-serif';
+  pen.font = TITLE_FONT;
   pen.fillText(legend.title, x, y + 8);
-  pen.font = '12px system-ui, sans-serif';
+  pen.font = TEXT_FONT;
   let at = y + 26;
   if (legend.swatches.length > 0) {
     for (const swatch of [...legend.swatches].reverse()) {

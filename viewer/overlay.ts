@@ -1,5 +1,5 @@
 import { type Camera, frameOf, OPENING } from './camera.ts';
-import { drawLegend, type Legend, legendHeight } from './legend.ts';
+import { drawLegend, type Legend, legendHeight, legendWidth } from './legend.ts';
 import { readable } from './readable.ts';
 
 /** Everything drawn over the vessels: legend, length bar, directions. */
@@ -9,14 +9,37 @@ export interface Overlay {
   /** Metres a scene unit. */
   readonly metres: number;
   readonly ink: string;
+  /** Behind the writing, so that it reads over vessels too. */
+  readonly sheet: string;
 }
 
 /** Draws in CSS pixels on a canvas of this size; the same call serves the screen and the saved picture. */
 export function drawOverlay(pen: CanvasRenderingContext2D, width: number, height: number, overlay: Overlay): void {
   const { legend, camera, ink } = overlay;
-  if (legend !== null) drawLegend(pen, legend, 18, height - 18 - legendHeight(legend), ink);
+  if (legend !== null) {
+    const tall = legendHeight(legend);
+    const wide = legendWidth(pen, legend);
+    drawSheet(pen, 10, height - 26 - tall, wide + 18, tall + 16, overlay.sheet);
+    drawLegend(pen, legend, 18, height - 18 - tall, ink);
+  }
   drawLengthBar(pen, width, height, overlay);
   drawDirections(pen, width - 46, height - 46, camera, ink);
+}
+
+function drawSheet(
+  pen: CanvasRenderingContext2D,
+  x: number,
+  y: number,
+  width: number,
+  height: number,
+  sheet: string,
+): void {
+  pen.globalAlpha = 0.84;
+  pen.fillStyle = sheet;
+  pen.beginPath();
+  pen.roundRect(x, y, width, height, 5);
+  pen.fill();
+  pen.globalAlpha = 1;
 }
 
 /** Longest length of 1, 2 or 5 times a power of ten that is at most `most` metres, and how it is written. */
@@ -33,8 +56,13 @@ function drawLengthBar(pen: CanvasRenderingContext2D, width: number, height: num
   const metresPerPixel = (OPENING * overlay.camera.distance * overlay.metres) / height;
   const { length, label } = barLength(150 * metresPerPixel);
   const size = length / metresPerPixel;
-  const right = width - 96;
+  // In perspective a length holds at one depth only.
+  const text = overlay.camera.perspective ? `${label} at the centre` : label;
+  pen.font = '12px system-ui, sans-serif';
+  const wide = Math.max(size, pen.measureText(text).width);
+  const right = width - 100 - (wide - size) / 2;
   const y = height - 26.5;
+  drawSheet(pen, width - 108 - wide, height - 90, wide + 98, 80, overlay.sheet);
   pen.strokeStyle = overlay.ink;
   pen.fillStyle = overlay.ink;
   pen.lineWidth = 1.5;
@@ -44,11 +72,9 @@ function drawLengthBar(pen: CanvasRenderingContext2D, width: number, height: num
   pen.lineTo(right, y);
   pen.lineTo(right, y - 4);
   pen.stroke();
-  pen.font = '12px system-ui, sans-serif';
   pen.textAlign = 'center';
   pen.textBaseline = 'alphabetic';
-  // In perspective a length holds at one depth only.
-  pen.fillText(overlay.camera.perspective ? `${label} at the centre` : label, right - size / 2, y - 8);
+  pen.fillText(text, right - size / 2, y - 8);
 }
 
 function drawDirections(pen: CanvasRenderingContext2D, x: number, y: number, camera: Camera, ink: string): void {

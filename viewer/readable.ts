@@ -13,7 +13,7 @@ export function readable(value: number, digits = 4): string {
 
 /** A whole number with thin spaces between thousands. */
 export function grouped(count: number): string {
-  return String(count).replace(/\B(?=(\d{3})+$)/g, ' ');
+  return String(count).replace(/\B(?=(\d{3})+$)/g, '\u2009');
 }
 
 function trim(text: string): string {

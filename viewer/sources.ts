@@ -7,9 +7,10 @@ export interface Source {
   readonly read: () => Promise<Uint8Array>;
 }
 
-const TREE_ENDINGS = ['.vtp', '.swc', '.csv', '.json'];
+/** Formats of one file; a tree in two tables (.csv) is for the command line. */
+const TREE_ENDINGS = ['.vtp', '.swc', '.json'];
 /** Files of a run or a mesh folder that may come along and hold no tree. */
-const COMPANIONS = ['report.json', 'spec.json', 'mesh.json', 'boundary.csv', 'network.csv', 'lumen.vtp'];
+const COMPANIONS = ['report.json', 'spec.json', 'mesh.json', 'lumen.vtp'];
 
 /** A file with the folder it was found in; '' where that is not known. */
 export interface Found {

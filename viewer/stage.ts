@@ -1,5 +1,5 @@
 import * as three from 'three';
-import { type Camera, frameOf, homeCamera, OPENING } from './camera.ts';
+import { type Camera, fitted, frameOf, homeCamera, OPENING } from './camera.ts';
 import type { Palette } from './colours.ts';
 import { drawnRadius, type Hiding, type Scene } from './scene.ts';
 import { buildTubes, LEAST_PIXELS, type TubeColours, type Tubes } from './tubes.ts';
@@ -32,6 +32,7 @@ export class Stage {
   #perspective = new three.PerspectiveCamera();
   #parallel = new three.OrthographicCamera();
   #tubes: Tubes | null = null;
+  #scene: Scene | null = null;
   #ghost: three.LineSegments | null = null;
   #reach = EMPTY_REACH;
   #wanted = 0;
@@ -96,6 +97,7 @@ export class Stage {
       this.#ghost = null;
     }
     this.#reach = EMPTY_REACH;
+    this.#scene = scene;
     if (scene !== null) {
       this.#tubes = buildTubes(scene, this.#colours);
       this.#world.add(this.#tubes.mesh);
@@ -117,8 +119,12 @@ export class Stage {
 
   /** The view of all that is shown. */
   home(): Camera {
-    const ghost = this.#ghost?.visible ? this.#reach : 1;
-    return homeCamera(this.camera.perspective, Math.max(1, 0.92 * ghost));
+    const start = homeCamera(this.camera.perspective);
+    const lists = [];
+    // Vessels lie four numbers apart: both ends, with their radii between.
+    if (this.#scene !== null) lists.push({ points: this.#scene.ends.subarray(0, 8 * this.#scene.count), stride: 4 });
+    if (this.#ghost?.visible) lists.push({ points: this.#ghost.geometry.getAttribute('position').array, stride: 3 });
+    return fitted(start, this.aspect, lists);
   }
 
   set ghostVisible(visible: boolean) {
@@ -216,7 +222,7 @@ export class Stage {
     const placed = camera.perspective ? this.#perspective : this.#parallel;
     placed.far = depth + this.#reach;
     // In a parallel view the near plane may lie behind the eye: nothing is ever too near.
-    placed.near = camera.perspective ? Math.max(0.002, depth - this.#reach) : depth - this.#reach;
+    placed.near = camera.perspective ? Math.max(0.02 * camera.distance, depth - this.#reach) : depth - this.#reach;
     placed.far = Math.max(placed.far, placed.near + 0.01);
     if (placed instanceof three.PerspectiveCamera) {
       placed.fov = (360 / Math.PI) * Math.atan(half);

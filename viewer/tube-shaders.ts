@@ -14,6 +14,7 @@ precision highp int;
 uniform vec3 eye;
 uniform vec3 forward;
 uniform bool perspective;
+uniform float pixel;      // one pixel in scene units, at distance 1 (parallel: anywhere)
 `;
 
 export const TUBE_VERTEX = /* glsl */ `${SHARED}
@@ -26,7 +27,6 @@ uniform sampler2D valuesMap;
 uniform usampler2D marksMap;
 uniform vec3 rightEdge;   // from the middle of the picture to its edge, at distance 1 (parallel: in scene units)
 uniform vec3 topEdge;
-uniform float pixel;      // one pixel in scene units, at distance 1 (parallel: anywhere)
 uniform float leastPixels;
 uniform float thinnest;
 uniform float lowestOrder;
@@ -34,7 +34,7 @@ uniform bool hasWay;
 
 flat out vec4 tubeA;
 flat out vec4 tubeB;
-flat out vec3 tubeValues; // values at both ends; half width in pixels
+flat out vec2 tubeValues; // at both ends
 flat out int tubeMarks;
 out vec3 onPlane;
 
@@ -66,7 +66,7 @@ void main() {
   b.w = max(b.w, least);
   tubeA = a;
   tubeB = b;
-  tubeValues = vec3(texelFetch(valuesMap, cell, 0).rg, max(a.w, b.w) / pixelHere);
+  tubeValues = texelFetch(valuesMap, cell, 0).rg;
 
   vec2 corner = vec2(float(gl_VertexID & 1), float((gl_VertexID >> 1) & 1));
   vec3 toA = a.xyz - eye;
@@ -119,7 +119,7 @@ uniform vec3 accent;
 
 flat in vec4 tubeA;
 flat in vec4 tubeB;
-flat in vec3 tubeValues;
+flat in vec2 tubeValues;
 flat in int tubeMarks;
 in vec3 onPlane;
 out vec4 colour;
@@ -187,7 +187,8 @@ void main() {
   float s = k > 0.0 ? clamp((dot(p, u) - ra * e) / k, 0.0, 1.0) : (ra > rb ? 0.0 : 1.0);
   vec3 outward = p - s * u;
   float radius = ra - s * e;
-  float pixels = tubeValues.z;
+  // Half width in pixels, here: a long vessel may be near at one end and far at the other.
+  float pixels = radius / (perspective ? pixel * (start + t) : pixel);
 
   float axial = uu > 0.0 ? clamp(dot(p, u) / uu, 0.0, 1.0) : 0.0;
   float value = mix(tubeValues.x, tubeValues.y, axial);
@@ -209,22 +210,28 @@ void main() {
     vec3 n = outward / radius;
     float facing = clamp(-dot(n, d), 0.0, 1.0);
     float lit = clamp(dot(n, normalize(-d + 0.55 * up - 0.4 * right)), 0.0, 1.0);
-    float sideways = sqrt(1.0 - facing * facing);
+    // How far out towards the outline, 0 to 1. Along a tube this must not count how steeply it points at the eye.
+    vec3 across = cross(d, u);
+    float sideways = s > 0.0 && s < 1.0 ? abs(dot(n, across)) * inversesqrt(max(dot(across, across), 1e-30))
+                                        : sqrt(1.0 - facing * facing);
     rim = smoothstep(-1.7, -0.5, (sideways - 1.0) * pixels);
     float shade = mix(0.94, 0.6 + 0.2 * facing + 0.27 * lit, inkiness);
     base *= shade;
     if (drain) {
-      // Rings round draining vessels, dark beside light so that they show on any colour. Their pitch follows the
-      // width, but never falls under ten pixels.
+      // Rings round draining vessels: one that stands out from the colour, and beside it, where there is room, one of
+      // the other kind. Their pitch follows the width, but never falls under ten pixels.
       float wide = max(ra, rb);
-      float size = wide / pixels;
-      float pitch = 2.8 * wide;
+      float size = radius / pixels;
+      float pitch = 3.4 * wide;
       pitch *= exp2(ceil(max(0.0, log2(10.0 * size / pitch))));
       float phase = fract(dot(p, u) * inversesqrt(max(uu, 1e-30)) / pitch) * pitch / size;
       float part = pitch / size;
-      float dark = clamp(phase + 0.5, 0.0, 1.0) * clamp(0.26 * part - phase + 0.5, 0.0, 1.0);
-      float light = clamp(phase - 0.26 * part + 0.5, 0.0, 1.0) * clamp(0.4 * part - phase + 0.5, 0.0, 1.0);
-      base = mix(mix(base, ink, 0.8 * dark), vec3(0.96) * shade, 0.85 * light);
+      float first = clamp(phase + 0.5, 0.0, 1.0) * clamp(0.18 * part - phase + 0.5, 0.0, 1.0);
+      float second = clamp(phase - 0.18 * part + 0.5, 0.0, 1.0) * clamp(0.27 * part - phase + 0.5, 0.0, 1.0);
+      bool dim = dot(base, vec3(0.3, 0.59, 0.11)) < 0.42;
+      vec3 light = vec3(0.97) * shade;
+      base = mix(base, dim ? light : ink, 0.85 * first);
+      base = mix(base, dim ? ink : light, 0.85 * inkiness * second);
     }
   }
   vec3 shown = mix(base, ink, 0.8 * rim * inkiness);
@@ -232,10 +239,11 @@ void main() {
   else if (hasWay && !onWay) shown = mix(shown, paper, 0.78);
   colour = vec4(shown, 1.0);
 
-  vec4 hit = vec4(tubeA.xyz + p, 1.0);
+  // Cut faces that overlap lie in one plane: the vessel that holds the point deepest comes forward, so that they do not
+  // flicker and no rim shows inside another's face. Before a cut face everything is cut away.
+  float forth = cut ? 0.1 * (radius - length(outward)) : 0.0;
+  vec4 hit = vec4(tubeA.xyz + p - forth * d, 1.0);
   float depth = 0.5 + 0.5 * dot(depthRow, hit) / dot(clipRow, hit);
-  // Cut faces that overlap lie in one plane: the vessel that holds the point deepest wins, so they do not flicker.
-  if (cut) depth += 2e-6 * (length(outward) / radius);
   if (hasWay) depth = onWay ? 0.02 * depth : 0.02 + 0.98 * depth;
   gl_FragDepth = depth;
 }

@@ -62,7 +62,7 @@ export function buildViewerTree(plans: readonly Plan[], solved = true): TreeReco
     order: strahlerOrders(forest) as Rows,
     provenance: JSON.stringify({
       name: 'viewer test',
-      tissue: { shape: 'box', min_mm: [0, -6, -5], max_mm: [16, 6, 5] },
+      tissue: { shape: 'box', min_mm: [0, -6.5, -2], max_mm: [16, 3.2, 4.7] },
       trees: plans.map(({ name, kind }) => ({ name, kind })),
     }),
   };
