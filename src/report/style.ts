@@ -21,6 +21,7 @@ th, td { padding: 0.25rem 0.6rem; border-bottom: 1px solid var(--rule); text-ali
 th { border-bottom: 1px solid var(--ink); font-weight: bold; vertical-align: bottom; }
 th:first-child, td:first-child { padding-left: 0; }
 .text { text-align: left; }
+td:not(.text), .no { white-space: nowrap; }
 .no { padding: 0 0.4rem; background: var(--ink); color: #fff; }
 .plots { display: grid; grid-template-columns: repeat(auto-fill, minmax(20rem, 1fr)); gap: 1.2rem 1.5rem; }
 figure { margin: 0; break-inside: avoid; }
