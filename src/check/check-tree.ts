@@ -33,7 +33,7 @@ export interface CheckTreeOptions {
  *
  * @param record   any tree; nothing is assumed of it
  * @param spec     what was asked for, or null: promises that need it are then said to be unchecked
- * @param surfaces surfaces (m) that the spec's tissue names, by their `file`
+ * @param surfaces surfaces that the spec's tissue names, by their `file`, in the file's own unit
  * Lengths are compared with a slack of 1e-9 of the tissue's (or the tree's) size.
  */
 export function checkTree(

@@ -1,4 +1,5 @@
 import type { TriangleSurface } from '../core/surface.ts';
+import { toSi } from '../core/units.ts';
 import type { Shape, Triple } from '../spec/types.ts';
 import { measureEllipsoid } from './ellipsoid-depth.ts';
 import { measureSurface } from './surface-depth.ts';
@@ -33,7 +34,7 @@ export function missingSurfaces(shape: Shape, surfaces: ReadonlyMap<string, Tria
   }
 }
 
-/** A tissue without its forbidden parts. Every surface named must be in the map. */
+/** A tissue without its forbidden parts. Every surface named must be in the map, in its file's own unit. */
 export function measureTissue(
   tissue: Shape,
   forbidden: readonly Shape[],
@@ -48,7 +49,7 @@ export function measureTissue(
       );
 }
 
-/** A shape of any kind. Every surface named must be in the map. */
+/** A shape of any kind. Every surface named must be in the map, in its file's own unit. */
 export function measureShape(shape: Shape, surfaces: ReadonlyMap<string, TriangleSurface>): Region {
   switch (shape.shape) {
     case 'box':
@@ -60,7 +61,7 @@ export function measureShape(shape: Shape, surfaces: ReadonlyMap<string, Triangl
     case 'cylinder':
       return measureCylinder(shape.from, shape.to, shape.radius);
     case 'surface':
-      return measureSurface(surfaces.get(shape.file)!);
+      return measureSurface(inMetres(surfaces.get(shape.file)!, toSi(1, shape.unit)));
     case 'union': {
       const parts = shape.parts.map((part) => measureShape(part, surfaces));
       return {
@@ -91,6 +92,10 @@ export function measureShape(shape: Shape, surfaces: ReadonlyMap<string, Triangl
         shape.minus.map((part) => measureShape(part, surfaces)),
       );
   }
+}
+
+function inMetres(surface: TriangleSurface, unit: number): TriangleSurface {
+  return unit === 1 ? surface : { ...surface, position: surface.position.map((x) => x * unit) };
 }
 
 function without(of: Region, minus: readonly Region[]): Region {

@@ -119,7 +119,7 @@ test('random tubes in a hollow ball, against dense sampling', () => {
 });
 
 describe('in a tissue from a spec', () => {
-  const surface = cube(0.02);
+  const surface = cube(20);
   const spec = (tissue: Shape, forbidden: Shape[] = []): Spec => ({ ...HAND_SPEC, tissue, forbidden });
   const good = buildRecord(HAND_TREE, HAND_SPEC);
   const containment = (of: Spec, surfaces: ReadonlyMap<string, TriangleSurface> = NONE, record = good) => {
