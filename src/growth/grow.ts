@@ -3,16 +3,15 @@ import { randomStream } from '../core/random.ts';
 import { rootOf } from '../physics/junction.ts';
 import { fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
 import type { Spec, TreeSpec } from '../spec/types.ts';
-import { createSites, spacedSites } from '../tissue/sites.ts';
+import { createSites } from '../tissue/sites.ts';
+import { spacedSites } from '../tissue/spaced-sites.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { Demand } from './demand.ts';
-import { firstGuess, Grower, type Stopped } from './grower.ts';
+import { firstGuess, Grower, SPARE, type Stopped } from './grower.ts';
 import { farthestFirst } from './point-order.ts';
 
-/** Terminals of the small tree that is grown first where radii depend on the tree's lengths. */
+/** Terminals of the small tree that is grown first where radii depend on the tree's lengths; a twentieth if that is more. */
 const REHEARSAL = 200;
-/** First vessels are planted this much wider than foreseen, so that a longer tree still fits its stub. */
-const SPARE = 1.06;
 /** Times a tree is grown anew because its first vessel came out wider than planted. */
 const RESTARTS = 6;
 
@@ -44,12 +43,9 @@ export function growForest(
     let stopped = grower.grow();
     if (stopped !== 'cancelled') stopped = grower.finish();
     if (stopped === 'cancelled' || guess === null || attempt >= RESTARTS) return { grower, stopped };
-    const tight = grower.builder.inletRadius.map((radius, t) => unknown[t]! && radius > grower.planted[t]!);
-    if (!tight.includes(true) && stopped === 'complete') return { grower, stopped };
-    if (!tight.includes(true) && grower.misfits().length === 0) return { grower, stopped };
-    guess = guess.map((radius, t) =>
-      tight[t] ? 1.04 * Math.max(grower.builder.inletRadius[t]!, 1.1 * radius) : radius,
-    );
+    if (!grower.cramped && (stopped === 'complete' || grower.misfits().length === 0)) return { grower, stopped };
+    const needed = grower.foresee(demands.map((demand) => demand.wanted));
+    guess = guess.map((radius, t) => (unknown[t]! ? Math.max(SPARE * needed[t]!, 1.05 * radius) : radius));
   }
 }
 
@@ -57,15 +53,17 @@ export function growForest(
 function rehearse(spec: Spec, tissue: Tissue, unknown: readonly boolean[], salt: number): number[] {
   let guess = spec.trees.map((_, t) => (unknown[t] ? 1.6 * firstGuess(spec, t, tissue) : Number.NaN));
   for (let attempt = 0; ; attempt++) {
-    const demands = spec.trees.map((tree, t) => demandOf(spec, tree, t, tissue, guess, salt, [], REHEARSAL));
+    const demands = spec.trees.map((tree, t) => {
+      const most = tree.terminals.by === 'count' ? Math.max(REHEARSAL, tree.terminals.count / 20) : REHEARSAL;
+      return demandOf(spec, tree, t, tissue, guess, salt, [], Math.round(most));
+    });
     const grower = new Grower(spec, tissue, demands, guess);
     grower.grow();
     const radii = grower.foresee(spec.trees.map((tree, t) => wantedBy(tree, demands[t]!)));
-    const tight = radii.map((_, t) => unknown[t]! && grower.builder.inletRadius[t]! > grower.planted[t]!);
-    if (!tight.includes(true) || attempt >= RESTARTS) {
+    if (!grower.cramped || attempt >= RESTARTS) {
       return radii.map((radius, t) => (unknown[t] ? SPARE * radius : Number.NaN));
     }
-    guess = guess.map((radius, t) => (tight[t] ? 1.4 * radius : radius));
+    guess = guess.map((radius, t) => Math.max(1.4 * radius, SPARE * radii[t]!));
   }
 }
 

@@ -17,6 +17,8 @@ const REFRESH = 1.15;
 const CELL = 0.9;
 /** Radius certified over radius needed. */
 const HEADROOM = 1.03;
+/** First vessels are planted this much wider than foreseen, so that a longer tree still fits its stub. */
+export const SPARE = 1.06;
 /** Rounds of sizing, evicting and growing again before what is left is dropped. */
 const ROUNDS = 24;
 
@@ -49,6 +51,8 @@ export class Grower {
   private readonly wanted: number;
   /** (rows) site of a terminal's row in its tree's demand; −1 elsewhere. */
   private siteOf = new Int32Array(1024).fill(-1);
+  /** Set when a first vessel needs a wider stub than was planted: the tree must be planted anew. */
+  cramped = false;
   private nextRefresh = 2;
   private nextGrid = 8;
 
@@ -84,7 +88,7 @@ export class Grower {
       const radius = resized ? (inletGuess?.[t] ?? 1.6 * firstGuess(spec, t, tissue)) : fixed;
       this.planted.push(radius);
       const seedling = plant(builder, room, tree, `trees[${t}]`, radius);
-      this.trees.push({ seedling, demand, resizer: new Resizer(spec, tree, demand.wanted), resized, full: false });
+      this.trees.push({ seedling, demand, resizer: new Resizer(spec, tree), resized, full: false });
     }
     this.attacher = new Attacher(
       builder,
@@ -97,6 +101,7 @@ export class Grower {
 
   /** m; first vessels' radii foreseen for trees of so many terminals. */
   foresee(wanted: readonly number[]): number[] {
+    for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.resized) this.resize(t, true);
     return this.trees.map((tree, t) =>
       tree.resized ? tree.resizer.foreseenFor(wanted[t]!) : this.builder.inletRadius[t]!,
     );
@@ -112,6 +117,7 @@ export class Grower {
     while (true) {
       const tree = this.hungriest();
       if (tree < 0) break;
+      if (this.cramped) return 'no-room';
       this.step(tree);
       if ((++steps & 63) === 0) {
         if (this.watch.signal?.aborted) return 'cancelled';
@@ -138,6 +144,7 @@ export class Grower {
   finish(): Stopped {
     for (let round = 0; ; round++) {
       if (this.watch.signal?.aborted) return 'cancelled';
+      if (this.cramped) return 'no-room';
       let evicted = 0;
       for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.resized) this.resize(t, true);
       evicted += this.settleAll(round < ROUNDS);
@@ -163,6 +170,16 @@ export class Grower {
       if (this.builder.parent[row]! >= 0 && this.room.outgrown(row) && !this.settle(row)) rows.push(row);
     }
     return rows;
+  }
+
+  /** Sites of a tree that no terminal serves, in the demand's numbering. */
+  unserved(t: number): number[] {
+    const { demand } = this.trees[t]!;
+    const has = new Uint8Array(demand.siteCount);
+    for (const row of this.builder.preorder(t)) if (this.builder.childCount(row) === 0) has[this.siteOf[row]!] = 1;
+    const sites: number[] = [];
+    for (let site = 0; site < has.length; site++) if (has[site] === 0) sites.push(site);
+    return sites;
   }
 
   /** Site of a terminal's row in its tree's demand. */
@@ -240,7 +257,11 @@ export class Grower {
 
   private resize(t: number, final: boolean): void {
     const { resizer, demand } = this.trees[t]!;
-    resizer.resize(this.builder, this.builder.preorder(t), t, demand.served, final);
+    const exact = resizer.resize(this.builder, this.builder.preorder(t), demand.served);
+    const planted = this.planted[t]!;
+    if (exact > planted) this.cramped = true;
+    // Held at what was planted for: a radius that follows the tree up and down evicts at every step of it.
+    this.builder.inletRadius[t] = final ? exact : planted / SPARE;
   }
 
   /**

@@ -17,7 +17,6 @@ const EARLY_RISE = 0.12;
 export class Resizer {
   private readonly spec: Spec;
   private readonly tree: TreeSpec;
-  private readonly wanted: number;
   private readonly drop: number;
   private exact = 0;
   /** (capacity) Pa from the root at a row, for the exact radii of the last sizing. */
@@ -25,21 +24,20 @@ export class Resizer {
   private rise = EARLY_RISE;
   private history: { logCount: number; fourth: number }[] = [];
 
-  constructor(spec: Spec, tree: TreeSpec, wanted: number) {
+  constructor(spec: Spec, tree: TreeSpec) {
     this.spec = spec;
     this.tree = tree;
-    this.wanted = wanted;
     this.drop = askedDrop(tree);
   }
 
   /**
-   * Sets a tree's weights and inlet radius from its geometry and loads.
+   * Sets a tree's weights from its geometry and loads.
    *
    * @param order  rows of the tree, parents before children
    * @param served terminals it has
-   * @param final  true: exactly; false: at the inlet radius foreseen for all terminals
+   * @returns m, the first vessel's radius; the caller decides at which the tree is held
    */
-  resize(builder: ForestBuilder, order: Int32Array, tree: number, served: number, final: boolean): void {
+  resize(builder: ForestBuilder, order: Int32Array, served: number): number {
     const { spec } = this;
     const n = builder.capacity;
     const whole = builder.load[order[1]!]!;
@@ -60,7 +58,8 @@ export class Resizer {
       }
       builder.weight[order[0]!] = 1;
     }
-    builder.inletRadius[tree] = final ? exact : this.foreseen(exact, served);
+    this.note(exact, served);
+    return exact;
   }
 
   /** Weight of a new terminal that leaves a tube at a distance (m) from its near end. */
@@ -110,12 +109,12 @@ export class Resizer {
 
   /** m; the first vessel's radius foreseen for a tree of so many terminals, from what it has shown so far. */
   foreseenFor(terminals: number): number {
-    const last = this.history[this.history.length - 1]!;
+    const last = this.history[this.history.length - 1] ?? { logCount: 0, fourth: 0 };
     const left = Math.max(0, Math.log(terminals) - last.logCount);
     return Math.sqrt(Math.sqrt(last.fourth * (1 + this.rise * left)));
   }
 
-  private foreseen(exact: number, served: number): number {
+  private note(exact: number, served: number): void {
     const square = exact * exact;
     const fourth = square * square;
     const logCount = Math.log(served);
@@ -124,6 +123,5 @@ export class Resizer {
       this.rise = Math.min(Math.max((fourth - early.fourth) / ((logCount - early.logCount) * fourth), 0), 0.25);
     }
     this.history.push({ logCount, fourth });
-    return this.foreseenFor(this.wanted);
   }
 }

@@ -1,0 +1,39 @@
+export { checkTree } from './check/check-tree.ts';
+export type { CheckResult, Finding, PromiseResult } from './check/result.ts';
+export { checkTable } from './check/table.ts';
+export { compareTrees } from './compare/compare-trees.ts';
+export type { Comparison } from './compare/comparison.ts';
+export { compareJson } from './compare/json.ts';
+export { compareJUnit } from './compare/junit.ts';
+export { compareTable } from './compare/table.ts';
+export { DEFAULT_TOLERANCE, parseTolerance, type Tolerance } from './compare/tolerance.ts';
+export { type Fault, InputError, InvariantError, inputError } from './core/errors.ts';
+export type { Progress, Watch } from './core/progress.ts';
+export type { TriangleSurface } from './core/surface.ts';
+export { fromSi, toSi, UNITS, type Unit } from './core/units.ts';
+export { decodeTree } from './formats/decode-tree.ts';
+export type { DecodedTree, NamedBytes, TreeFormat } from './formats/format.ts';
+export { decodeSurface } from './formats/surface/surface-formats.ts';
+export { splitTreePath, TREE_FORMATS } from './formats/tree-formats.ts';
+export { CAUTION } from './report/caution.ts';
+export { renderReport } from './report/render.ts';
+export type { Report } from './report/report.ts';
+export {
+  type GrowOptions,
+  type GrowResult,
+  growRun,
+  promiseLines,
+  reportRun,
+  solveRecord,
+  VERSION,
+} from './run.ts';
+export { specSchema } from './spec/json-schema.ts';
+export { parseSpec, specFromValue } from './spec/parse.ts';
+export { shapeFiles } from './spec/shape-files.ts';
+export { specTable } from './spec/table.ts';
+export type { Spec } from './spec/types.ts';
+export { specToJson } from './spec/write.ts';
+export { buildTissue } from './tissue/build-tissue.ts';
+export type { Tissue } from './tissue/tissue.ts';
+export type { FlowField, Forest, TreeKind, TreeRecord } from './tree/forest.ts';
+export { countVessels, rowOfVessel, tubeLength, vesselName, vesselOfRow } from './tree/vessels.ts';

@@ -1,0 +1,210 @@
+import { checkTree } from './check/check-tree.ts';
+import type { CheckResult } from './check/result.ts';
+import type { Watch } from './core/progress.ts';
+import type { TriangleSurface } from './core/surface.ts';
+import { measurePower } from './flow/power.ts';
+import { solveFlow } from './flow/solve.ts';
+import { freezeGrowth } from './growth/freeze.ts';
+import { type Growth, growForest } from './growth/grow.ts';
+import type { Stopped } from './growth/grower.ts';
+import { tubeWeights } from './refine/cost.ts';
+import { type RelaxResult, relaxJunctions } from './refine/relax.ts';
+import { buildReport } from './report/build.ts';
+import type { PromiseLine, ReportInput } from './report/input.ts';
+import type { Report } from './report/report.ts';
+import type { Spec } from './spec/types.ts';
+import { specToJson } from './spec/write.ts';
+import { buildTissue } from './tissue/build-tissue.ts';
+import type { Tissue } from './tissue/tissue.ts';
+import type { Forest, TreeRecord } from './tree/forest.ts';
+import { strahlerOrders } from './tree/strahler.ts';
+
+/** Version of the program, as written into every result. */
+export const VERSION = '0.1.0';
+
+/** What the budgets come to: most sweeps over all junctions, and the gain of a sweep below which it is enough. */
+const BUDGETS = {
+  none: { sweeps: 0, tolerance: 0 },
+  quick: { sweeps: 20, tolerance: 1e-4 },
+  thorough: { sweeps: 2000, tolerance: 1e-9 },
+} as const;
+/** Up to so many explicit points, several orders of serving them are tried and the cheapest tree is kept. */
+const FEW_POINTS = 64;
+const ORDERS = 24;
+/** Times that explicit points which were left out are tried again, first in line. */
+const SECOND_TRIES = 4;
+
+export interface GrowOptions extends Watch {
+  /** Asked after each sweep of refinement: true ends it. How a budget in seconds comes in; the library has no clock. */
+  readonly refineEnough?: (() => boolean) | undefined;
+  /** Told the cost (W) as it falls. */
+  readonly onCost?: ((stage: string, cost: number) => void) | undefined;
+}
+
+export interface GrowResult {
+  /** The spec as used, so that it grows the same tree again: a budget in seconds has become a number of sweeps. */
+  readonly spec: Spec;
+  readonly record: TreeRecord;
+  readonly tissue: Tissue;
+  readonly check: CheckResult;
+  readonly stopped: Stopped;
+  /** What was asked and could not be done, a sentence each. */
+  readonly shortfalls: readonly string[];
+}
+
+/**
+ * The whole way from a spec to a solved and proved forest.
+ *
+ * @param surfaces triangle surfaces that the spec's tissue names, by their `file`, as read
+ * @throws InputError for what only the tissue shows to be wrong (inlet outside, tissue too small, broken surface)
+ */
+export function growRun(
+  spec: Spec,
+  surfaces: ReadonlyMap<string, TriangleSurface>,
+  options: GrowOptions = {},
+): GrowResult {
+  const tissue = buildTissue(spec.tissue, surfaces, spec.forbidden);
+  const best = growBest(spec, tissue, options);
+  const { grower } = best.growth;
+  let stopped = best.growth.stopped;
+  let refine: RelaxResult | null = best.refine;
+  if (refine === null && stopped !== 'cancelled') {
+    refine = refineGrowth(best.growth, spec, options);
+    if (refine.stopped === 'cancelled') stopped = 'cancelled';
+  }
+  if (stopped !== 'cancelled') stopped = grower.finish();
+  const used: Spec = options.refineEnough !== undefined && refine !== null ? { ...spec, refine: refine.sweeps } : spec;
+  const forest = freezeGrowth(grower, spec);
+  const record = solveRecord(forest, used);
+  const check = checkTree(record, used, surfaces);
+  const shortfalls: string[] = [];
+  spec.trees.forEach((tree, t) => {
+    const { demand } = grower.trees[t]!;
+    if (demand.served < demand.wanted) {
+      shortfalls.push(
+        `tree ${tree.name} serves ${demand.served} of the ${demand.wanted} terminals asked for: no room was found for the rest`,
+      );
+    }
+  });
+  return { spec: used, record, tissue, check, stopped, shortfalls };
+}
+
+/** The solved record of a forest under a spec's pressures and blood. */
+export function solveRecord(forest: Forest, spec: Spec): TreeRecord {
+  const kinds = spec.trees.map((tree) => tree.kind);
+  const field = solveFlow(forest, kinds, {
+    rootPressures: spec.trees.map((tree) => tree.inlet.pressure),
+    viscosity: spec.blood.viscosity.value,
+    density: spec.blood.density,
+  });
+  return {
+    forest,
+    kinds,
+    names: spec.trees.map((tree) => tree.name),
+    field,
+    order: strahlerOrders(forest),
+    provenance: specToJson(spec, { version: VERSION }),
+  };
+}
+
+/** The report of a run. */
+export function reportRun(result: GrowResult, resources: ReportInput['resources']): Report {
+  const { spec, record, tissue, check, shortfalls } = result;
+  const stubs = `the first vessel of a tree may lead in from outside the tissue`;
+  return buildReport({
+    program: `vesselwright ${VERSION}`,
+    record,
+    power: measurePower(record.forest, spec.blood.viscosity.value, spec.blood.maintenance),
+    tissueVolume: tissue.volume,
+    askedPressures: spec.trees.map((tree) => tree.terminals.pressure),
+    promises: promiseLines(check),
+    notes: [...shortfalls, stubs],
+    resources,
+  });
+}
+
+/** A check's promises as lines of a report. */
+export function promiseLines(check: CheckResult): PromiseLine[] {
+  return check.promises.map((promise) => ({
+    promise: promise.title,
+    limit: `${promise.sense === 'at-least' ? '≥' : '≤'} ${shortNumber(promise.limit)}${unitText(promise.unit)}`,
+    worst: promise.worst === null ? null : `${shortNumber(promise.worst)}${unitText(promise.unit)}`,
+    where: promise.where,
+    held: promise.held,
+  }));
+}
+
+function shortNumber(value: number): string {
+  return String(Number(value.toPrecision(4)));
+}
+
+function unitText(unit: string): string {
+  return unit === '1' ? '' : ` ${unit}`;
+}
+
+/** Lowers the cost of a growth within the spec's budget. */
+function refineGrowth(growth: Growth, spec: Spec, options: GrowOptions): RelaxResult {
+  const { builder, room } = growth.grower;
+  const budget = typeof spec.refine === 'number' ? { sweeps: spec.refine, tolerance: 0 } : BUDGETS[spec.refine];
+  const timed = options.refineEnough !== undefined;
+  const weight = tubeWeights(builder, spec);
+  return relaxJunctions(builder, room, weight, {
+    sweeps: timed ? Number.MAX_SAFE_INTEGER : budget.sweeps,
+    tolerance: timed ? 0 : budget.tolerance,
+    onProgress: options.onProgress,
+    signal: options.signal,
+    enough: (_, cost) => {
+      options.onCost?.('refine', cost);
+      return options.refineEnough?.() ?? false;
+    },
+  });
+}
+
+/**
+ * Grows once where sites are free; where points are given, again in other orders: the few-points problem is about
+ * topology, and a point left out may be reached when it is served first.
+ */
+function growBest(spec: Spec, tissue: Tissue, options: GrowOptions): { growth: Growth; refine: RelaxResult | null } {
+  const points = spec.trees.map((tree) => (tree.terminals.by === 'points' ? tree.terminals.points.length : 0));
+  const few = !points.includes(0) && points.reduce((a, b) => a + b, 0) <= FEW_POINTS;
+  let growth = growForest(spec, tissue, options);
+  if (!points.some((count) => count > 0)) return { growth, refine: null };
+  for (let again = 0; again < SECOND_TRIES && growth.stopped === 'no-room'; again++) {
+    const next = growForest(spec, tissue, options, 0, leftOut(growth, spec));
+    if (next.grower.served > growth.grower.served) growth = next;
+  }
+  if (!few || growth.stopped === 'cancelled') return { growth, refine: null };
+  let refine = refineGrowth(growth, spec, options);
+  for (let salt = 1; salt < ORDERS; salt++) {
+    const next = growForest(spec, tissue, options, salt);
+    if (next.stopped === 'cancelled') break;
+    const relaxed = refineGrowth(next, spec, options);
+    const served = next.grower.served - growth.grower.served;
+    if (served > 0 || (served === 0 && lastCost(relaxed) < lastCost(refine))) {
+      growth = next;
+      refine = relaxed;
+    }
+  }
+  return { growth, refine };
+}
+
+function lastCost(result: RelaxResult): number {
+  return result.cost[result.cost.length - 1]!;
+}
+
+/** (trees) points of the spec that a growth left out. */
+function leftOut(growth: Growth, spec: Spec): number[][] {
+  return spec.trees.map((tree, t) => {
+    if (tree.terminals.by !== 'points') return [];
+    const { demand } = growth.grower.trees[t]!;
+    const { points } = tree.terminals;
+    return growth.grower
+      .unserved(t)
+      .map((site) =>
+        points.findIndex(
+          (point) =>
+            point[0] === demand.siteX(site) && point[1] === demand.siteY(site) && point[2] === demand.siteZ(site),
+        ),
+      );
+  });
+}
