@@ -42,8 +42,8 @@ export function buildTissue(
       'tissue',
       'got a tissue with no volume, expected parts that leave room for vessels',
     );
-  const { min, max, convex, depth, deeperThan } = region;
-  return { min, max, volume, volumeError: error, convex, depth, deeperThan };
+  const { min, max, convex, depth, deeperThan, holdsTube } = region;
+  return { min, max, volume, volumeError: error, convex, depth, deeperThan, holdsTube };
 }
 
 /** Builds regions and gathers the faults of all of them. */

@@ -1,5 +1,6 @@
 import type { Triple } from '../spec/types.ts';
 import type { Region } from './region.ts';
+import { clearOfConvex, marchTube, tubeInside } from './tube.ts';
 
 /**
  * Everything in at least one part.
@@ -11,7 +12,7 @@ import type { Region } from './region.ts';
  */
 export function unionOf(parts: readonly Region[]): Region {
   if (parts.length === 1) return parts[0]!;
-  return {
+  const union: Region = {
     min: fold(parts, 'min', Math.min),
     max: fold(parts, 'max', Math.max),
     convex: false,
@@ -32,7 +33,12 @@ export function unionOf(parts: readonly Region[]): Region {
       for (let i = 0; i < parts.length; i++) if (!parts[i]!.shallowerThan(x, y, z, limit)) return false;
       return true;
     },
+    holdsTube(ax, ay, az, bx, by, bz, need) {
+      for (let i = 0; i < parts.length; i++) if (tubeInside(parts[i]!, ax, ay, az, bx, by, bz, need)) return true;
+      return marchTube(union, ax, ay, az, bx, by, bz, need);
+    },
   };
+  return union;
 }
 
 /**
@@ -65,6 +71,10 @@ export function intersectionOf(parts: readonly Region[]): Region {
       for (let i = 0; i < parts.length; i++) if (parts[i]!.shallowerThan(x, y, z, limit)) return true;
       return false;
     },
+    holdsTube(ax, ay, az, bx, by, bz, need) {
+      for (let i = 0; i < parts.length; i++) if (!tubeInside(parts[i]!, ax, ay, az, bx, by, bz, need)) return false;
+      return true;
+    },
   };
 }
 
@@ -83,6 +93,9 @@ function outsideOf(part: Region, within: Region): Region {
     depth: (x, y, z) => -part.depth(x, y, z),
     deeperThan: (x, y, z, need) => part.shallowerThan(x, y, z, -need),
     shallowerThan: (x, y, z, limit) => part.deeperThan(x, y, z, -limit),
+    holdsTube: part.convex
+      ? (ax, ay, az, bx, by, bz, need) => clearOfConvex(part.depth, ax, ay, az, bx, by, bz, need)
+      : undefined,
   };
 }
 

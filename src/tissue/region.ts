@@ -1,4 +1,5 @@
 import type { Triple } from '../spec/types.ts';
+import type { HoldsTube } from './tissue.ts';
 
 /**
  * What one shape, or shapes put together, answer before a volume is known. The promises of `Tissue` hold for every
@@ -18,6 +19,10 @@ export interface Region {
   deeperThan(x: number, y: number, z: number, need: number): boolean;
   /** depth ≤ limit, and never disagrees with it; what a difference asks of the part taken away. */
   shallowerThan(x: number, y: number, z: number, limit: number): boolean;
+  /** As in `Tissue`. */
+  readonly holdsTube?: HoldsTube | undefined;
+  /** As in `Depths` of tube.ts. */
+  readonly roughDepth?: ((x: number, y: number, z: number, need: number) => number) | undefined;
 }
 
 /** A region whose depth is so cheap that the two questions just ask it. */

@@ -4,12 +4,15 @@ import { halfDiagonal, type Region } from './region.ts';
 import { windingNumber } from './surface-measures.ts';
 import { edgeConvexity, surfaceNormals } from './surface-normals.ts';
 import { buildTriangleTree } from './triangle-tree.ts';
+import { marchTube } from './tube.ts';
 
 /*
  * Lab notes. Depth is exact: the closest triangle by branch and bound over a tree of boxes, the sign from the
  * angle-weighted normal of the feature (face, edge, corner) the foot lies on. Growth mostly asks "deeper than?", so a
  * lattice of depths, filled when first needed, answers from |depth at the nearest node| ± distance to the node; it also
- * gives the search its first bound. Lattice values are exact depths, so answers do not depend on what was asked before.
+ * gives the search its first bound. Lattice values are exact depths, and the search looks a little farther than its
+ * best so far (`margin`), so that rounding in a box's distance cannot hide the nearest triangle: answers do not depend,
+ * to the last bit, on what was asked before.
  */
 
 /** Lattice nodes over the box (4 MB). */
@@ -42,9 +45,39 @@ export function surfaceRegion(surface: TriangleSurface, checked: CheckedSurface,
   const stackNode = new Int32Array(128);
   const stackBound = new Float64Array(128);
 
+  const size2 =
+    (max[0] - min[0]) * (max[0] - min[0]) +
+    (max[1] - min[1]) * (max[1] - min[1]) +
+    (max[2] - min[2]) * (max[2] - min[2]);
+  const margin = 1e-19 * size2;
+  // Covers feet kept in single precision, coordinates far from the origin included.
+  const loose =
+    1e-6 *
+    Math.max(
+      Math.abs(min[0]),
+      Math.abs(min[1]),
+      Math.abs(min[2]),
+      Math.abs(max[0]),
+      Math.abs(max[1]),
+      Math.abs(max[2]),
+    );
+
+  /** Foot of the last search: a point of the surface, and near the next foot where questions come in some order. */
+  const foot = Float64Array.of(position[0]!, position[1]!, position[2]!);
+
+  /** Squared distance to a point of the surface, widened by far more than its rounding. */
+  function reach2(x: number, y: number, z: number, on: Float64Array | Float32Array, at: number): number {
+    const dx = x - on[at]!;
+    const dy = y - on[at + 1]!;
+    const dz = z - on[at + 2]!;
+    const far = Math.sqrt(dx * dx + dy * dy + dz * dz) + loose;
+    return far * far;
+  }
+
   /** Signed distance, exact, where it is known to be at most √limit (or limit is infinite). NaN where that was wrong. */
   function search(x: number, y: number, z: number, limit: number, knownSign: number): number {
     let best = limit;
+    let cut = best * (1 + 1e-12) + margin;
     let place = -1;
     let feature = 0;
     let fx = 0;
@@ -56,7 +89,7 @@ export function surfaceRegion(surface: TriangleSurface, checked: CheckedSurface,
     top = 1;
     while (top > 0) {
       top--;
-      if (stackBound[top]! > best) continue;
+      if (stackBound[top]! > cut) continue;
       let node = stackNode[top]!;
       // Down to a leaf by the nearer child, the other one put by.
       while (size[node] === 0) {
@@ -66,13 +99,13 @@ export function surfaceRegion(surface: TriangleSurface, checked: CheckedSurface,
         const d2 = boxDistance(box, 6 * two, x, y, z);
         const nearFirst = d1 <= d2;
         const farBound = nearFirst ? d2 : d1;
-        if (farBound <= best) {
+        if (farBound <= cut) {
           stackNode[top] = nearFirst ? two : one;
           stackBound[top] = farBound;
           top++;
         }
         node = nearFirst ? one : two;
-        if ((nearFirst ? d1 : d2) > best) {
+        if ((nearFirst ? d1 : d2) > cut) {
           node = -1;
           break;
         }
@@ -139,6 +172,7 @@ export function surfaceRegion(surface: TriangleSurface, checked: CheckedSurface,
         const squared = rx * rx + ry * ry + rz * rz;
         if (squared <= best) {
           best = squared;
+          cut = best * (1 + 1e-12) + margin;
           place = i;
           feature = kind;
           fx = rx;
@@ -148,6 +182,9 @@ export function surfaceRegion(surface: TriangleSurface, checked: CheckedSurface,
       }
     }
     if (place < 0) return Number.NaN;
+    foot[0] = x - fx;
+    foot[1] = y - fy;
+    foot[2] = z - fz;
     const distance = Math.sqrt(best);
     if (knownSign !== 0 || distance === 0) return knownSign * distance;
     const t = order[place]!;
@@ -169,63 +206,90 @@ export function surfaceRegion(surface: TriangleSurface, checked: CheckedSurface,
   const hy = sy / (ny - 1);
   const hz = sz / (nz - 1);
   const lattice = new Float64Array(nx * ny * nz).fill(Number.NaN);
+  const latticeFoot = new Float32Array(3 * lattice.length);
   const slack = 1e-12 * halfDiagonal(sx, sy, sz);
   const scratch = new Float64Array(1);
 
-  /** Depth at the lattice node nearest to a point; the distance to the node is left in `scratch`. */
-  function nearby(x: number, y: number, z: number): number {
+  /** Row of the lattice node nearest to a point; the distance to it is left in `scratch`. */
+  function nearest(x: number, y: number, z: number): number {
     const i = clampRow((x - min[0]) / hx, nx);
     const j = clampRow((y - min[1]) / hy, ny);
     const k = clampRow((z - min[2]) / hz, nz);
-    const gx = min[0] + i * hx;
-    const gy = min[1] + j * hy;
-    const gz = min[2] + k * hz;
-    const dx = x - gx;
-    const dy = y - gy;
-    const dz = z - gz;
+    const dx = x - (min[0] + i * hx);
+    const dy = y - (min[1] + j * hy);
+    const dz = z - (min[2] + k * hz);
     scratch[0] = Math.sqrt(dx * dx + dy * dy + dz * dz) + slack;
-    const row = (k * ny + j) * nx + i;
+    return (k * ny + j) * nx + i;
+  }
+
+  /** Depth at a lattice node, found when first asked for. */
+  function nodeDepth(row: number): number {
     const known = lattice[row]!;
     if (!Number.isNaN(known)) return known;
-    const found = search(gx, gy, gz, Number.POSITIVE_INFINITY, 0);
+    const i = row % nx;
+    const j = ((row - i) / nx) % ny;
+    const k = ((row - i) / nx - j) / ny;
+    const found = seeded(min[0] + i * hx, min[1] + j * hy, min[2] + k * hz, Number.POSITIVE_INFINITY, 0);
     lattice[row] = found;
+    latticeFoot.set(foot, 3 * row);
     return found;
   }
 
-  function exact(x: number, y: number, z: number, node: number, apart: number): number {
-    const size0 = Math.abs(node);
-    const bound = size0 + apart;
-    const sign = size0 > apart ? (node > 0 ? 1 : -1) : 0;
-    const found = search(x, y, z, bound * bound, sign);
+  /** The search, given what is known: a bound, the sign or 0, and the foot of the last question. */
+  function seeded(x: number, y: number, z: number, limit: number, sign: number): number {
+    const found = search(x, y, z, Math.min(limit, reach2(x, y, z, foot, 0)), sign);
     return Number.isNaN(found) ? search(x, y, z, Number.POSITIVE_INFINITY, 0) : found;
   }
 
-  function depth(x: number, y: number, z: number): number {
-    const node = nearby(x, y, z);
-    return exact(x, y, z, node, scratch[0]!);
+  function exact(x: number, y: number, z: number, row: number, apart: number): number {
+    const node = lattice[row]!;
+    const sign = Math.abs(node) > apart ? (node > 0 ? 1 : -1) : 0;
+    return seeded(x, y, z, reach2(x, y, z, latticeFoot, 3 * row), sign);
   }
 
-  return {
+  function depth(x: number, y: number, z: number): number {
+    const row = nearest(x, y, z);
+    // A node nobody asked for is not worth a search of its own.
+    if (Number.isNaN(lattice[row]!)) return seeded(x, y, z, Number.POSITIVE_INFINITY, 0);
+    return exact(x, y, z, row, scratch[0]!);
+  }
+
+  /** The lattice's bound where it is well above `need`, so that a march loses little of its step; else the depth. */
+  function roughDepth(x: number, y: number, z: number, need: number): number {
+    const row = nearest(x, y, z);
+    const apart = scratch[0]!;
+    const node = nodeDepth(row);
+    const bound = node - apart;
+    if (bound >= need && bound - need >= 2 * apart) return bound;
+    return node + apart < need ? node + apart : exact(x, y, z, row, apart);
+  }
+
+  const region: Region = {
     min,
     max,
     convex: checked.pieces === 1 && checked.hollows === 0 && edgeConvexity(surface, checked.topology),
     volume,
     depth,
     deeperThan(x, y, z, need) {
-      const node = nearby(x, y, z);
+      const row = nearest(x, y, z);
       const apart = scratch[0]!;
+      const node = nodeDepth(row);
       if (node - apart >= need) return true;
       if (node + apart < need) return false;
-      return exact(x, y, z, node, apart) >= need;
+      return exact(x, y, z, row, apart) >= need;
     },
     shallowerThan(x, y, z, limit) {
-      const node = nearby(x, y, z);
+      const row = nearest(x, y, z);
       const apart = scratch[0]!;
+      const node = nodeDepth(row);
       if (node + apart <= limit) return true;
       if (node - apart > limit) return false;
-      return exact(x, y, z, node, apart) <= limit;
+      return exact(x, y, z, row, apart) <= limit;
     },
+    roughDepth,
+    holdsTube: (ax, ay, az, bx, by, bz, need) => marchTube(region, ax, ay, az, bx, by, bz, need),
   };
+  return region;
 }
 
 function clampRow(at: number, rows: number): number {

@@ -17,4 +17,20 @@ export interface Tissue {
   depth(x: number, y: number, z: number): number;
   /** True if depth(x, y, z) ≥ need; may be far cheaper than `depth`, never disagrees with it. */
   deeperThan(x: number, y: number, z: number, need: number): boolean;
+  /**
+   * Where the shape can settle a whole tube better than marching along it: the answer of `tubeInside` (see there), which
+   * is the function to call.
+   */
+  readonly holdsTube?: HoldsTube | undefined;
 }
+
+/** True if the depth is at least `need` along the segment a–b, short by no more than 10⁻³·need. */
+export type HoldsTube = (
+  ax: number,
+  ay: number,
+  az: number,
+  bx: number,
+  by: number,
+  bz: number,
+  need: number,
+) => boolean;
