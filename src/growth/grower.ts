@@ -1,6 +1,7 @@
 import { inputError } from '../core/errors.ts';
 import type { Watch } from '../core/progress.ts';
 import { Room } from '../room/room.ts';
+import { straighten } from '../room/straighten.ts';
 import { askedDrop, fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
 import type { Spec } from '../spec/types.ts';
 import type { Tissue } from '../tissue/tissue.ts';
@@ -8,6 +9,7 @@ import { ForestBuilder } from '../tree/builder.ts';
 import { Attacher } from './attach.ts';
 import type { Demand } from './demand.ts';
 import { evict } from './evict.ts';
+import { mendByMoving } from './mend.ts';
 import { Resizer } from './resize.ts';
 import { hangFirst, plant, type Seedling } from './seedling.ts';
 
@@ -249,7 +251,9 @@ export class Grower {
         changed = true;
       }
     }
-    if (changed) this.settleAll(true);
+    if (changed && this.settleAll(true) > 0) {
+      for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.demand.served > 0) this.straightenAll(t);
+    }
     for (let t = 0; t < this.trees.length; t++) {
       if (this.trees[t]!.demand.served > 0) this.attacher.refreshPotential(this.builder.preorder(t));
     }
@@ -279,7 +283,8 @@ export class Grower {
         const row = order[k]!;
         // An eviction further up may have taken the row, or given it to another place.
         for (let tries = 0; tries < 8 && this.builder.parent[row]! >= 0 && this.room.outgrown(row); tries++) {
-          if (this.settle(row)) break;
+          if (this.settle(row) || mendByMoving(this.builder, this.room, row, HEADROOM)) break;
+          this.settle(row);
           const gone = this.evictFor(row, again);
           if (gone === 0) break;
           evicted += gone;
@@ -301,17 +306,7 @@ export class Grower {
   /** Evicts the smaller of the vessels that a refused row stands against. */
   private evictFor(row: number, again: boolean): number {
     const { room, builder } = this;
-    let victim = row;
-    const { blocker } = room;
-    if (room.refusal === 'vessel') {
-      if (builder.load[blocker]! < builder.load[row]!) victim = blocker;
-    } else if (room.refusal === 'junction') {
-      // The node's tubes are too close together: its lesser child goes; at a bend or a terminal what ends there.
-      const a = builder.child[2 * blocker]!;
-      const b = builder.child[2 * blocker + 1]!;
-      victim = b >= 0 ? (builder.load[a]! <= builder.load[b]! ? a : b) : blocker;
-      if (builder.parent[victim]! < 0) victim = row;
-    }
+    const victim = this.lightest(row);
     let count = 0;
     const t = builder.tree[victim]!;
     const { demand } = this.trees[t]!;
@@ -322,6 +317,36 @@ export class Grower {
       this.siteOf[terminal] = -1;
     });
     return count;
+  }
+
+  /** The least vessel whose going could make room for a refused row: itself, what blocks it, or a side branch near by. */
+  private lightest(row: number): number {
+    const { room, builder } = this;
+    const { blocker } = room;
+    if (room.refusal === 'vessel') return builder.load[blocker]! < builder.load[row]! ? blocker : row;
+    if (room.refusal !== 'junction') return row;
+    let best = -1;
+    const consider = (node: number) => {
+      const b = node < 0 ? -1 : builder.child[2 * node + 1]!;
+      if (b < 0) return;
+      const a = builder.child[2 * node]!;
+      const lesser = builder.load[a]! <= builder.load[b]! ? a : b;
+      if (best < 0 || builder.load[lesser]! < builder.load[best]!) best = lesser;
+    };
+    // A tube is too short for the balls at its ends, or an angle too small: a side branch at either end makes them so.
+    consider(blocker);
+    consider(builder.parent[blocker]!);
+    for (let k = 0; k < 2; k++) consider(builder.child[2 * blocker + k]!);
+    if (best < 0) return row;
+    return builder.load[best]! <= builder.load[row]! ? best : row;
+  }
+
+  /** Straightens bends that evictions have left, where the straight vessel fits. */
+  private straightenAll(t: number): void {
+    for (const row of this.builder.preorder(t)) {
+      if (this.builder.parent[row]! >= 0 && this.builder.childCount(row) === 1)
+        straighten(this.builder, this.room, row);
+    }
   }
 
   private keepSite(row: number, site: number): void {
