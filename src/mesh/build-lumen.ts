@@ -1,15 +1,13 @@
-import { InvariantError, inputError } from '../core/errors.ts';
+import { inputError } from '../core/errors.ts';
 import { type Children, listChildren } from '../tree/children.ts';
 import type { Forest, TreeKind } from '../tree/forest.ts';
 import { vesselOfRow } from '../tree/vessels.ts';
 import { buildDisc, type Disc } from './disc.ts';
 import { GrowingSurface } from './growing-surface.ts';
+import { PatchBuilder } from './junction-patch.ts';
 import { JunctionShape } from './junction-shape.ts';
 import type { LumenMesh, LumenPatch, LumenProblem } from './lumen.ts';
-import { APEX, FREE, PatchMesh, RIM } from './patch-mesh.ts';
-import { Remesher } from './remesh.ts';
-import { triangulateDirections } from './sphere-hull.ts';
-import { layOutTubes, loadShape, type TubeLayout } from './tube-layout.ts';
+import { layOutTubes, type TubeLayout } from './tube-layout.ts';
 
 export interface LumenOptions {
   /** Segments round a vessel, 8 to 256; default 24. */
@@ -52,13 +50,11 @@ export function buildLumen(forest: Forest, options: LumenOptions = {}): LumenMes
   const out = new GrowingSurface(forest.count * around * 16, forest.count * around * 32);
   const rings = addTubes(out, forest, layout, around);
   const patches = addCaps(out, forest, children, layout, rings, buildDisc(around), options.kinds);
-  const mesh = new PatchMesh();
-  const remesher = new Remesher(mesh, shape);
+  const builder = new PatchBuilder(forest, children, layout, shape, around);
   const poor = Math.sin((LEAST_ANGLE * Math.PI) / 180);
   for (let row = 0; row < forest.count; row++) {
     if (forest.parent[row]! < 0 || children.start[row] === children.start[row + 1]) continue;
-    const unit = loadShape(shape, forest, children, row, layout);
-    const worst = addPatch(out, forest, children, layout, rings, row, unit, mesh, shape, remesher, around);
+    const worst = builder.addPatch(out, rings, row);
     if (worst < poor * poor) {
       const angle = (Math.asin(Math.sqrt(Math.max(0, worst))) * 180) / Math.PI;
       problems.push({
@@ -218,124 +214,4 @@ function addCaps(
     }
   }
   return patches;
-}
-
-/** Directions of an icosahedron's corners, turned so that none lies along a coordinate axis. */
-const SPREAD = ((): Float64Array => {
-  const g = (1 + Math.sqrt(5)) / 2;
-  const out: number[] = [];
-  for (const s of [-1, 1]) {
-    for (const t of [-1, 1]) out.push(0, s, t * g, s, t * g, 0, t * g, 0, s);
-  }
-  const scale = 1 / Math.sqrt(1 + g * g);
-  const [c1, s1, c2, s2] = [Math.cos(0.3), Math.sin(0.3), Math.cos(0.7), Math.sin(0.7)];
-  for (let i = 0; i < out.length; i += 3) {
-    const x = scale * out[i]!;
-    const y = scale * out[i + 1]!;
-    const z = scale * out[i + 2]!;
-    const x1 = c1 * x - s1 * y;
-    const y1 = s1 * x + c1 * y;
-    out[i] = x1;
-    out[i + 1] = c2 * y1 - s2 * z;
-    out[i + 2] = s2 * y1 + c2 * z;
-  }
-  return Float64Array.from(out);
-})();
-
-/** Adds the wall of one inner node; returns the worst score of its triangles. */
-function addPatch(
-  out: GrowingSurface,
-  forest: Forest,
-  children: Children,
-  layout: TubeLayout,
-  rings: Int32Array,
-  row: number,
-  unit: number,
-  mesh: PatchMesh,
-  shape: JunctionShape,
-  remesher: Remesher,
-  around: number,
-): number {
-  mesh.reset();
-  const count = shape.count;
-  const vesselOfTube = (tube: number): number => (tube === 0 ? row : children.list[children.start[row]! + tube - 1]!);
-  const global: number[] = [];
-  const px = forest.position[3 * row]!;
-  const py = forest.position[3 * row + 1]!;
-  const pz = forest.position[3 * row + 2]!;
-  const rim = new Float64Array(count);
-  for (let tube = 0; tube < count; tube++) {
-    const vessel = vesselOfTube(tube);
-    const own = tube === 0;
-    const s = (own ? layout.length[vessel]! - layout.last[vessel]! : layout.first[vessel]!) / unit;
-    rim[tube] = s;
-    const ux = shape.axis[3 * tube]!;
-    const uy = shape.axis[3 * tube + 1]!;
-    const uz = shape.axis[3 * tube + 2]!;
-    const apex = mesh.addVertex(s * ux, s * uy, s * uz, 0, APEX);
-    global[apex] = -1;
-    const ring = rings[vessel]! + (own ? layout.strips[vessel]! : 0) * around;
-    for (let j = 0; j < around; j++) {
-      const g = ring + j;
-      const x = (out.position[3 * g]! - px) / unit;
-      const y = (out.position[3 * g + 1]! - py) / unit;
-      const z = (out.position[3 * g + 2]! - pz) / unit;
-      const v = mesh.addVertex(x, y, z, shape.edgeAt(x, y, z), RIM);
-      global[v] = g;
-    }
-  }
-  for (let i = 0; i < SPREAD.length; i += 3) {
-    const x = SPREAD[i]!;
-    const y = SPREAD[i + 1]!;
-    const z = SPREAD[i + 2]!;
-    let free = true;
-    let scale = 0;
-    for (let tube = 0; tube < count && free; tube++) {
-      const dot = x * shape.axis[3 * tube]! + y * shape.axis[3 * tube + 1]! + z * shape.axis[3 * tube + 2]!;
-      const angle = Math.acos(Math.max(-1, Math.min(1, dot)));
-      if (angle < Math.atan2(shape.radius[tube]!, rim[tube]!) + 0.35) free = false;
-      scale = Math.max(scale, shape.radius[tube]! / shape.distance(tube, x, y, z));
-    }
-    if (!free) continue;
-    shape.project(scale * x, scale * y, scale * z);
-    mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeAt(shape.x, shape.y, shape.z), FREE);
-  }
-  triangulateDirections(mesh);
-  let caps = 0;
-  for (let t = 0; t < mesh.triangles; t++) {
-    if (mesh.from[3 * t]! < 0) continue;
-    for (let h = 3 * t; h < 3 * t + 3; h++) if (mesh.kind[mesh.from[h]!] === APEX) mesh.cap[t] = 1;
-    caps += mesh.cap[t]!;
-  }
-  if (caps !== count * around)
-    throw new InvariantError(
-      `buildLumen: rims of node ${row} overlap: ${caps} cap triangles, expected ${count * around}`,
-    );
-  const worst = remesher.run();
-  for (let v = 0; v < mesh.vertices; v++) {
-    if (mesh.kind[v] !== FREE) continue;
-    const x = mesh.position[3 * v]!;
-    const y = mesh.position[3 * v + 1]!;
-    const z = mesh.position[3 * v + 2]!;
-    shape.evaluate(x, y, z);
-    const tube = shape.near;
-    const vessel = vesselOfTube(tube);
-    const s = x * shape.axis[3 * tube]! + y * shape.axis[3 * tube + 1]! + z * shape.axis[3 * tube + 2]!;
-    const t = Math.min(1, (unit * Math.max(0, s)) / layout.length[vessel]!);
-    global[v] = out.addVertex(px + unit * x, py + unit * y, pz + unit * z, vessel, tube === 0 ? 1 - t : t);
-  }
-  for (let t = 0; t < mesh.triangles; t++) {
-    const a = mesh.from[3 * t]!;
-    if (a < 0 || mesh.cap[t] === 1) continue;
-    const b = mesh.from[3 * t + 1]!;
-    const c = mesh.from[3 * t + 2]!;
-    const p = mesh.position;
-    shape.evaluate(
-      (p[3 * a]! + p[3 * b]! + p[3 * c]!) / 3,
-      (p[3 * a + 1]! + p[3 * b + 1]! + p[3 * c + 1]!) / 3,
-      (p[3 * a + 2]! + p[3 * b + 2]! + p[3 * c + 2]!) / 3,
-    );
-    out.addTriangle(global[a]!, global[b]!, global[c]!, 0, vesselOfRow(forest, vesselOfTube(shape.near)));
-  }
-  return worst;
 }

@@ -37,6 +37,9 @@ export class JunctionShape {
   y = 0;
   z = 0;
 
+  /** Result of the last `nearest`. */
+  along = 0;
+
   private own = new Float64Array(8);
   private grad = new Float64Array(3 * 8);
 
@@ -70,6 +73,30 @@ export class JunctionShape {
     const py = y - s * uy;
     const pz = z - s * uz;
     return Math.sqrt(px * px + py * py + pz * pz);
+  }
+
+  /** Tube whose wall is nearest to a point; leaves in `along` how far along its axis the point is. */
+  nearest(x: number, y: number, z: number): number {
+    const { axis, radius, count } = this;
+    let near = 0;
+    let least = Infinity;
+    for (let i = 0; i < count; i++) {
+      const ux = axis[3 * i]!;
+      const uy = axis[3 * i + 1]!;
+      const uz = axis[3 * i + 2]!;
+      const dot = x * ux + y * uy + z * uz;
+      const s = dot > 0 ? dot : 0;
+      const px = x - s * ux;
+      const py = y - s * uy;
+      const pz = z - s * uz;
+      const f = Math.sqrt(px * px + py * py + pz * pz) - radius[i]!;
+      if (f < least) {
+        least = f;
+        near = i;
+        this.along = s;
+      }
+    }
+    return near;
   }
 
   /** Edge length wanted at a point of the wall. */

@@ -5,8 +5,6 @@ import { FREE, type PatchMesh } from './patch-mesh.ts';
 const LONG = 1.3;
 /** Shortest edge wanted. */
 const SHORT = 0.62;
-/** Least cosine between a triangle and the wall under its centre. */
-const UPRIGHT = 0.1;
 /** Least distance of a triangle's plane from the node, in radii of the thinnest tube, while the patch is coarse. */
 const STAR = 0.2;
 /** sin² of the smallest angle that smoothing must keep: 35°. */
@@ -29,6 +27,7 @@ export class Remesher {
   private readonly shape: JunctionShape;
   private mark = new Int32Array(1024);
   private round = 0;
+  private most = 0;
   private star = true;
   private thin = 1;
 
@@ -37,8 +36,12 @@ export class Remesher {
     this.shape = shape;
   }
 
-  /** @returns the worst score of the patch */
-  run(): number {
+  /**
+   * @param most vertices; splitting stops there, which happens only where the rims run into each other
+   * @returns    the worst score of the patch
+   */
+  run(most: number): number {
+    this.most = most;
     const { mesh } = this;
     this.star = true;
     this.thin = Math.min(...this.shape.radius.subarray(0, this.shape.count));
@@ -72,7 +75,7 @@ export class Remesher {
     const { mesh, shape } = this;
     let splits = 0;
     const end = 3 * mesh.triangles;
-    for (let h = 0; h < end; h++) {
+    for (let h = 0; h < end && mesh.vertices < this.most; h++) {
       const a = mesh.from[h]!;
       if (a < 0) continue;
       const t = mesh.twin[h]!;
@@ -424,21 +427,26 @@ export class Remesher {
     const nn = nx * nx + ny * ny + nz * nz;
     const uu = ux * ux + uy * uy + uz * uz;
     const vv = vx * vx + vy * vy + vz * vz;
-    const wx = vx - ux;
-    const wy = vy - uy;
-    const wz = vz - uz;
-    const ww = wx * wx + wy * wy + wz * wz;
+    const ex = vx - ux;
+    const ey = vy - uy;
+    const ez = vz - uz;
+    const ww = ex * ex + ey * ey + ez * ez;
     const least = uu < vv ? (uu < ww ? uu : ww) : vv < ww ? vv : ww;
     const quality = (nn * least) / (uu * vv * ww);
     if (!(nn > 0)) return -2;
     if (quality <= enough) return quality;
-    if (this.star) {
-      const depth = (nx * x + ny * y + nz * z) / Math.sqrt(nn) / this.thin;
-      return depth > STAR ? quality : depth - 1 - STAR;
+    let depth: number;
+    if (this.star) depth = (nx * x + ny * y + nz * z) / (Math.sqrt(nn) * this.thin);
+    else {
+      // A point inside that sees the wall here: on the nearest tube's axis, eight radii back towards the node.
+      const tube = shape.nearest(x + (ux + vx) / 3, y + (uy + vy) / 3, z + (uz + vz) / 3);
+      const r = shape.radius[tube]!;
+      const s = Math.max(0, shape.along - 8 * r);
+      const wx = x - s * shape.axis[3 * tube]!;
+      const wy = y - s * shape.axis[3 * tube + 1]!;
+      const wz = z - s * shape.axis[3 * tube + 2]!;
+      depth = (nx * wx + ny * wy + nz * wz) / (Math.sqrt(nn) * r);
     }
-    shape.evaluate(x + (ux + vx) / 3, y + (uy + vy) / 3, z + (uz + vz) / 3);
-    const gg = shape.gx * shape.gx + shape.gy * shape.gy + shape.gz * shape.gz;
-    const upright = (nx * shape.gx + ny * shape.gy + nz * shape.gz) / Math.sqrt(nn * gg);
-    return upright > UPRIGHT ? quality : Math.min(upright, UPRIGHT) - 1 - UPRIGHT;
+    return depth > STAR ? quality : depth - 1 - STAR;
   }
 }

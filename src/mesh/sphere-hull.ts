@@ -1,31 +1,22 @@
-import { InvariantError } from '../core/errors.ts';
 import type { PatchMesh } from './patch-mesh.ts';
 
 /**
- * Triangulates the vertices of a mesh by the convex hull of their directions from the origin, which is their Delaunay
- * triangulation on the sphere. The mesh must hold vertices only.
+ * Triangulates the vertices of a mesh by the convex hull of points on the unit sphere, one a vertex, which is their
+ * Delaunay triangulation there. The mesh must hold vertices only.
  *
- * @throws InvariantError where fewer than four directions span a body
+ * @param direction (3n) unit vectors; no four may lie in one circle by more than rounding, or the hull may come out torn
+ * @returns whether the hull is whole: it has the 2n − 4 faces of a closed surface and shows them all to the origin
  * Source: incremental convex hull (beneath–beyond); common practice, no source.
  * Cost:   O(n · faces); the n of a junction is about 100.
  */
-export function triangulateDirections(mesh: PatchMesh): void {
+export function triangulateDirections(mesh: PatchMesh, direction: Float64Array): boolean {
   const n = mesh.vertices;
-  const direction = new Float64Array(3 * n);
-  for (let v = 0; v < n; v++) {
-    const x = mesh.position[3 * v]!;
-    const y = mesh.position[3 * v + 1]!;
-    const z = mesh.position[3 * v + 2]!;
-    const scale = 1 / Math.sqrt(x * x + y * y + z * z);
-    direction[3 * v] = x * scale;
-    direction[3 * v + 1] = y * scale;
-    direction[3 * v + 2] = z * scale;
-  }
   const first = firstBody(direction, n);
   const visible = new Uint8Array(8 * n + 64);
   const startsAt = new Int32Array(n).fill(-1);
   const horizon: number[] = [];
   const seen: number[] = [];
+  if (first === null) return false;
   const [a, b, c, d] = first;
   for (const [p, q, r] of [
     [a, b, c],
@@ -45,7 +36,7 @@ export function triangulateDirections(mesh: PatchMesh): void {
       visible[t] = sees;
       if (sees === 1) seen.push(t);
     }
-    if (seen.length === 0) throw new InvariantError(`triangulateDirections: direction ${v} is seen by no face`);
+    if (seen.length === 0) return false;
     horizon.length = 0;
     for (const t of seen) {
       for (let h = 3 * t; h < 3 * t + 3; h++) {
@@ -66,7 +57,32 @@ export function triangulateDirections(mesh: PatchMesh): void {
       mesh.link(own + 1, startsAt[horizon[i + 1]!]!);
     }
   }
-  for (let h = 0; h < 3 * mesh.triangles; h++) if (mesh.from[h]! >= 0) mesh.leaving[mesh.from[h]!] = h;
+  let faces = 0;
+  for (let t = 0; t < mesh.triangles; t++) {
+    const p = mesh.from[3 * t]!;
+    if (p < 0) continue;
+    faces++;
+    const q = mesh.from[3 * t + 1]!;
+    const r = mesh.from[3 * t + 2]!;
+    for (let h = 3 * t; h < 3 * t + 3; h++) {
+      const twin = mesh.twin[h]!;
+      if (mesh.twin[twin] !== h || mesh.from[mesh.next(h)] !== mesh.from[twin]) return false;
+      mesh.leaving[mesh.from[h]!] = h;
+    }
+    if (!(triple(direction, p, q, r) > 0)) return false;
+  }
+  return faces === 2 * n - 4;
+}
+
+/** Six times the volume of the origin and three points. */
+function triple(p: Float64Array, a: number, b: number, c: number): number {
+  const bx = p[3 * b]!;
+  const by = p[3 * b + 1]!;
+  const bz = p[3 * b + 2]!;
+  const cx = p[3 * c]!;
+  const cy = p[3 * c + 1]!;
+  const cz = p[3 * c + 2]!;
+  return p[3 * a]! * (by * cz - bz * cy) + p[3 * a + 1]! * (bz * cx - bx * cz) + p[3 * a + 2]! * (bx * cy - by * cx);
 }
 
 /** Six times the volume of a tetrahedron; positive where d is on the outer side of (a, b, c). */
@@ -87,7 +103,7 @@ function volume(p: Float64Array, a: number, b: number, c: number, d: number): nu
 }
 
 /** Four directions that span a body, the first three counter-clockwise from outside. */
-function firstBody(p: Float64Array, n: number): [number, number, number, number] {
+function firstBody(p: Float64Array, n: number): [number, number, number, number] | null {
   const a = 0;
   let b = 1;
   let c = 2;
@@ -118,7 +134,7 @@ function firstBody(p: Float64Array, n: number): [number, number, number, number]
       d = v;
     }
   }
-  if (!(size > 1e-9)) throw new InvariantError('triangulateDirections: all directions lie in one circle');
+  if (!(size > 1e-9)) return null;
   return best < 0 ? [a, b, c, d] : [a, c, b, d];
 }
 

@@ -81,6 +81,9 @@ export function bendSketch(angle: number, scale = 1e-3): Sketch {
 }
 
 interface Draft {
+  /** Length of the tube to here, and the least it may have should it end here; in m. */
+  length: number;
+  least: number;
   parent: number;
   position: [number, number, number];
   radius: number;
@@ -111,7 +114,7 @@ export function randomSketch(seed: string, options: RandomForestOptions): Sketch
   const leastRatio = options.leastRatio ?? 0.3;
   const roomiest = options.roomiest ?? 1.5;
   const scale = options.radius ?? 1e-3;
-  const nodes: Draft[] = [{ parent: -1, position: [0, 0, 0], radius: scale }];
+  const nodes: Draft[] = [{ parent: -1, position: [0, 0, 0], radius: scale, least: 0, length: 0 }];
   interface Open {
     at: number;
     direction: [number, number, number];
@@ -172,7 +175,7 @@ export function randomSketch(seed: string, options: RandomForestOptions): Sketch
       const gap = 1.3 * (r + node.radius);
       if (square < gap * gap) return null;
     }
-    nodes.push({ parent: from, position: q, radius: r });
+    nodes.push({ parent: from, position: q, radius: r, length, least: 1.15 * (ballHere + 2 * r) });
     return { at: nodes.length - 1, direction: d, plan };
   };
   const queue: Open[] = [];
@@ -190,7 +193,26 @@ export function randomSketch(seed: string, options: RandomForestOptions): Sketch
       }
     }
   }
-  return nodes.map((node) => [node.parent, ...node.position, node.radius] as const);
+  return withoutStumps(nodes);
+}
+
+/** Drops vessels whose daughters found no place and which are then too short to end in a cap. */
+function withoutStumps(nodes: readonly Draft[]): Sketch {
+  const keep = nodes.map(() => true);
+  const daughters = nodes.map(() => 0);
+  for (const node of nodes) if (node.parent >= 0) daughters[node.parent]!++;
+  for (let i = nodes.length - 1; i > 0; i--) {
+    const node = nodes[i]!;
+    if (daughters[i]! > 0 || node.length >= node.least * (1 - 1e-12)) continue;
+    keep[i] = false;
+    daughters[node.parent]!--;
+  }
+  const place: number[] = [];
+  let next = 0;
+  for (let i = 0; i < nodes.length; i++) place[i] = keep[i] ? next++ : -1;
+  return nodes
+    .filter((_, i) => keep[i])
+    .map((node) => [node.parent < 0 ? -1 : place[node.parent]!, ...node.position, node.radius] as const);
 }
 
 /** A chain of close junctions, each vessel exactly as long as the rule asks, side branches turning round the trunk. */

@@ -1,0 +1,226 @@
+import { InvariantError } from '../core/errors.ts';
+import type { Children } from '../tree/children.ts';
+import type { Forest } from '../tree/forest.ts';
+import { vesselOfRow } from '../tree/vessels.ts';
+import type { GrowingSurface } from './growing-surface.ts';
+import type { JunctionShape } from './junction-shape.ts';
+import { APEX, FREE, PatchMesh, RIM } from './patch-mesh.ts';
+import { Remesher } from './remesh.ts';
+import { triangulateDirections } from './sphere-hull.ts';
+import { loadShape, type TubeLayout } from './tube-layout.ts';
+
+/** Directions of an icosahedron's corners, turned so that none lies along a coordinate axis. */
+const SPREAD = ((): Float64Array => {
+  const g = (1 + Math.sqrt(5)) / 2;
+  const out: number[] = [];
+  for (const s of [-1, 1]) {
+    for (const t of [-1, 1]) out.push(0, s, t * g, s, t * g, 0, t * g, 0, s);
+  }
+  const scale = 1 / Math.sqrt(1 + g * g);
+  const [c1, s1, c2, s2] = [Math.cos(0.3), Math.sin(0.3), Math.cos(0.7), Math.sin(0.7)];
+  for (let i = 0; i < out.length; i += 3) {
+    const x = scale * out[i]!;
+    const y = scale * out[i + 1]!;
+    const z = scale * out[i + 2]!;
+    const x1 = c1 * x - s1 * y;
+    const y1 = s1 * x + c1 * y;
+    out[i] = x1;
+    out[i + 1] = c2 * y1 - s2 * z;
+    out[i + 2] = s2 * y1 + c2 * z;
+  }
+  return Float64Array.from(out);
+})();
+
+/** Builds the wall of one inner node after another. */
+export class PatchBuilder {
+  private readonly mesh = new PatchMesh();
+  private readonly remesher: Remesher;
+  private readonly forest: Forest;
+  private readonly children: Children;
+  private readonly layout: TubeLayout;
+  private readonly shape: JunctionShape;
+  private readonly around: number;
+  /** Vertex of the surface for each vertex of the patch; −1 where there is none yet. */
+  private global: number[] = [];
+  /** Axial place of each rim, in units of the shape. */
+  private rim: number[] = [];
+
+  constructor(forest: Forest, children: Children, layout: TubeLayout, shape: JunctionShape, around: number) {
+    this.forest = forest;
+    this.children = children;
+    this.layout = layout;
+    this.shape = shape;
+    this.around = around;
+    this.remesher = new Remesher(this.mesh, shape);
+  }
+
+  /**
+   * Adds the wall of a node to a surface that already has the rings.
+   *
+   * @param rings (n) first vertex of each vessel's first ring
+   * @returns     the worst score of its triangles: sin² of the smallest angle, or less than 0 where the wall is folded
+   */
+  addPatch(out: GrowingSurface, rings: Int32Array, row: number): number {
+    const { forest, children, layout, shape, mesh, around } = this;
+    const unit = loadShape(shape, forest, children, row, layout);
+    let whole = false;
+    for (let attempt = 0; attempt < 4 && !whole; attempt++) {
+      mesh.reset();
+      this.addRims(out, rings, row, unit);
+      this.addSpread();
+      whole = triangulateDirections(mesh, this.directions(attempt)) && this.markCaps() === shape.count * around;
+    }
+    if (!whole) {
+      // The rims run into each other: join them as if they were small enough to be apart. Closed, if not simple.
+      mesh.reset();
+      this.addRims(out, rings, row, unit);
+      if (!triangulateDirections(mesh, this.shrunkDirections()) || this.markCaps() !== shape.count * around)
+        throw new InvariantError(`addPatch: no triangulation of the rims of node ${row}`);
+    }
+    const worst = this.remesher.run(64 * around * shape.count + 4000);
+    this.emit(out, row, unit);
+    return whole ? worst : Math.min(worst, -1);
+  }
+
+  /** Row of the vessel that a tube of the shape stands for. */
+  private vessel(row: number, tube: number): number {
+    return tube === 0 ? row : this.children.list[this.children.start[row]! + tube - 1]!;
+  }
+
+  private addRims(out: GrowingSurface, rings: Int32Array, row: number, unit: number): void {
+    const { forest, layout, shape, mesh, around } = this;
+    const px = forest.position[3 * row]!;
+    const py = forest.position[3 * row + 1]!;
+    const pz = forest.position[3 * row + 2]!;
+    for (let tube = 0; tube < shape.count; tube++) {
+      const vessel = this.vessel(row, tube);
+      const own = tube === 0;
+      const s = (own ? layout.length[vessel]! - layout.last[vessel]! : layout.first[vessel]!) / unit;
+      this.rim[tube] = s;
+      const apex = mesh.addVertex(
+        s * shape.axis[3 * tube]!,
+        s * shape.axis[3 * tube + 1]!,
+        s * shape.axis[3 * tube + 2]!,
+        0,
+        APEX,
+      );
+      this.global[apex] = -1;
+      const ring = rings[vessel]! + (own ? layout.strips[vessel]! : 0) * around;
+      for (let j = 0; j < around; j++) {
+        const g = ring + j;
+        const x = (out.position[3 * g]! - px) / unit;
+        const y = (out.position[3 * g + 1]! - py) / unit;
+        const z = (out.position[3 * g + 2]! - pz) / unit;
+        this.global[mesh.addVertex(x, y, z, shape.edgeAt(x, y, z), RIM)] = g;
+      }
+    }
+  }
+
+  /** Adds a few points of the wall well away from the rims, so that the hull of the directions holds the node. */
+  private addSpread(): void {
+    const { shape, mesh } = this;
+    for (let i = 0; i < SPREAD.length; i += 3) {
+      const x = SPREAD[i]!;
+      const y = SPREAD[i + 1]!;
+      const z = SPREAD[i + 2]!;
+      let free = true;
+      for (let tube = 0; tube < shape.count && free; tube++) {
+        const dot = x * shape.axis[3 * tube]! + y * shape.axis[3 * tube + 1]! + z * shape.axis[3 * tube + 2]!;
+        const angle = Math.acos(Math.max(-1, Math.min(1, dot)));
+        if (angle < Math.atan2(shape.radius[tube]!, this.rim[tube]!) + 0.35) free = false;
+      }
+      if (!free) continue;
+      shape.shoot(x, y, z);
+      this.global[mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeAt(shape.x, shape.y, shape.z), FREE)] = -1;
+    }
+  }
+
+  /** Directions of the vertices, shaken by a millionth of an edge, for rims of equal tubes lie in common circles. */
+  private directions(attempt: number): Float64Array {
+    const { mesh } = this;
+    const out = new Float64Array(3 * mesh.vertices);
+    let noise = 12345 + attempt;
+    for (let v = 0; v < mesh.vertices; v++) {
+      let square = 0;
+      for (let k = 0; k < 3; k++) {
+        noise = (Math.imul(noise, 1664525) + 1013904223) >>> 0;
+        const x = mesh.position[3 * v + k]! + 1e-6 * mesh.size[v]! * (noise / 4294967296 - 0.5);
+        out[3 * v + k] = x;
+        square += x * x;
+      }
+      const scale = 1 / Math.sqrt(square);
+      for (let k = 0; k < 3; k++) out[3 * v + k]! *= scale;
+    }
+    return out;
+  }
+
+  /** Directions on circles round the axes, so small that they are apart. */
+  private shrunkDirections(): Float64Array {
+    const { mesh, shape } = this;
+    const out = this.directions(0);
+    let v = 0;
+    for (let tube = 0; tube < shape.count; tube++) {
+      let least = 1;
+      for (let j = 0; j < shape.count; j++) {
+        if (j === tube) continue;
+        let dot = 0;
+        for (let k = 0; k < 3; k++) dot += shape.axis[3 * tube + k]! * shape.axis[3 * j + k]!;
+        least = Math.min(least, Math.acos(Math.max(-1, Math.min(1, dot))));
+      }
+      const c = Math.cos(0.4 * least);
+      const s = Math.sin(0.4 * least);
+      const apex = v++;
+      for (; v < mesh.vertices && mesh.kind[v] === RIM; v++) {
+        let square = 0;
+        const side = [0, 0, 0];
+        for (let k = 0; k < 3; k++) {
+          side[k] = mesh.position[3 * v + k]! - mesh.position[3 * apex + k]!;
+          square += side[k]! * side[k]!;
+        }
+        for (let k = 0; k < 3; k++) out[3 * v + k] = c * shape.axis[3 * tube + k]! + (s * side[k]!) / Math.sqrt(square);
+      }
+    }
+    return out;
+  }
+
+  private markCaps(): number {
+    const { mesh } = this;
+    let caps = 0;
+    for (let t = 0; t < mesh.triangles; t++) {
+      if (mesh.from[3 * t]! < 0) continue;
+      for (let h = 3 * t; h < 3 * t + 3; h++) if (mesh.kind[mesh.from[h]!] === APEX) mesh.cap[t] = 1;
+      caps += mesh.cap[t]!;
+    }
+    return caps;
+  }
+
+  private emit(out: GrowingSurface, row: number, unit: number): void {
+    const { forest, layout, shape, mesh, global } = this;
+    const px = forest.position[3 * row]!;
+    const py = forest.position[3 * row + 1]!;
+    const pz = forest.position[3 * row + 2]!;
+    for (let v = 0; v < mesh.vertices; v++) {
+      if (mesh.kind[v] !== FREE) continue;
+      const x = mesh.position[3 * v]!;
+      const y = mesh.position[3 * v + 1]!;
+      const z = mesh.position[3 * v + 2]!;
+      const tube = shape.nearest(x, y, z);
+      const vessel = this.vessel(row, tube);
+      const t = Math.min(1, (unit * shape.along) / layout.length[vessel]!);
+      global[v] = out.addVertex(px + unit * x, py + unit * y, pz + unit * z, vessel, tube === 0 ? 1 - t : t);
+    }
+    const p = mesh.position;
+    for (let t = 0; t < mesh.triangles; t++) {
+      const a = mesh.from[3 * t]!;
+      if (a < 0 || mesh.cap[t] === 1) continue;
+      const b = mesh.from[3 * t + 1]!;
+      const c = mesh.from[3 * t + 2]!;
+      const tube = shape.nearest(
+        (p[3 * a]! + p[3 * b]! + p[3 * c]!) / 3,
+        (p[3 * a + 1]! + p[3 * b + 1]! + p[3 * c + 1]!) / 3,
+        (p[3 * a + 2]! + p[3 * b + 2]! + p[3 * c + 2]!) / 3,
+      );
+      out.addTriangle(global[a]!, global[b]!, global[c]!, 0, vesselOfRow(forest, this.vessel(row, tube)));
+    }
+  }
+}
