@@ -1,4 +1,5 @@
-export { checkTree } from './check/check-tree.ts';
+export { type ClaimedCost, checkTree } from './check/check-tree.ts';
+export { checkLumen, type LumenFiles } from './check/lumen/check-lumen.ts';
 export type { CheckResult, Finding, PromiseResult } from './check/result.ts';
 export { checkTable } from './check/table.ts';
 export { compareTrees } from './compare/compare-trees.ts';

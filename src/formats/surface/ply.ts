@@ -39,7 +39,7 @@ export function decodePly(bytes: Uint8Array, file: string): TriangleSurface {
   if (!header.elements.some(({ name }) => name === 'vertex'))
     throw reader.fault('bad-syntax', 'got no element "vertex", expected one');
   const source = header.encoding === 'ascii' ? textSource(reader) : binarySource(reader, header);
-  let corner = new Float64Array(0);
+  let corner: Float64Array = new Float64Array(0);
   const fans = new PolygonFans();
   for (const element of header.elements) {
     const least = element.properties.reduce((sum, { type, listCount }) => sum + source.least(listCount ?? type), 0);

@@ -1,0 +1,11 @@
+export { Meter } from './meter.ts';
+export { type FolderKind, MESH_FOLDER, placeForFolder, RUN_FOLDER } from './out-folder.ts';
+export { isMeshFolder, readMesh } from './read-mesh.ts';
+export { readSpec, readSurfaces, type SpecFiles, useBaseNames } from './read-spec.ts';
+export { claimedCost, readTree, specOfTree, surfacesOfTree, type TreeFiles } from './read-tree.ts';
+export { type GrownFolder, growToFolder, writeRun } from './run-folder.ts';
+export { isSystemError, withFiles } from './system-faults.ts';
+export { clearStale, type WriteGuard, type WriteOptions } from './temporary.ts';
+export { startViewServer, type ViewedRun, type ViewServer, type ViewServerOptions } from './view-server.ts';
+export { type PlacedFile, placeForFile, writeFiles } from './write-files.ts';
+export { type OutFile, writeFolder } from './write-folder.ts';

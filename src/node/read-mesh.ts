@@ -1,0 +1,29 @@
+import { existsSync, readFileSync, statSync } from 'node:fs';
+import { join } from 'node:path';
+import type { LumenFiles } from '../index.ts';
+import { withFiles } from './system-faults.ts';
+
+/** Whether a path is a folder that holds a lumen mesh. */
+export function isMeshFolder(path: string): boolean {
+  if (!existsSync(path) || !statSync(path).isDirectory() || existsSync(join(path, 'tree.vtp'))) return false;
+  return ['mesh.json', 'lumen.stl', 'boundary.csv'].some((name) => existsSync(join(path, name)));
+}
+
+/**
+ * Reads the files of a mesh folder that `checkLumen` looks at.
+ *
+ * @throws InputError where `lumen.stl` or `boundary.csv` cannot be read
+ */
+export function readMesh(path: string): LumenFiles {
+  const read = (name: string): Uint8Array => {
+    const file = join(path, name);
+    return withFiles(path, file, 'a file of a mesh folder', () => readFileSync(file));
+  };
+  const may = (name: string): Uint8Array | null => (existsSync(join(path, name)) ? read(name) : null);
+  return {
+    surface: read('lumen.stl'),
+    boundary: read('boundary.csv'),
+    network: may('network.csv'),
+    notes: may('mesh.json'),
+  };
+}

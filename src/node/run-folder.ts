@@ -1,0 +1,74 @@
+import {
+  type GrowOptions,
+  type GrowResult,
+  growRun,
+  type Report,
+  renderReport,
+  reportRun,
+  splitTreePath,
+  type TreeRecord,
+} from '../index.ts';
+import { Meter } from './meter.ts';
+import { placeForFolder, RUN_FOLDER } from './out-folder.ts';
+import { type SpecFiles, useBaseNames } from './read-spec.ts';
+import type { WriteOptions } from './temporary.ts';
+import { type OutFile, writeFolder } from './write-folder.ts';
+
+export interface GrownFolder {
+  readonly result: GrowResult;
+  readonly report: Report;
+  /** Names of the files written; none where growth was cancelled. */
+  readonly files: readonly string[];
+}
+
+/**
+ * Grows a spec into a run folder. Surfaces are copied beside the tree and named by their base names before growth
+ * begins, so that growing `spec.json` of the folder again gives the same `tree.vtp`.
+ *
+ * @throws InputError for what is wrong with spec, surfaces or place; nothing is written then
+ */
+export function growToFolder(read: SpecFiles, out: string, options: GrowOptions, writing: WriteOptions): GrownFolder {
+  placeForFolder(out, RUN_FOLDER, writing.where);
+  const home = useBaseNames(read);
+  const meter = new Meter();
+  const result = growRun(home.spec, home.surfaces, {
+    ...options,
+    onProgress: (progress) => {
+      meter.see(progress);
+      options.onProgress?.(progress);
+    },
+    onCost: (stage, cost) => {
+      meter.cost(stage, cost);
+      options.onCost?.(stage, cost);
+    },
+  });
+  const report = reportRun(result, meter.read());
+  if (result.stopped === 'cancelled') return { result, report, files: [] };
+  const files = runFiles(result.record, report, home.bytes);
+  writeFolder(out, RUN_FOLDER, files, writing);
+  return { result, report, files: files.map((file) => file.name) };
+}
+
+/** Writes a run folder of a tree that is there already. */
+export function writeRun(
+  out: string,
+  record: TreeRecord,
+  report: Report,
+  surfaces: ReadonlyMap<string, Uint8Array>,
+  writing: WriteOptions,
+): readonly string[] {
+  const files = runFiles(record, report, surfaces);
+  writeFolder(out, RUN_FOLDER, files, writing);
+  return files.map((file) => file.name);
+}
+
+function runFiles(record: TreeRecord, report: Report, surfaces: ReadonlyMap<string, Uint8Array>): OutFile[] {
+  const { format } = splitTreePath('tree.vtp', 'tree.vtp');
+  return [
+    { name: 'tree.vtp', content: format.encode(record)[0]!.bytes },
+    { name: 'spec.json', content: record.provenance ?? '' },
+    { name: 'report.json', content: `${JSON.stringify(report, null, 2)}\n` },
+    { name: 'report.html', content: renderReport(report) },
+    ...[...surfaces].map(([name, content]) => ({ name, content })),
+  ];
+}
