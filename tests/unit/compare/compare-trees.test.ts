@@ -100,6 +100,17 @@ describe('values', () => {
     expect(result.first!.vesselB).toBe(`supply:${rowAt(other, place) - 1}`);
   });
 
+  test('a quantity that is compared later may differ first', () => {
+    const rows = [20, 40].map((row) => rowAt(RECORD, TREE.position[row]!));
+    const [early, late] = rows[0]! < rows[1]! ? [20, 40] : [40, 20];
+    const other = changed((tree) => {
+      tree.position[late!]![0] += 1e-5;
+      tree.radius[early!]! *= 1.1;
+    });
+    const result = compareTrees(RECORD, other);
+    expect(result.first).toMatchObject({ what: 'radius', rowA: Math.min(...rows) });
+  });
+
   test('NaN is a difference, unless both have it', () => {
     const spoil = () => {
       const record = recordOf(TREE);

@@ -212,6 +212,32 @@ describe('one planted fault', () => {
     expect(checkTable(result)).toContain(`${result.findings[0]!.vessel}: ${result.findings[0]!.message}`);
   });
 
+  test('a cap that borders another cap', () => {
+    const result = check((lumen) => {
+      for (const triangle of lumen.triangles.filter(({ patch }) => patch === 'wall').slice(-48))
+        triangle.patch = 'inlet_0';
+    });
+    const disc = result.findings.filter((finding) => finding.promise === 'cap-disc');
+    expect(disc.map((finding) => finding.vessel)).toEqual(['inlet_0', 'outlet_3']);
+    expect(disc[1]!.message).toBe('the rim does not border the wall all round');
+  });
+
+  test('two tubes that touch in a corner', () => {
+    const result = check((lumen) => {
+      // Far enough apart that nothing but one corner of each wall is moved together.
+      const second = buildTubes(2).triangles.length - buildTubes(1).triangles.length;
+      const a = lumen.triangles[48 * 16]!.at[0];
+      const b = lumen.triangles.at(-second + 48 * 16)!.at[0];
+      pull(
+        lumen,
+        b,
+        [0, 1, 2].map((k) => a[k]! - b[k]!),
+      );
+    }, 2);
+    const pinch = result.findings.find((finding) => finding.promise === 'mesh-manifold')!;
+    expect(pinch.message).toContain('2 separate fans of triangles meet in the corner');
+  });
+
   test('two tubes through each other', () => {
     const result = check((lumen) => {
       // The second, thinner tube is pushed across the first.
