@@ -44,6 +44,11 @@ export interface ViewerState {
   readonly frames: number;
 }
 
+export interface PictureOptions {
+  /** Legend, length bar and directions are drawn too; true where not given. */
+  readonly legend?: boolean;
+}
+
 /** Strings together the drawing, the form, the files and the panel. */
 export class Application {
   #stage: Stage | null = null;
@@ -96,8 +101,8 @@ export class Application {
     };
   }
 
-  /** The drawing with its legend, as PNG. */
-  async picture(): Promise<Blob> {
+  /** The drawing, with its legend unless that is left out, as PNG; always in the fine form. */
+  async picture(options: PictureOptions = {}): Promise<Blob> {
     const stage = this.#stage;
     if (stage === null) throw new Error('there is no drawing');
     const canvas = document.createElement('canvas');
@@ -106,7 +111,7 @@ export class Application {
     const pen = canvas.getContext('2d')!;
     stage.drawFine();
     pen.drawImage(this.#drawing, 0, 0);
-    this.#paintOverlay(pen, stage);
+    if (options.legend !== false) this.#paintOverlay(pen, stage);
     return new Promise((done, fail) => {
       canvas.toBlob(
         (blob) => (blob === null ? fail(new Error('the browser made no picture')) : done(blob)),
@@ -403,7 +408,7 @@ declare global {
   interface Window {
     vesselwrightViewer: {
       state(): ViewerState;
-      picture(): Promise<Blob>;
+      picture(options?: PictureOptions): Promise<Blob>;
       screenOf(vessel: number): { x: number; y: number };
     };
   }

@@ -9,8 +9,8 @@ const METRES: Record<string, number> = { m: 1, mm: 1e-3, um: 1e-6 };
 type Part = Record<string, unknown>;
 
 /**
- * Outlines the tissue of a resolved spec: edges of boxes, circles of balls, ellipsoids and cylinders, and of each part
- * where shapes are combined. A tissue given by a file has no outline here.
+ * Outlines the tissue of a resolved spec: edges of boxes, circles of balls, ellipsoids and cylinders, of each part where
+ * shapes are combined, and of parts that vessels keep out of. A tissue given by a file has no outline here.
  *
  * @param provenance the spec as JSON text; lengths carry their unit in the key (`min_mm`), or are in m
  */
@@ -18,8 +18,10 @@ export function outlineTissue(provenance: string | null): Outline {
   const outline: Outline = { points: [], left: [] };
   if (provenance === null) return outline;
   try {
-    const spec = JSON.parse(provenance) as { tissue?: unknown; spec?: { tissue?: unknown } };
-    addShape(outline, spec.tissue ?? spec.spec?.tissue);
+    const spec = JSON.parse(provenance) as { tissue?: unknown };
+    addShape(outline, spec.tissue);
+    const { forbidden } = (spec.tissue ?? {}) as Part;
+    if (Array.isArray(forbidden)) for (const part of forbidden) addShape(outline, part);
   } catch {
     outline.left.push('unreadable spec');
   }

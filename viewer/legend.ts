@@ -36,8 +36,8 @@ export function describeLegend(
   const title = shown.unit === '' ? quantity.label : `${quantity.label} (${shown.unit})`;
   const rings = record.kinds.includes('drain');
   const common = { title, palette, rings };
-  const first = Math.ceil(scale.low - 1e-9);
-  const last = Math.floor(scale.high + 1e-9);
+  const first = Math.max(extent.least, Math.ceil(scale.low - 1e-9));
+  const last = Math.min(extent.largest, Math.floor(scale.high + 1e-9));
   if (quantity.counted && last - first < MOST_SWATCHES) {
     const swatches = [];
     for (let i = first; i <= last; i++) {

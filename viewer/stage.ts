@@ -7,8 +7,8 @@ import { buildTubes, LEAST_PIXELS, type TubeColours, type Tubes } from './tubes.
 const EMPTY_REACH = 1.1;
 /** A finer picture is drawn this long after the last change, in ms. */
 const REST = 160;
-/** … unless it took longer than this the last time, in ms (a software renderer and very many vessels). */
-const FINE_BUDGET = 1500;
+/** … unless the plain one was still not done so much later, in ms (a software renderer and very many vessels). */
+const PATIENCE = 250;
 
 export interface StageOptions {
   readonly canvas: HTMLCanvasElement;
@@ -37,7 +37,6 @@ export class Stage {
   #reach = EMPTY_REACH;
   #wanted = 0;
   #rest: ReturnType<typeof setTimeout> | undefined;
-  #fineTime = 0;
   #fine: three.WebGLRenderTarget | null = null;
   #shrink: three.Mesh<three.PlaneGeometry, three.RawShaderMaterial>;
   #onFrame: () => void;
@@ -165,22 +164,19 @@ export class Stage {
     this.#wanted = requestAnimationFrame(() => {
       this.#wanted = 0;
       this.#draw(null);
-      clearTimeout(this.#rest);
-      if (this.#fineTime > FINE_BUDGET) {
-        this.#finish();
-        return;
-      }
-      this.#rest = setTimeout(() => {
-        if (this.#wanted === 0) this.drawFine();
-      }, REST);
       this.#onFrame();
+      clearTimeout(this.#rest);
+      this.#rest = setTimeout(() => {
+        if (this.#wanted !== 0) return;
+        if (this.#waitForCard() < PATIENCE) this.drawFine();
+        else this.#finish();
+      }, REST);
     });
   }
 
   /** Draws four samples a pixel into the canvas, now; its pixels can be read until the next event. */
   drawFine(): void {
     const size = this.#renderer.getDrawingBufferSize(new three.Vector2());
-    const began = performance.now();
     if (2 * Math.max(size.x, size.y) > this.mostRows || size.x * size.y > 8e6) {
       this.#draw(null);
     } else {
@@ -189,10 +185,15 @@ export class Stage {
       this.#shrink.material.uniforms.picture!.value = this.#fine.texture;
       this.#renderer.render(this.#shrink, this.#parallel);
     }
+    this.#finish();
+  }
+
+  /** Waits until all that was drawn is done. Returns ms. */
+  #waitForCard(): number {
+    const began = performance.now();
     const gl = this.#renderer.getContext();
     gl.readPixels(0, 0, 1, 1, gl.RGBA, gl.UNSIGNED_BYTE, new Uint8Array(4));
-    this.#fineTime = performance.now() - began;
-    this.#finish();
+    return performance.now() - began;
   }
 
   #finish(): void {

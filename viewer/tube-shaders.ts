@@ -244,7 +244,8 @@ void main() {
   float forth = cut ? 0.1 * (radius - length(outward)) : 0.0;
   vec4 hit = vec4(tubeA.xyz + p - forth * d, 1.0);
   float depth = 0.5 + 0.5 * dot(depthRow, hit) / dot(clipRow, hit);
-  if (hasWay) depth = onWay ? 0.02 * depth : 0.02 + 0.98 * depth;
+  // The way is drawn in front of all else.
+  if (hasWay && onWay) depth *= 0.02;
   gl_FragDepth = depth;
 }
 `;

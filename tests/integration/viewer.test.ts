@@ -7,6 +7,7 @@ import { afterAll, afterEach, beforeAll, describe, expect, it } from 'vitest';
 import { MMHG } from '../../src/core/units.ts';
 import { VTP } from '../../src/formats/tree/vtp.ts';
 import { startViewServer, type ViewServer } from '../../src/node/view-server.ts';
+import type { ViewerState } from '../../viewer/application.ts';
 import { BROWSER_AVAILABLE, type HeadlessBrowser, openBrowser } from '../support/browser.ts';
 import { countDrawn, differingPart, readPng } from '../support/pictures.ts';
 import { twoFacingTrees } from '../support/viewer-tree.ts';
@@ -14,7 +15,7 @@ import { twoFacingTrees } from '../support/viewer-tree.ts';
 /** VESSELWRIGHT_UPDATE_PICTURES=1 writes the reference instead; look at it before it is committed. */
 const REFERENCE = new URL('../fixtures/viewer/two-trees.png', import.meta.url);
 const UPDATE = process.env.VESSELWRIGHT_UPDATE_PICTURES === '1';
-/** Part of the drawn pixels that may differ; two browsers' software renderers differed by less than a tenth of this. */
+/** Part of the drawn pixels that may differ. Between npm's Chromium 143 and Debian's 156 none did. */
 const TOLERANCE = 0.02;
 
 const record = twoFacingTrees();
@@ -43,7 +44,7 @@ async function openPage(url: string): Promise<void> {
   await page.goto(url);
 }
 
-const state = () => page.evaluate(() => window.vesselwrightViewer.state());
+const state = (): Promise<ViewerState> => page.evaluate(() => window.vesselwrightViewer.state());
 
 /** Waits until the drawing has come to rest. */
 async function rest(phase = 'ready'): Promise<void> {
@@ -59,12 +60,16 @@ async function rest(phase = 'ready'): Promise<void> {
 
 /** The drawing alone: legend and panel use the machine's fonts. */
 async function drawing() {
-  await rest();
-  const style = await page.addStyleTag({
-    content: '#overlay, #vessel { visibility: hidden } #drawing { outline: none !important }',
+  await page.waitForFunction(() => window.vesselwrightViewer?.state().phase === 'ready');
+  const address = await page.evaluate(async () => {
+    const blob = await window.vesselwrightViewer.picture({ legend: false });
+    return await new Promise<string>((done) => {
+      const reader = new FileReader();
+      reader.onload = () => done(reader.result as string);
+      reader.readAsDataURL(blob);
+    });
   });
-  const bytes = await page.locator('#view').screenshot();
-  await style.evaluate((element) => (element as Element).remove());
+  const bytes = Buffer.from(address.slice(address.indexOf(',') + 1), 'base64');
   return { bytes, png: readPng(bytes) };
 }
 
@@ -78,10 +83,7 @@ const panel = () =>
     return { title: document.querySelector('#vessel h2')?.textContent ?? '', lines };
   });
 
-async function setSlider(id: string, value: number): Promise<void> {
-  await page.locator(`#${id}`).fill(String(value));
-  await rest();
-}
+const setSlider = (id: string, value: number) => page.locator(`#${id}`).fill(String(value));
 
 const four = (x: number) => String(Number(x.toPrecision(4)));
 
@@ -357,11 +359,12 @@ describe.skipIf(!BROWSER_AVAILABLE)('the viewer in a browser', () => {
     const png = readPng(await readFile(await saved.path()));
     const box = (await page.locator('#drawing').boundingBox())!;
     expect([png.width, png.height]).toEqual([Math.round(box.width), Math.round(box.height)]);
+    // It is what the screen shows, legend and all.
     const shown = readPng(await page.locator('#view').screenshot());
     expect(differingPart(shown, png)).toBeLessThan(TOLERANCE);
-    expect(countDrawn(png)).toBeGreaterThan(countDrawn((await drawing()).png));
-    const size = await page.evaluate(async () => (await window.vesselwrightViewer.picture()).size);
-    expect(size).toBeGreaterThan(10_000);
+    const alone = (await drawing()).png;
+    expect(countDrawn(png)).toBeGreaterThan(countDrawn(alone));
+    expect(differingPart(shown, alone)).toBeGreaterThan(2 * TOLERANCE);
   });
 
   it('opens what is dropped, switches between results, and says in place what cannot be read', async () => {

@@ -122,7 +122,7 @@ describe('pickVessel', () => {
         triple(at + 4),
         ends[at + 3]!,
         ends[at + 7]!,
-        300,
+        150,
       );
       if (enter < best.distance) best = { vessel: v, distance: enter };
     }
@@ -132,9 +132,9 @@ describe('pickVessel', () => {
   it('finds what the slow twin finds, over the picture', () => {
     const camera = homeCamera(true);
     let met = 0;
-    for (let i = 0; i < 9; i++) {
-      for (let j = 0; j < 9; j++) {
-        const ray = rayThrough(camera, 1.3, -0.5 + i / 9, -0.35 + (0.7 * j) / 9);
+    for (let i = 0; i < 8; i++) {
+      for (let j = 0; j < 8; j++) {
+        const ray = rayThrough(camera, 1.3, -0.5 + i / 8, -0.35 + (0.7 * j) / 8);
         const twin = nearestByBalls(ray);
         const got = pickVessel(ends, marks, count, ray, EVERYTHING);
         if (twin.vessel < 0) continue;
@@ -145,7 +145,7 @@ describe('pickVessel', () => {
         if (got!.vessel !== twin.vessel) expect(Math.abs(got!.distance - twin.distance)).toBeLessThan(2e-3);
       }
     }
-    expect(met).toBeGreaterThan(20);
+    expect(met).toBeGreaterThan(15);
   });
 
   it('finds the vessel whose middle is looked at, in both projections', () => {
