@@ -20,11 +20,15 @@ export { CAUTION } from './report/caution.ts';
 export { renderReport } from './report/render.ts';
 export type { Report } from './report/report.ts';
 export {
+  type FlowChange,
+  type FlowResult,
   type GrowOptions,
   type GrowResult,
   growRun,
   promiseLines,
+  type ReportedRun,
   reportRun,
+  solveAgain,
   solveRecord,
   VERSION,
 } from './run.ts';

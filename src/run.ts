@@ -2,6 +2,8 @@ import { checkTree } from './check/check-tree.ts';
 import type { CheckResult } from './check/result.ts';
 import type { Watch } from './core/progress.ts';
 import type { TriangleSurface } from './core/surface.ts';
+import { solveWithEnds } from './flow/ends.ts';
+import { narrowTube, withFlow } from './flow/narrow.ts';
 import { measurePower } from './flow/power.ts';
 import { solveFlow } from './flow/solve.ts';
 import { freezeGrowth } from './growth/freeze.ts';
@@ -107,15 +109,62 @@ export function solveRecord(forest: Forest, spec: Spec): TreeRecord {
   };
 }
 
+/** What is done to a tree before its flow is solved again. */
+export interface FlowChange {
+  /** Pa·s, > 0; the spec's where left out. */
+  readonly viscosity?: number | undefined;
+  /** Tubes by row, and what is taken off their radius: above 0 and below 1. */
+  readonly narrow?: readonly { readonly row: number; readonly fraction: number }[] | undefined;
+}
+
+/** A tree solved again. */
+export interface FlowResult {
+  /** The spec, with the viscosity used. */
+  readonly spec: Spec;
+  /** Null where flow would run backwards: a tree file holds no such flow. */
+  readonly record: TreeRecord | null;
+  /** Rows through which it would. */
+  readonly reversed: readonly number[];
+}
+
+/**
+ * Solves a grown tree again under another viscosity, or with vessels narrowed. With the viscosity alone, flows stay and
+ * pressures follow. Where a vessel is narrowed, roots and terminals keep their pressures and flows follow.
+ *
+ * Cost: O(n)
+ */
+export function solveAgain(record: TreeRecord, spec: Spec, change: FlowChange): FlowResult {
+  const viscosity = change.viscosity ?? spec.blood.viscosity.value;
+  const used: Spec = { ...spec, blood: { ...spec.blood, viscosity: { law: 'constant', value: viscosity } } };
+  const solved = solveRecord(record.forest, used);
+  const narrow = change.narrow ?? [];
+  if (narrow.length === 0) return { spec: used, record: solved, reversed: [] };
+  let forest = record.forest;
+  for (const { row, fraction } of narrow) forest = narrowTube(forest, row, 1 - fraction);
+  const roots = spec.trees.map((tree) => tree.inlet.pressure);
+  const { flow } = solveWithEnds(forest, roots, solved.field!.pressure, viscosity);
+  const reversed: number[] = [];
+  for (let i = 0; i < forest.count; i++) {
+    if (!(flow[i]! * flow[forest.treeStart[forest.tree[i]!]!]! > 0)) reversed.push(i);
+  }
+  if (reversed.length > 0) return { spec: used, record: null, reversed };
+  return { spec: used, record: solveRecord(withFlow(forest, flow), used), reversed };
+}
+
+/** What a report is made of: a run as grown, or a tree solved again, whose tissue may not be known. */
+export type ReportedRun = Pick<GrowResult, 'spec' | 'record' | 'check' | 'shortfalls'> & {
+  readonly tissue: Tissue | null;
+};
+
 /** The report of a run. */
-export function reportRun(result: GrowResult, resources: ReportInput['resources']): Report {
+export function reportRun(result: ReportedRun, resources: ReportInput['resources']): Report {
   const { spec, record, tissue, check, shortfalls } = result;
   const stubs = `the first vessel of a tree may lead in from outside the tissue`;
   return buildReport({
     program: `vesselwright ${VERSION}`,
     record,
     power: measurePower(record.forest, spec.blood.viscosity.value, spec.blood.maintenance),
-    tissueVolume: tissue.volume,
+    tissueVolume: tissue?.volume ?? null,
     askedPressures: spec.trees.map((tree) => tree.terminals.pressure),
     promises: promiseLines(check),
     notes: [...shortfalls, stubs],

@@ -5,9 +5,9 @@ import { basename, dirname, join } from 'node:path';
 /** How a program that can be interrupted at any moment keeps track of what is under way. */
 export interface WriteGuard {
   /** Told of a temporary path before it is made: whoever ends this process removes it. */
-  temporary?(path: string): void;
+  readonly temporary?: ((path: string) => void) | undefined;
   /** Runs a step that must not be cut short: a few renames. */
-  commit?(step: () => void): void;
+  readonly commit?: ((step: () => void) => void) | undefined;
 }
 
 export interface WriteOptions extends WriteGuard {

@@ -50,5 +50,6 @@ function putInPlace(temporary: string, place: string, options: WriteOptions): vo
       throw error;
     }
   });
+  options.temporary?.(old);
   rmSync(old, { recursive: true, force: true });
 }

@@ -1,0 +1,32 @@
+import type { Command } from 'commander';
+import { type CommonOptions, type Io, Talk } from './io.ts';
+
+/** What a command is run with, and where its exit code goes. */
+export interface Context {
+  readonly io: Io;
+  code: number;
+}
+
+/** Adds `--quiet` and, where a result is printed, `--json`. */
+export function addCommonOptions(command: Command, json: string | null): Command {
+  command.option('--quiet', 'say nothing but faults');
+  return json === null ? command : command.option('--json', json);
+}
+
+/** Adds the example that every help ends with. */
+export function addExample(command: Command, ...lines: readonly string[]): Command {
+  return command.addHelpText('after', `\nExample:\n${lines.map((line) => `  $ vesselwright ${line}\n`).join('')}`);
+}
+
+/** Runs a command's work; what it returns becomes the exit code. */
+export async function runWork(
+  context: Context,
+  options: CommonOptions,
+  work: (talk: Talk) => number | Promise<number>,
+): Promise<void> {
+  try {
+    context.code = await work(new Talk(context.io, options));
+  } finally {
+    context.io.progress(null);
+  }
+}

@@ -1,0 +1,56 @@
+import { existsSync, realpathSync } from 'node:fs';
+import { join } from 'node:path';
+import type { Command } from 'commander';
+import { inputError, splitTreePath, TREE_FORMATS } from '../index.ts';
+import { placeForFile, readTree, writeFiles } from '../node/index.ts';
+import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
+import { EXIT } from './exit-codes.ts';
+import type { CommonOptions, Talk } from './io.ts';
+
+interface ExportArguments extends CommonOptions {
+  readonly to: string;
+}
+
+export function addExport(program: Command, context: Context): void {
+  const command = program
+    .command('export')
+    .summary('write a tree in another format')
+    .description('Writes a tree in the format that the file’s extension names.')
+    .argument('<tree>', 'run folder or tree file (.vtp .csv .json .swc)')
+    .requiredOption('--to <file>', `file to write: ${TREE_FORMATS.flatMap((format) => format.extensions).join(', ')}`);
+  addCommonOptions(command, null);
+  command.addHelpText('after', `\nFormats:\n${describeFormats()}`);
+  addExample(command, 'export runs/gel --to gel.csv', 'export runs/gel --to gel.swc');
+  command.action((tree: string, options: ExportArguments) =>
+    runWork(context, options, (talk) => exportTree(tree, options, talk)),
+  );
+}
+
+/** What each format is, the unit it writes and what it cannot hold. */
+function describeFormats(): string {
+  return TREE_FORMATS.map(({ extensions, parts, title, units, drops }) => {
+    const files = parts.length === 1 ? '' : `\n        files: ${parts.map((part) => `*${part}`).join(' and ')}`;
+    const lost = drops.length === 0 ? 'nothing' : drops.join(', ');
+    return `  ${extensions.join(' ').padEnd(5)} ${title}${files}\n        units: ${units}\n        drops: ${lost}\n`;
+  }).join('');
+}
+
+function exportTree(path: string, options: ExportArguments, talk: Talk): number {
+  const { format, files, stem } = splitTreePath(options.to, '--to');
+  for (const file of files) placeForFile(file, '--to');
+  const tree = readTree(path);
+  for (const note of tree.notes) talk.note(note);
+  const sources = tree.files.map(({ name }) => realpathSync(join(tree.folder, name)));
+  const taken = files.find((file) => existsSync(file) && sources.includes(realpathSync(file)));
+  if (taken !== undefined) {
+    throw inputError('file', '--to', `got ${taken}, the file that is read, expected another`);
+  }
+  const encoded = format.encode(tree.record).map(({ suffix, bytes }, k) => ({
+    path: files[k] ?? stem + suffix,
+    content: bytes,
+  }));
+  writeFiles(encoded, talk.writing('--to'));
+  talk.say(`written: ${encoded.map((file) => file.path).join(', ')}`);
+  if (format.drops.length > 0) talk.note(`${format.extensions[0]} holds no ${format.drops.join(', no ')}`);
+  return EXIT.held;
+}

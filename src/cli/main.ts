@@ -1,0 +1,109 @@
+#!/usr/bin/env node
+import { rmSync } from 'node:fs';
+import { MessageChannel, receiveMessageOnPort, Worker } from 'node:worker_threads';
+import { EXIT } from './exit-codes.ts';
+import { tellFailure } from './failure.ts';
+import { TURN, type WorkerMessage, type WorkerStart } from './messages.ts';
+import { ProgressBar } from './progress-bar.ts';
+
+/*
+ * The command runs in a worker thread, because its work is one long computation: this thread stays free to hear Ctrl-C,
+ * to end the work at any moment, and to remove what was half-made.
+ */
+
+/** ms that a step which must not be cut short may take after Ctrl-C. */
+const PATIENCE = 10_000;
+
+const turn = new SharedArrayBuffer(4);
+const { port1: port, port2: workerPort } = new MessageChannel();
+const temporaries = new Set<string>();
+const bar = new ProgressBar();
+let endsByInterrupt = false;
+let code: number | null = null;
+let interrupted = false;
+
+function hear(message: WorkerMessage): void {
+  switch (message.kind) {
+    case 'out':
+      bar.show(null);
+      process.stdout.write(message.text);
+      break;
+    case 'err':
+      bar.show(null);
+      process.stderr.write(message.text);
+      break;
+    case 'progress':
+      bar.show(message.progress);
+      break;
+    case 'temporary':
+      temporaries.add(message.path);
+      break;
+    case 'until-interrupted':
+      endsByInterrupt = true;
+      break;
+    case 'done':
+      code = message.code;
+      break;
+  }
+}
+
+/** Hears what was said and not yet heard. */
+function hearOut(): void {
+  for (let next = receiveMessageOnPort(port); next !== undefined; next = receiveMessageOnPort(port)) hear(next.message);
+}
+
+function removeTemporaries(): void {
+  for (const path of temporaries) rmSync(path, { recursive: true, force: true });
+}
+
+async function interrupt(): Promise<void> {
+  if (interrupted) return;
+  interrupted = true;
+  const flag = new Int32Array(turn);
+  while (Atomics.compareExchange(flag, 0, TURN.free, TURN.ending) === TURN.committing) {
+    if (Atomics.wait(flag, 0, TURN.committing, PATIENCE) === 'timed-out') break;
+  }
+  await worker.terminate();
+  hearOut();
+  bar.show(null);
+  removeTemporaries();
+  if (endsByInterrupt) process.exit(EXIT.held);
+  process.stderr.write('interrupted: nothing is half-written\n');
+  process.exit(EXIT.interrupted);
+}
+
+function explain(error: Error & { code?: string }): number {
+  if (error.code !== 'ERR_WORKER_OUT_OF_MEMORY')
+    return tellFailure(error, { err: (text) => process.stderr.write(text) });
+  process.stderr.write('out of memory: give more, for instance NODE_OPTIONS=--max-old-space-size=8000 (MB)\n');
+  return EXIT.fault;
+}
+
+// A reader that stops listening (`| head`) is no fault.
+for (const stream of [process.stdout, process.stderr]) stream.on('error', () => {});
+for (const signal of ['SIGINT', 'SIGTERM', 'SIGHUP'] as const) process.on(signal, interrupt);
+
+const start: WorkerStart = {
+  argv: process.argv.slice(2),
+  port: workerPort,
+  turn,
+  showProgress: process.stderr.isTTY === true,
+};
+const worker = new Worker(new URL('./command-worker.js', import.meta.url), {
+  workerData: start,
+  transferList: [workerPort],
+});
+port.on('message', hear);
+worker.on('error', (error) => {
+  hearOut();
+  bar.show(null);
+  code = explain(error as Error);
+});
+worker.on('exit', () => {
+  if (interrupted) return;
+  hearOut();
+  bar.show(null);
+  removeTemporaries();
+  port.close();
+  process.exitCode = code ?? explain(new Error('the worker thread ended without a result'));
+});
