@@ -1,7 +1,9 @@
 import { type Fault, InputError } from '../core/errors.ts';
 import type { TriangleSurface } from '../core/surface.ts';
 import { type Contact, selfContacts } from './self-contact.ts';
-import { shellVolumes, windingNumber } from './surface-measures.ts';
+import { nestingFaults } from './shell-nesting.ts';
+import { shellVolumes } from './surface-measures.ts';
+import { count, point, short, triangleText } from './surface-text.ts';
 import { edgeEnd, pinchedCorners, type SurfaceTopology, surfaceShells, surfaceTopology } from './surface-topology.ts';
 
 /** What is known of a surface that passed. */
@@ -15,8 +17,10 @@ export interface CheckedSurface {
   readonly hollows: number;
 }
 
-/** Crossings looked for before the search stops, and triangles with no area named. */
+/** Crossings found before the search stops. */
 const MOST_CONTACTS = 100;
+/** Largest coordinate, in the file's unit: a kilometre in micrometres, and no product of six of them overflows. */
+const LARGEST = 1e9;
 /** A triangle counts as degenerate where its height is less than this share of its longest edge. */
 const FLAT = 1e-10;
 
@@ -29,8 +33,9 @@ const FLAT = 1e-10;
  *
  * @param surface as read, in the file's own unit (so that coordinates in messages are the file's)
  * @param where   named in every fault, e.g. the file
- * @throws  InputError with every fault found; codes `empty-surface`, `non-finite`, `bad-index`, `degenerate-triangle`,
- *          `open-surface`, `non-manifold`, `inconsistent-orientation`, `self-crossing`, `inside-out`, `nested-piece`
+ * @throws  InputError with every fault found; codes `empty-surface`, `non-finite`, `out-of-range`, `bad-index`,
+ *          `degenerate-triangle`, `open-surface`, `non-manifold`, `inconsistent-orientation`, `self-crossing`,
+ *          `inside-out`, `nested-piece`
  * Cost:    O(f log f), 10⁵ triangles in about a second.
  */
 export function checkSurface(surface: TriangleSurface, where: string): CheckedSurface {
@@ -105,6 +110,12 @@ function contentFaults({ position, triangle }: TriangleSurface, where: string): 
     const message = `got a coordinate that is not finite at corner ${corner}: ${point(position, corner)}, expected numbers`;
     faults.push({ code: 'non-finite', where, message });
   }
+  const huge = position.findIndex((value) => Math.abs(value) > LARGEST && Number.isFinite(value));
+  if (huge >= 0) {
+    const corner = Math.floor(huge / 3);
+    const message = `got ${point(position, corner)} for corner ${corner}, expected coordinates of at most ${LARGEST} in size`;
+    faults.push({ code: 'out-of-range', where, message });
+  }
   const corners = position.length / 3;
   const bad = triangle.findIndex((row) => !(row >= 0 && row < corners));
   if (bad >= 0) {
@@ -138,57 +149,9 @@ function flatTriangles({ position: p, triangle }: TriangleSurface): number[] {
   return out;
 }
 
-/** Outer shells must lie outside all others, inward ones inside exactly one piece. */
-function nestingFaults(surface: TriangleSurface, where: string, shell: Int32Array, volumes: Float64Array): Fault[] {
-  const faults: Fault[] = [];
-  if (volumes.length === 1) return faults;
-  const { position, triangle } = surface;
-  const seen = new Uint8Array(volumes.length);
-  for (let t = 0; t < shell.length && faults.length === 0; t++) {
-    const own = shell[t]!;
-    if (seen[own] === 1) continue;
-    seen[own] = 1;
-    const corner = 3 * triangle[3 * t]!;
-    const around = Math.round(
-      windingNumber(surface, position[corner]!, position[corner + 1]!, position[corner + 2]!, shell, own),
-    );
-    const at = point(position, corner / 3);
-    if (volumes[own]! > 0 && around !== 0)
-      faults.push({
-        code: 'nested-piece',
-        where,
-        message: `got a piece inside another piece at ${at}, expected it turned inwards (a hollow) or left out`,
-      });
-    if (volumes[own]! <= 0 && around !== 1)
-      faults.push({
-        code: 'inside-out',
-        where,
-        message: `got a piece that is inside out at ${at}, expected triangles counter-clockwise seen from outside`,
-      });
-  }
-  return faults;
-}
-
 function contactText(surface: TriangleSurface, contacts: readonly Contact[]): string {
   const { first, second } = contacts[0]!;
   const many = contacts.length >= MOST_CONTACTS ? `at least ${contacts.length}` : `${contacts.length}`;
   const noun = contacts.length === 1 ? 'pair' : 'pairs';
   return `got a self-crossing surface: ${many} ${noun} of triangles cross or touch, e.g. ${triangleText(surface, first)} and ${triangleText(surface, second)}, expected none`;
-}
-
-function triangleText({ position, triangle }: TriangleSurface, t: number): string {
-  const corners = [0, 1, 2].map((k) => point(position, triangle[3 * t + k]!));
-  return `triangle ${t} ${corners.join(' ')}`;
-}
-
-function point(position: Float64Array, corner: number): string {
-  return `(${[0, 1, 2].map((axis) => short(position[3 * corner + axis]!)).join(', ')})`;
-}
-
-function short(value: number): string {
-  return String(Number(value.toPrecision(7)));
-}
-
-function count(n: number, noun: string): string {
-  return `${n} ${noun}${n === 1 ? '' : 's'}`;
 }

@@ -33,24 +33,25 @@ export function shellVolumes(surface: TriangleSurface, shell: Int32Array | null,
 }
 
 /**
- * How often a surface winds round a point: 1 inside a closed surface with outward normals, 0 outside.
+ * How often a surface, or some of its triangles, wind round a point: 1 inside a closed surface with outward normals, 0
+ * outside.
  *
- * @param skip shell whose triangles are left out, or −1
+ * @param rows triangles looked at, or null for all
  * Source: solid angle of a triangle, Van Oosterom & Strackee (1983), IEEE Trans Biomed Eng 30:125; from memory.
- * Cost:   O(f), one arctangent a triangle.
+ * Cost:   one arctangent a triangle.
  */
 export function windingNumber(
   surface: TriangleSurface,
   x: number,
   y: number,
   z: number,
-  shell: Int32Array | null = null,
-  skip = -1,
+  rows: Int32Array | null = null,
 ): number {
   const { position, triangle } = surface;
+  const count = rows === null ? triangle.length / 3 : rows.length;
   let sum = 0;
-  for (let t = 0; t < triangle.length / 3; t++) {
-    if (shell !== null && shell[t] === skip) continue;
+  for (let i = 0; i < count; i++) {
+    const t = rows === null ? i : rows[i]!;
     const a = 3 * triangle[3 * t]!;
     const b = 3 * triangle[3 * t + 1]!;
     const c = 3 * triangle[3 * t + 2]!;

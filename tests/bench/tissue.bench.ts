@@ -1,6 +1,6 @@
 /*
- * Times of the questions that growth asks of a tissue. Run with a Node that strips types:
- *   node --experimental-strip-types tests/bench/tissue.bench.ts [questions, default 200000]
+ * Times of the questions that growth asks of a tissue.
+ *   node tests/bench/run.mjs tissue [-- questions, default 200000]
  * Prints, for each tissue and question, the median processor time of one call over 7 rounds and a checksum of the answers.
  */
 import { randomStream } from '../../src/core/random.ts';

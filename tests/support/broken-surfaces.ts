@@ -308,6 +308,8 @@ const files: readonly (readonly [string, BrokenSurface['extension'], Uint8Array,
   ['NaN', '.obj', text(line(obj, 1, 'v nan 0 0')), /nan/i],
   ['two coordinates', '.obj', text(line(obj, 1, 'v 0 0')), /got nothing, expected z/],
   ['unknown statement', '.obj', text(line(obj, 1, 'vertex 0 0 0')), /got "vertex", expected an OBJ statement/],
+  ['huge coordinate', '.obj', text(line(obj, 1, 'v 1e30 0 0')), /at most/],
+  ['huge coordinate', '.stl', stlWith(3e38, 84 + 12), /at most/],
   ['free-form surface', '.obj', text(`${obj}cstype bezier\n`), /free-form/],
   ['cut off in a face', '.obj', text(obj.slice(0, obj.lastIndexOf(' '))), /corners|open/],
 ];

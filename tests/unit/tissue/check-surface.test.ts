@@ -50,6 +50,8 @@ describe('checkSurface', () => {
       'bad-index',
     ]);
     expect(codes(surfaceOf([], []))).toEqual(['empty-surface']);
+    expect(codes(moved(cube(), ([x, y, z]) => [x, 1e200 * y, z]))).toEqual(['out-of-range']);
+    expect(codes(moved(cube(), ([x, y, z]) => [1e-200 * x, 1e-200 * y, 1e-200 * z]))).toEqual(['degenerate-triangle']);
   });
 
   it('counts pieces and hollows', () => {
@@ -155,6 +157,19 @@ describe('checkSurface', () => {
         ),
       ),
     ).toContain('self-crossing');
+  });
+
+  it('is quick with thousands of separate pieces', () => {
+    const corners: [number, number, number][] = [];
+    const faces: [number, number, number][] = [];
+    for (let i = 0; i < 8000; i++) {
+      const [x, y, z] = [i % 20, Math.floor(i / 20) % 20, Math.floor(i / 400)];
+      corners.push([x, y, z], [x + 0.5, y, z], [x, y + 0.5, z], [x, y, z + 0.5]);
+      const a = 4 * i;
+      faces.push([a, a + 2, a + 1], [a, a + 1, a + 3], [a, a + 3, a + 2], [a + 1, a + 2, a + 3]);
+    }
+    // All-pairs winding numbers would take 8000 · 32000 arctangents: minutes.
+    expect(checkSurface(surfaceOf(corners, faces), '').pieces).toBe(8000);
   });
 
   it('takes long thin triangles for what they are', () => {

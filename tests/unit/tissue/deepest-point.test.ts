@@ -1,4 +1,6 @@
 import { describe, expect, it } from 'vitest';
+import { randomStream } from '../../../src/core/random.ts';
+import type { Triple } from '../../../src/spec/types.ts';
 import { deepestPoint } from '../../../src/tissue/deepest-point.ts';
 import { notchedCube, torus } from '../../support/surfaces.ts';
 import { surfaceTissue, tissueOf } from '../../support/tissue-twins.ts';
@@ -23,6 +25,21 @@ describe('deepest point', () => {
     expect(found.depth).toBeLessThanOrEqual(inradius * (1 + 1e-12));
     expect(found.depth).toBeGreaterThan(0.98 * inradius);
     expect(found.bound).toBeGreaterThanOrEqual(inradius);
+  });
+
+  it('is found wherever the deeper of two balls lies', () => {
+    const random = randomStream('two', 'balls');
+    for (let i = 0; i < 40; i++) {
+      const at = (): Triple => [8 * random.next(), 8 * random.next(), 8 * random.next()];
+      const tissue = tissueOf({
+        shape: 'union',
+        parts: [
+          { shape: 'sphere', center: at(), radius: 0.5 },
+          { shape: 'sphere', center: at(), radius: 0.55 },
+        ],
+      });
+      expect(deepestPoint(tissue).depth).toBeGreaterThan(0.98 * 0.55);
+    }
   });
 
   it('of flat ridges and thin walls: still a point, with an honest bound', () => {

@@ -2,6 +2,8 @@ import { describe, expect, it } from 'vitest';
 import { randomStream } from '../../../src/core/random.ts';
 import type { TriangleSurface } from '../../../src/core/surface.ts';
 import { shellVolumes, windingNumber } from '../../../src/tissue/surface-measures.ts';
+import { surfaceNormals } from '../../../src/tissue/surface-normals.ts';
+import { surfaceTopology } from '../../../src/tissue/surface-topology.ts';
 import { ball, bean, cube, insideOut, moved, notchedCube, together, torus } from '../../support/surfaces.ts';
 import { boxPoint, bruteDistance, rayInside, surfaceTissue, tissueOf } from '../../support/tissue-twins.ts';
 
@@ -65,6 +67,23 @@ describe.each(surfaces)('%s', (_, surface) => {
       expect(fresh.deeperThan(...p, need)).toBe(d >= need);
       expect(tissue.deeperThan(...p, d)).toBe(true);
       expect(fresh.depth(...p)).toBe(d);
+    }
+  });
+});
+
+describe('normals of a surface', () => {
+  it('at a corner weigh faces by their angle, however many triangles cut them', () => {
+    const { cornerNormal, edgeNormal } = surfaceNormals(cube(), surfaceTopology(cube()));
+    // One or two triangles of each face meet at a corner of the cube; the normal is the diagonal all the same.
+    const { position, triangle } = cube();
+    for (let i = 0; i < position.length; i++)
+      expect(cornerNormal[i]).toBeCloseTo((position[i]! * 2 - 1) / Math.sqrt(3), 14);
+    for (let e = 0; e < triangle.length; e++) {
+      const to = triangle[e % 3 === 2 ? e - 2 : e + 1]!;
+      let along = 0;
+      for (let axis = 0; axis < 3; axis++)
+        along += (position[3 * to + axis]! - position[3 * triangle[e]! + axis]!) * edgeNormal[3 * e + axis]!;
+      expect(Math.abs(along)).toBeLessThan(1e-15);
     }
   });
 });
