@@ -99,6 +99,11 @@ export class Demand {
     this.places = 0;
   }
 
+  /** True for a site that no other can stand in for and that has been tried without success. */
+  isPrecious(site: number): boolean {
+    return this.by !== 'count' && this.tries[site]! > 0;
+  }
+
   siteX(site: number): number {
     return this.x[site]!;
   }

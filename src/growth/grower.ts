@@ -14,7 +14,9 @@ import { Resizer } from './resize.ts';
 import { hangFirst, plant, type Seedling } from './seedling.ts';
 
 /** Growth of the whole forest between two refreshes of potentials and sizes. */
-const REFRESH = 1.15;
+const REFRESH = 1.05;
+/** Growth between two sizings of trees whose radii depend on all their lengths. */
+const RESIZE = 1.15;
 /** Edge of a grid cell over the spacing of terminals. */
 const CELL = 0.9;
 /** Radius certified over radius needed. */
@@ -56,6 +58,7 @@ export class Grower {
   /** Set when a first vessel needs a wider stub than was planted: the tree must be planted anew. */
   cramped = false;
   private nextRefresh = 2;
+  private nextResize = 2;
   private nextGrid = 8;
 
   /**
@@ -218,9 +221,10 @@ export class Grower {
     const z = demand.siteZ(site);
     const share = demand.siteShare(site);
     const first = demand.served === 0;
-    const row = first
+    let row = first
       ? hangFirst(this.builder, this.room, tree.seedling, x, y, z, share)
       : this.attacher.attach(t, x, y, z, share);
+    if (row < 0 && !first && demand.isPrecious(site)) row = this.attacher.attachBent(t, x, y, z, share);
     if (row < 0) {
       demand.giveBack(site, false);
       return;
@@ -228,11 +232,13 @@ export class Grower {
     demand.served++;
     this.keepSite(row, site);
     if (!first) {
-      const junction = this.builder.parent[row]!;
+      let branch = row;
+      while (this.builder.childCount(this.builder.parent[branch]!) === 1) branch = this.builder.parent[branch]!;
+      const junction = this.builder.parent[branch]!;
       const a = this.builder.child[2 * junction]!;
-      tree.resizer.extend(this.builder, junction, row, a === row ? this.builder.child[2 * junction + 1]! : a);
+      tree.resizer.extend(this.builder, junction, row, a === branch ? this.builder.child[2 * junction + 1]! : a);
     }
-    if (first) this.attacher.refreshPotential(this.builder.preorder(t));
+    if (first) this.attacher.refreshPotential(this.builder.preorder(t), share);
     if (this.served >= this.nextRefresh) this.refresh();
   }
 
@@ -244,9 +250,11 @@ export class Grower {
       this.room.rebuild(CELL * Math.cbrt(this.tissue.volume / served));
     }
     let changed = false;
+    const due = served >= this.nextResize;
+    if (due) this.nextResize = Math.max(served + 1, Math.ceil(served * RESIZE));
     for (let t = 0; t < this.trees.length; t++) {
       if (this.trees[t]!.demand.served === 0) continue;
-      if (this.trees[t]!.resized) {
+      if (due && this.trees[t]!.resized) {
         this.resize(t, false);
         changed = true;
       }
@@ -255,7 +263,10 @@ export class Grower {
       for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.demand.served > 0) this.straightenAll(t);
     }
     for (let t = 0; t < this.trees.length; t++) {
-      if (this.trees[t]!.demand.served > 0) this.attacher.refreshPotential(this.builder.preorder(t));
+      const { demand, seedling } = this.trees[t]!;
+      if (demand.served === 0) continue;
+      const whole = this.builder.load[this.builder.child[2 * seedling.root]!]!;
+      this.attacher.refreshPotential(this.builder.preorder(t), whole / demand.served);
     }
   }
 
