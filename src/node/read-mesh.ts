@@ -1,7 +1,7 @@
-import { existsSync, readFileSync, statSync } from 'node:fs';
+import { existsSync, statSync } from 'node:fs';
 import { join } from 'node:path';
 import type { LumenFiles } from '../index.ts';
-import { withFiles } from './system-faults.ts';
+import { readBytes } from './system-faults.ts';
 
 /** Whether a path is a folder that holds a lumen mesh. */
 export function isMeshFolder(path: string): boolean {
@@ -16,8 +16,7 @@ export function isMeshFolder(path: string): boolean {
  */
 export function readMesh(path: string): LumenFiles {
   const read = (name: string): Uint8Array => {
-    const file = join(path, name);
-    return withFiles(path, file, 'a file of a mesh folder', () => readFileSync(file));
+    return readBytes(path, join(path, name), 'a file of a mesh folder');
   };
   const may = (name: string): Uint8Array | null => (existsSync(join(path, name)) ? read(name) : null);
   return {

@@ -1,7 +1,7 @@
 import { readFileSync } from 'node:fs';
 import { basename, dirname, resolve } from 'node:path';
 import { decodeSurface, type Fault, InputError, parseSpec, type Spec, type TriangleSurface } from '../index.ts';
-import { withFiles } from './system-faults.ts';
+import { readBytes, withFiles } from './system-faults.ts';
 
 type Shape = Spec['tissue'];
 
@@ -46,9 +46,7 @@ export function readSurfaces(spec: Spec, folder: string): SpecFiles {
   for (const { where, file } of surfaceShapes(spec)) {
     if (bytes.has(file)) continue;
     try {
-      const content = withFiles(where, file, 'a surface file beside the spec', () =>
-        readFileSync(resolve(folder, file)),
-      );
+      const content = readBytes(where, file, 'a surface file beside the spec', resolve(folder, file));
       bytes.set(file, content);
       surfaces.set(file, decodeSurface(content, file));
     } catch (error) {

@@ -7,10 +7,11 @@ import {
   type Spec,
   shapeFiles,
   splitTreePath,
+  type TreeFormat,
   type TreeRecord,
 } from '../index.ts';
 import { readSurfaces, type SpecFiles } from './read-spec.ts';
-import { withFiles } from './system-faults.ts';
+import { readBytes, withFiles } from './system-faults.ts';
 
 /** A tree as it lies on the disk. */
 export interface TreeFiles {
@@ -22,8 +23,7 @@ export interface TreeFiles {
   readonly folder: string;
   /** Names and bytes of the files read. */
   readonly files: readonly { readonly name: string; readonly bytes: Uint8Array }[];
-  /** Id of the format. */
-  readonly format: string;
+  readonly format: TreeFormat;
   readonly record: TreeRecord;
   /** What the file lacked and what was supplied, a sentence each. */
   readonly notes: readonly string[];
@@ -36,7 +36,8 @@ export interface TreeFiles {
  */
 export function readTree(path: string): TreeFiles {
   const wanted = 'a run folder or a tree file';
-  const run = withFiles(path, path, wanted, () => statSync(path)).isDirectory();
+  // A tree of two files has none under the name that stands for both.
+  const run = existsSync(path) && statSync(path).isDirectory();
   const file = run ? join(path, 'tree.vtp') : path;
   if (run && !existsSync(file)) {
     const mesh = existsSync(join(path, 'mesh.json'));
@@ -46,10 +47,10 @@ export function readTree(path: string): TreeFiles {
   const { format, files } = splitTreePath(file, path);
   const parts = files.map((part) => ({
     name: basename(part),
-    bytes: withFiles(path, part, wanted, () => readFileSync(part)),
+    bytes: readBytes(path, part, wanted),
   }));
   const { record, notes } = format.decode(parts);
-  return { path, run, folder: dirname(resolve(file)), files: parts, format: format.id, record, notes };
+  return { path, run, folder: dirname(resolve(file)), files: parts, format, record, notes };
 }
 
 /**

@@ -1,3 +1,4 @@
+import { readFileSync } from 'node:fs';
 import { type InputError, inputError } from '../index.ts';
 
 /** What the system said, in words that tell the user what to do. */
@@ -45,4 +46,14 @@ function systemFault(error: NodeJS.ErrnoException, where: string, path: string, 
   const code = error.code ?? '';
   const words = WORDS[code] ?? `but the system says ${code}`;
   return inputError('file', where, `got ${path}, ${words}, expected ${wanted}`);
+}
+
+/**
+ * Bytes of a file, as a plain array: a Buffer's `slice` is a view, and decoders may take it for a copy.
+ *
+ * @throws InputError where the system refuses
+ */
+export function readBytes(where: string, path: string, wanted: string, at = path): Uint8Array {
+  const buffer = withFiles(where, path, wanted, () => readFileSync(at));
+  return new Uint8Array(buffer.buffer, buffer.byteOffset, buffer.length);
 }

@@ -137,8 +137,8 @@ export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): Vtk
     if (data === null) return null;
     if (data.length % size !== 0)
       return fault(array, 'length', `got ${data.length} bytes, expected a multiple of ${size}`);
-    // A copy puts the bytes where a typed array may look at them, and in this machine's order.
-    const copy = data.slice();
+    // A copy puts the bytes where a typed array may look at them, and in this machine’s order; slice() of a Node Buffer is none.
+    const copy = new Uint8Array(data);
     if (big !== IS_BIG) swapBytes(copy, size);
     return widen(type, copy.buffer);
   };
