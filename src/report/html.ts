@@ -22,7 +22,7 @@ export function formatNumber(value: number | null, digits = 4): string {
     const [mantissa, exponent] = value.toExponential(digits - 1).split('e') as [string, string];
     return `${groupDigits(trimZeros(mantissa))}·10<sup>${Number(exponent) < 0 ? `−${exponent.slice(1)}` : Number(exponent)}</sup>`;
   }
-  const text = size >= 10 ** digits ? String(Math.round(value)) : trimZeros(value.toPrecision(digits));
+  const text = size >= Number(`1e${digits}`) ? String(Math.round(value)) : trimZeros(value.toPrecision(digits));
   return groupDigits(text);
 }
 
