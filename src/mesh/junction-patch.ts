@@ -31,6 +31,11 @@ const SPREAD = ((): Float64Array => {
   return Float64Array.from(out);
 })();
 
+/** How often a patch is tried, from a start a little different each time, until its score is good. */
+const ATTEMPTS = 6;
+/** sin² of the smallest angle that ends the tries: 22°. */
+const ENOUGH = 0.14;
+
 /** Builds the wall of one inner node after another. */
 export class PatchBuilder {
   private readonly mesh = new PatchMesh();
@@ -61,25 +66,45 @@ export class PatchBuilder {
    * @returns     the worst score of its triangles: sin² of the smallest angle, or less than 0 where the wall is folded
    */
   addPatch(out: GrowingSurface, rings: Int32Array, row: number): number {
-    const { forest, children, layout, shape, mesh, around } = this;
+    const { forest, children, layout, shape } = this;
     const unit = loadShape(shape, forest, children, row, layout);
-    let whole = false;
-    for (let attempt = 0; attempt < 4 && !whole; attempt++) {
-      mesh.reset();
-      this.addRims(out, rings, row, unit);
-      this.addSpread();
-      whole = triangulateDirections(mesh, this.directions(attempt)) && this.markCaps() === shape.count * around;
+    let best = -Infinity;
+    let bestAttempt = 0;
+    let last = 0;
+    for (let attempt = 0; attempt < ATTEMPTS && best < ENOUGH; attempt++) {
+      const score = this.tryPatch(out, rings, row, unit, attempt);
+      last = attempt;
+      if (score > best) {
+        best = score;
+        bestAttempt = attempt;
+      }
+      if (this.overlapping) break;
     }
-    if (!whole) {
-      // The rims run into each other: join them as if they were small enough to be apart. Closed, if not simple.
+    if (last !== bestAttempt) this.tryPatch(out, rings, row, unit, bestAttempt);
+    this.emit(out, row, unit);
+    return best;
+  }
+
+  /** Whether the rims of the last patch ran into each other. */
+  private overlapping = false;
+
+  private tryPatch(out: GrowingSurface, rings: Int32Array, row: number, unit: number, attempt: number): number {
+    const { mesh, shape, around } = this;
+    mesh.reset();
+    this.addRims(out, rings, row, unit);
+    this.addSpread(attempt);
+    this.overlapping =
+      !triangulateDirections(mesh, this.directions(attempt)) || this.markCaps() !== shape.count * around;
+    if (this.overlapping) {
+      // Join the rims as if they were small enough to be apart. Closed, if not simple.
       mesh.reset();
       this.addRims(out, rings, row, unit);
+      this.addSpread(attempt);
       if (!triangulateDirections(mesh, this.shrunkDirections()) || this.markCaps() !== shape.count * around)
         throw new InvariantError(`addPatch: no triangulation of the rims of node ${row}`);
     }
-    const worst = this.remesher.run(64 * around * shape.count + 4000);
-    this.emit(out, row, unit);
-    return whole ? worst : Math.min(worst, -1);
+    const worst = this.remesher.run(64 * around * shape.count + 4000, attempt);
+    return this.overlapping ? Math.min(worst, -1) : worst;
   }
 
   /** Row of the vessel that a tube of the shape stands for. */
@@ -117,10 +142,11 @@ export class PatchBuilder {
   }
 
   /** Adds a few points of the wall well away from the rims, so that the hull of the directions holds the node. */
-  private addSpread(): void {
+  private addSpread(attempt: number): void {
     const { shape, mesh } = this;
+    const mirror = (attempt & 1) === 0 ? 1 : -1;
     for (let i = 0; i < SPREAD.length; i += 3) {
-      const x = SPREAD[i]!;
+      const x = mirror * SPREAD[i]!;
       const y = SPREAD[i + 1]!;
       const z = SPREAD[i + 2]!;
       let free = true;

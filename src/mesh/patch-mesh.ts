@@ -34,6 +34,8 @@ export class PatchMesh {
   cap = new Uint8Array(2048);
   /** (t) quality as the remesher scores it. */
   score = new Float64Array(2048);
+  /** (t) when the remesher last changed the triangle. */
+  changed = new Int32Array(2048);
 
   private free = new Int32Array(2048);
   private freeCount = 0;
@@ -143,8 +145,8 @@ export class PatchMesh {
     leaving[d] = h;
   }
 
-  /** Puts a vertex on the edge of h and joins it to the two far corners; returns the two new triangles' slots. */
-  split(h: number, m: number): readonly [number, number] {
+  /** Puts a vertex on the edge of h and joins it to the two far corners. */
+  split(h: number, m: number): void {
     const { leaving } = this;
     const h1 = this.next(h);
     const h2 = this.previous(h);
@@ -171,7 +173,6 @@ export class PatchMesh {
     leaving[b] = 3 * n2;
     leaving[c] = h2;
     leaving[d] = t2;
-    return [n1, n2];
   }
 
   /** Draws the start of h into its end. The caller has checked the link condition. */
@@ -236,6 +237,7 @@ export class PatchMesh {
     this.twin = widen(this.twin, new Int32Array(3 * wider));
     this.cap = widen(this.cap, new Uint8Array(wider));
     this.score = widen(this.score, new Float64Array(wider));
+    this.changed = widen(this.changed, new Int32Array(wider));
     this.free = widen(this.free, new Int32Array(wider));
   }
 }

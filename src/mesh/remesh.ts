@@ -3,12 +3,18 @@ import { FREE, type PatchMesh } from './patch-mesh.ts';
 
 /** Longest edge allowed, in edge lengths wanted. */
 const LONG = 1.3;
+/** Longest edge allowed while the patch is coarse, at each attempt. */
+const COARSE = [1.3, 1.15, 1.4, 1.22];
 /** Shortest edge wanted. */
 const SHORT = 0.62;
+/** Move too small to be worth it, in edge lengths wanted. */
+const STILL = 0.06;
 /** Least distance of a triangle's plane from the node, in radii of the thinnest tube, while the patch is coarse. */
 const STAR = 0.2;
 /** sin² of the smallest angle that smoothing must keep: 35°. */
 const GOOD = 0.33;
+/** sin² of the smallest angle from which on a flip is not looked for: 42°. */
+const FINE = 0.45;
 /** sin² of the smallest angle below which a triangle is worked on at the end: 28°. */
 const POOR = 0.22;
 
@@ -27,7 +33,10 @@ export class Remesher {
   private readonly shape: JunctionShape;
   private mark = new Int32Array(1024);
   private round = 0;
+  private clock = 0;
+  private looked = -1;
   private most = 0;
+  private coarse = 0;
   private star = true;
   private thin = 1;
 
@@ -38,10 +47,12 @@ export class Remesher {
 
   /**
    * @param most vertices; splitting stops there, which happens only where the rims run into each other
+   * @param attempt varies the edge length of the coarse stage
    * @returns    the worst score of the patch
    */
-  run(most: number): number {
+  run(most: number, attempt: number): number {
     this.most = most;
+    this.coarse = COARSE[attempt % COARSE.length]!;
     const { mesh } = this;
     this.star = true;
     this.thin = Math.min(...this.shape.radius.subarray(0, this.shape.count));
@@ -49,7 +60,7 @@ export class Remesher {
     for (let pass = 0; pass < 16; pass++) {
       const splits = this.splitLong();
       this.flipAll();
-      if (pass % 2 === 1) this.smoothAll();
+      if (splits === 0) this.smoothAll();
       if (splits === 0) break;
     }
     this.star = false;
@@ -74,6 +85,7 @@ export class Remesher {
   private splitLong(): number {
     const { mesh, shape } = this;
     let splits = 0;
+    const long = this.star ? this.coarse : LONG;
     const end = 3 * mesh.triangles;
     for (let h = 0; h < end && mesh.vertices < this.most; h++) {
       const a = mesh.from[h]!;
@@ -83,14 +95,11 @@ export class Remesher {
       const b = mesh.from[t]!;
       const size = 0.5 * (mesh.size[a]! + mesh.size[b]!);
       const square = mesh.squaredLength(a, b);
-      if (square < LONG * LONG * size * size) continue;
+      if (square < long * long * size * size) continue;
       this.project(a, b, this.star);
       const m = mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeAt(shape.x, shape.y, shape.z), FREE);
-      const [n1, n2] = mesh.split(h, m);
-      this.rescore((h / 3) | 0);
-      this.rescore((t / 3) | 0);
-      this.rescore(n1);
-      this.rescore(n2);
+      mesh.split(h, m);
+      this.rescoreStar(m);
       splits++;
     }
     return splits;
@@ -111,18 +120,32 @@ export class Remesher {
     shape.project(x, y, z);
   }
 
+  /** Flips edges until none gains, looking only where a triangle has changed since it was last looked at. */
   private flipAll(): void {
     const { mesh } = this;
     for (let sweep = 0; sweep < 8; sweep++) {
+      const since = this.looked;
+      this.looked = ++this.clock;
       let flips = 0;
-      for (let h = 0; h < 3 * mesh.triangles; h++) {
-        if (mesh.from[h]! < 0) continue;
-        const t = mesh.twin[h]!;
-        if (t < h || mesh.locked(h)) continue;
-        if (this.tryFlip(h, t)) flips++;
+      const end = mesh.triangles;
+      for (let s = 0; s < end; s++) {
+        if (mesh.from[3 * s]! < 0 || mesh.cap[s] === 1) continue;
+        const fresh = mesh.changed[s]! >= since;
+        for (let h = 3 * s; h < 3 * s + 3; h++) {
+          const t = mesh.twin[h]!;
+          const u = (t / 3) | 0;
+          if (t < h || mesh.cap[u] === 1) continue;
+          if (!fresh && mesh.changed[u]! < since) continue;
+          if (this.tryFlip(h, t)) flips++;
+        }
       }
       if (flips === 0) break;
     }
+  }
+
+  private setScore(t: number, score: number): void {
+    this.mesh.score[t] = score;
+    this.mesh.changed[t] = this.clock;
   }
 
   private tryFlip(h: number, t: number): boolean {
@@ -130,6 +153,7 @@ export class Remesher {
     const s = (h / 3) | 0;
     const u = (t / 3) | 0;
     const before = Math.min(mesh.score[s]!, mesh.score[u]!);
+    if (before > FINE) return false;
     const a = mesh.from[h]!;
     const b = mesh.from[t]!;
     const c = mesh.from[mesh.previous(h)]!;
@@ -140,8 +164,8 @@ export class Remesher {
     if (!(second > before + 1e-9)) return false;
     if (mesh.adjacent(c, d)) return false;
     mesh.flip(h);
-    mesh.score[s] = first;
-    mesh.score[u] = second;
+    this.setScore(s, first);
+    this.setScore(u, second);
     return true;
   }
 
@@ -188,33 +212,38 @@ export class Remesher {
     const z = shape.z;
     const limit = Math.min(worst, floor);
     const longest = stretch * LONG * mesh.size[a]!;
-    const fits = (start: number): boolean => {
-      let e = start;
-      do {
-        const p = mesh.from[mesh.next(e)]!;
-        const q = mesh.from[mesh.previous(e)]!;
-        const gone = p === a || q === a || p === b || q === b;
-        if (!gone) {
-          if (mesh.cap[(e / 3) | 0] === 1) {
-            if (start === h) return false;
-          } else {
-            const dx = x - mesh.position[3 * p]!;
-            const dy = y - mesh.position[3 * p + 1]!;
-            const dz = z - mesh.position[3 * p + 2]!;
-            if (dx * dx + dy * dy + dz * dz > longest * longest) return false;
-            if (!(this.scoreAt(x, y, z, p, q, limit) > limit)) return false;
-          }
-        }
-        e = mesh.twin[mesh.previous(e)]!;
-      } while (e !== start);
-      return true;
-    };
-    if (!fits(h) || (moves && !fits(t))) return false;
+    if (!this.starFits(h, b, x, y, z, limit, longest)) return false;
+    if (moves && !this.starFits(t, a, x, y, z, limit, longest)) return false;
     mesh.collapse(h);
-    if (moves) {
-      this.set(b, x, y, z);
-    }
+    if (moves) this.set(b, x, y, z);
     this.rescoreStar(b);
+    return true;
+  }
+
+  /** Whether the star of the start of a half-edge could have its middle elsewhere, its triangles with `other` apart. */
+  private starFits(
+    start: number,
+    other: number,
+    x: number,
+    y: number,
+    z: number,
+    limit: number,
+    longest: number,
+  ): boolean {
+    const { mesh } = this;
+    let e = start;
+    do {
+      const p = mesh.from[mesh.next(e)]!;
+      const q = mesh.from[mesh.previous(e)]!;
+      if (p !== other && q !== other) {
+        const dx = x - mesh.position[3 * p]!;
+        const dy = y - mesh.position[3 * p + 1]!;
+        const dz = z - mesh.position[3 * p + 2]!;
+        if (dx * dx + dy * dy + dz * dz > longest * longest) return false;
+        if (!(this.scoreAt(x, y, z, p, q, limit) > limit)) return false;
+      }
+      e = mesh.twin[mesh.previous(e)]!;
+    } while (e !== start);
     return true;
   }
 
@@ -262,13 +291,12 @@ export class Remesher {
     const x = p[3 * v]!;
     const y = p[3 * v + 1]!;
     const z = p[3 * v + 2]!;
-    return this.moveTo(
-      v,
-      x + 0.9 * (sx / sum - x),
-      y + 0.9 * (sy / sum - y),
-      z + 0.9 * (sz / sum - z),
-      Math.min(worst, GOOD),
-    );
+    const dx = sx / sum - x;
+    const dy = sy / sum - y;
+    const dz = sz / sum - z;
+    const least = STILL * mesh.size[v]!;
+    if (worst > POOR && dx * dx + dy * dy + dz * dz < least * least) return false;
+    return this.moveTo(v, x + 0.9 * dx, y + 0.9 * dy, z + 0.9 * dz, Math.min(worst, GOOD));
   }
 
   /** Moves a vertex to a point brought to the wall if all its triangles then score more than `limit`. */
@@ -289,7 +317,7 @@ export class Remesher {
     this.set(v, x, y, z);
     at = 0;
     do {
-      mesh.score[(h / 3) | 0] = scores[at++]!;
+      this.setScore((h / 3) | 0, scores[at++]!);
       h = mesh.twin[mesh.previous(h)]!;
     } while (h !== start);
     return true;
@@ -392,8 +420,10 @@ export class Remesher {
   private rescore(t: number): void {
     const { mesh } = this;
     if (mesh.from[3 * t]! < 0) return;
-    mesh.score[t] =
-      mesh.cap[t] === 1 ? 1 : this.scoreOf(mesh.from[3 * t]!, mesh.from[3 * t + 1]!, mesh.from[3 * t + 2]!, -2);
+    this.setScore(
+      t,
+      mesh.cap[t] === 1 ? 1 : this.scoreOf(mesh.from[3 * t]!, mesh.from[3 * t + 1]!, mesh.from[3 * t + 2]!, -2),
+    );
   }
 
   private rescoreStar(v: number): void {
