@@ -103,6 +103,9 @@ export interface PickOptions {
   readonly inFront: number;
 }
 
+/** Vessels drawn in front are so many times wider at least. */
+export const FRONT_WIDENING = 2.5;
+
 /** A vessel that a ray meets, and how far along. */
 export interface Hit {
   readonly vessel: number;
@@ -150,7 +153,7 @@ export function pickVessel(
     const mz = wz - 0.5 * uz;
     const mm = mx * mx + my * my + mz * mz;
     const md = mx * dx + my * dy + mz * dz;
-    const least = widen + widenByDistance * Math.sqrt(mm);
+    const least = (first ? FRONT_WIDENING : 1) * (widen + widenByDistance * Math.sqrt(mm));
     const ra = Math.max(ends[at + 3]!, least);
     const rb = Math.max(own, least);
     const ball = 0.5 * Math.sqrt(ux * ux + uy * uy + uz * uz) + Math.max(ra, rb);

@@ -1,3 +1,4 @@
+import { FRONT_WIDENING } from './picking.ts';
 import { MARK, ROW_SHIFT, ROW_VESSELS } from './scene.ts';
 
 /**
@@ -38,11 +39,11 @@ flat out vec2 tubeValues; // at both ends
 flat out int tubeMarks;
 out vec3 onPlane;
 
-vec2 reach(float e, float z, float r) {
-  if (!perspective) return vec2(e - r, e + r);
+// The bound on one side: 1 the upper, −1 the lower.
+float reach(float e, float z, float r, float side) {
+  if (!perspective) return e + side * r;
   float q = z * z - r * r;
-  float s = r * sqrt(max(e * e + q, 0.0));
-  return vec2(e * z - s, e * z + s) / q;
+  return (e * z + side * r * sqrt(max(e * e + q, 0.0))) / q;
 }
 
 void main() {
@@ -61,7 +62,7 @@ void main() {
   vec3 sight = perspective ? middle / away : forward;
   float pixelHere = perspective ? pixel * away : pixel;
   bool onWay = hasWay && (tubeMarks & ${MARK.way}) != 0;
-  float least = 0.5 * leastPixels * pixelHere * (onWay ? 2.5 : 1.0);
+  float least = 0.5 * leastPixels * pixelHere * (onWay ? ${FRONT_WIDENING.toFixed(1)} : 1.0);
   a.w = max(a.w, least);
   b.w = max(b.w, least);
   tubeA = a;
@@ -86,13 +87,14 @@ void main() {
   lengthwise = seen > 1e-3 * (a.w + b.w) ? lengthwise / seen
     : normalize(cross(sight, abs(sight.z) < 0.9 ? vec3(0.0, 0.0, 1.0) : vec3(1.0, 0.0, 0.0)));
   vec3 across = cross(sight, lengthwise);
-  vec2 alongA = reach(dot(toA, lengthwise), za, a.w);
-  vec2 alongB = reach(dot(toB, lengthwise), zb, b.w);
-  vec2 acrossA = reach(dot(toA, across), za, a.w);
-  vec2 acrossB = reach(dot(toB, across), zb, b.w);
   float slack = 0.05 * (perspective ? pixel : pixelHere);
-  float su = corner.x < 0.5 ? min(alongA.x, alongB.x) - slack : max(alongA.y, alongB.y) + slack;
-  float sw = corner.y < 0.5 ? min(acrossA.x, acrossB.x) - slack : max(acrossA.y, acrossB.y) + slack;
+  float side = corner.x < 0.5 ? -1.0 : 1.0;
+  float su = side * (slack + max(side * reach(dot(toA, lengthwise), za, a.w, side),
+                                 side * reach(dot(toB, lengthwise), zb, b.w, side)));
+  // Both ends lie in one plane with the line of sight: sideways of it there is only the radius.
+  float sideways = slack + 1.002 * (perspective ? max(a.w * inversesqrt(za * za - a.w * a.w), b.w * inversesqrt(zb * zb - b.w * b.w))
+                                            : max(a.w, b.w));
+  float sw = (perspective ? 0.0 : dot(middle, across)) + (corner.y < 0.5 ? -sideways : sideways);
   vec3 flatPlace = su * lengthwise + sw * across;
   onPlane = perspective ? eye + away * (sight + flatPlace) : eye + flatPlace + sight * dot(middle, sight);
   gl_Position = projectionMatrix * viewMatrix * vec4(onPlane, 1.0);
