@@ -30,6 +30,8 @@ const BUDGETS = {
   quick: { sweeps: 20, tolerance: 1e-4 },
   thorough: { sweeps: 2000, tolerance: 1e-9 },
 } as const;
+/** Most sweeps that a spec may state, and so that a budget in seconds may come to. */
+const MOST_SWEEPS = 10_000;
 /** Up to so many explicit points, several orders of serving them are tried and the cheapest tree is kept. */
 const FEW_POINTS = 64;
 const ORDERS = 24;
@@ -198,7 +200,7 @@ function refineGrowth(growth: Growth, spec: Spec, options: GrowOptions): RelaxRe
   const timed = options.refineEnough !== undefined;
   const weight = tubeWeights(builder, spec);
   return relaxJunctions(builder, room, weight, {
-    sweeps: timed ? Number.MAX_SAFE_INTEGER : budget.sweeps,
+    sweeps: timed ? MOST_SWEEPS : budget.sweeps,
     tolerance: timed ? 0 : budget.tolerance,
     onProgress: options.onProgress,
     signal: options.signal,
@@ -223,18 +225,22 @@ function growBest(spec: Spec, tissue: Tissue, options: GrowOptions): { growth: G
     if (next.grower.served > growth.grower.served) growth = next;
   }
   if (!few || growth.stopped === 'cancelled') return { growth, refine: null };
-  let refine = refineGrowth(growth, spec, options);
+  // A time or a number of sweeps is for the tree that is kept; the choice itself must come out the same again.
+  const counted = options.refineEnough !== undefined || typeof spec.refine === 'number';
+  const trial: Spec = counted ? { ...spec, refine: 'quick' } : spec;
+  const trialOptions: GrowOptions = { ...options, refineEnough: undefined };
+  let refine = refineGrowth(growth, trial, trialOptions);
   for (let salt = 1; salt < ORDERS; salt++) {
     const next = growForest(spec, tissue, options, salt);
     if (next.stopped === 'cancelled') break;
-    const relaxed = refineGrowth(next, spec, options);
+    const relaxed = refineGrowth(next, trial, trialOptions);
     const served = next.grower.served - growth.grower.served;
     if (served > 0 || (served === 0 && lastCost(relaxed) < lastCost(refine))) {
       growth = next;
       refine = relaxed;
     }
   }
-  return { growth, refine };
+  return { growth, refine: counted ? null : refine };
 }
 
 function lastCost(result: RelaxResult): number {

@@ -1,6 +1,14 @@
 import { readFileSync } from 'node:fs';
 import type { Command } from 'commander';
-import { compareJson, compareJUnit, compareTable, compareTrees, DEFAULT_TOLERANCE, parseTolerance } from '../index.ts';
+import {
+  compareJson,
+  compareJUnit,
+  compareTable,
+  compareTrees,
+  DEFAULT_TOLERANCE,
+  parseTolerance,
+  type Tolerance,
+} from '../index.ts';
 import { placeForFile, readTree, type TreeFiles, withFiles, writeFiles } from '../node/index.ts';
 import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
