@@ -1,7 +1,7 @@
 import { type Camera, placeInPicture, rayThrough } from './camera.ts';
 import { type Colour, cssOf, paletteOf } from './colours.ts';
 import { type Choice, Controls, find } from './controls.ts';
-import { outlineTissue } from './ghost.ts';
+import { outlineTissue, piecesNear } from './ghost.ts';
 import { bindInput } from './input.ts';
 import { describeLegend, type Legend } from './legend.ts';
 import { decodeTree, type TreeRecord } from './library.ts';
@@ -238,12 +238,13 @@ export class Application {
     }
     this.#scene = scene;
     const outline = outlineTissue(record.provenance);
+    const ghostPoints = outline.combined ? piecesNear(outline.points, scene.low, scene.high) : outline.points;
     stage.show(
       scene,
-      Float32Array.from(outline.points, (x, i) => (x - scene.centre[i % 3]!) * scene.scale),
+      Float32Array.from(ghostPoints, (x, i) => (x - scene.centre[i % 3]!) * scene.scale),
     );
     const ghost = find<HTMLInputElement>('ghost');
-    ghost.disabled = outline.points.length === 0;
+    ghost.disabled = ghostPoints.length === 0;
     ghost.title = outline.left.length > 0 ? `No outline for: ${outline.left.join(', ')}` : '';
     find('find-vessel').setAttribute('max', String(scene.count - 1));
     const trees = record.names.map((name, t) => (name === record.kinds[t] ? name : `${name} (${record.kinds[t]})`));

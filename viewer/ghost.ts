@@ -2,11 +2,27 @@
 export interface Outline {
   readonly points: number[];
   readonly left: string[];
+  /** The tissue is made of several shapes. */
+  combined: boolean;
 }
 
 const METRES: Record<string, number> = { m: 1, mm: 1e-3, um: 1e-6 };
 
 type Part = Record<string, unknown>;
+
+/**
+ * Leaves out line pieces that end farther from a box than a tenth of its diagonal. Shapes that are combined reach far
+ * past the tissue they make, such as the half space that cuts a wall.
+ */
+export function piecesNear(points: readonly number[], low: readonly number[], high: readonly number[]): number[] {
+  const margin = 0.1 * Math.hypot(...low.map((x, k) => high[k]! - x));
+  const near: number[] = [];
+  for (let i = 0; i < points.length; i += 6) {
+    const piece = points.slice(i, i + 6);
+    if (piece.every((x, k) => x >= low[k % 3]! - margin && x <= high[k % 3]! + margin)) near.push(...piece);
+  }
+  return near;
+}
 
 /**
  * Outlines the tissue of a resolved spec: edges of boxes, circles of balls, ellipsoids and cylinders, of each part where
@@ -15,7 +31,7 @@ type Part = Record<string, unknown>;
  * @param provenance the spec as JSON text; lengths carry their unit in the key (`min_mm`), or are in m
  */
 export function outlineTissue(provenance: string | null): Outline {
-  const outline: Outline = { points: [], left: [] };
+  const outline: Outline = { points: [], left: [], combined: false };
   if (provenance === null) return outline;
   try {
     const spec = JSON.parse(provenance) as { tissue?: unknown };
@@ -49,9 +65,11 @@ function addShape(outline: Outline, shape: unknown): void {
       break;
     case 'union':
     case 'intersection':
+      outline.combined = true;
       for (const inner of (part.parts as unknown[] | undefined) ?? []) addShape(outline, inner);
       return;
     case 'difference':
+      outline.combined = true;
       addShape(outline, part.of);
       for (const inner of (part.minus as unknown[] | undefined) ?? []) addShape(outline, inner);
       return;

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { outlineTissue } from '../../../viewer/ghost.ts';
+import { outlineTissue, piecesNear } from '../../../viewer/ghost.ts';
 
 const outline = (tissue: unknown) => outlineTissue(JSON.stringify({ tissue }));
 
@@ -61,6 +61,19 @@ describe('outlineTissue', () => {
     const file = outline({ shape: 'union', parts: [ball, { shape: 'surface', file: 'bean.stl', unit: 'mm' }] });
     expect(file.points).toHaveLength(one);
     expect(file.left).toEqual(['surface']);
+  });
+
+  it('can leave out pieces of combined shapes that lie far from the vessels', () => {
+    const ball = { shape: 'sphere', center_mm: [0, 0, 0], radius_mm: 1 };
+    const away = { shape: 'box', min_mm: [-9, -9, -9], max_mm: [9, 9, 0] };
+    const { points, combined } = outline({ shape: 'intersection', parts: [ball, away] });
+    expect(combined).toBe(true);
+    expect(outline(ball).combined).toBe(false);
+    expect(piecesNear(points, [-1e-3, -1e-3, -1e-3], [1e-3, 1e-3, 1e-3])).toEqual(outline(ball).points);
+    // Half of the ball's box: nothing is left above it by more than a tenth of the diagonal of 2 × 2 × 1.
+    const half = piecesNear(points, [-1e-3, -1e-3, -1e-3], [1e-3, 1e-3, 0]);
+    expect(Math.max(...half.filter((_, i) => i % 3 === 2))).toBeLessThanOrEqual(0.1 * 3e-3 + 1e-12);
+    expect(half.length).toBeGreaterThan(0);
   });
 
   it('draws nothing, and throws nothing, for what is no spec', () => {
