@@ -16,6 +16,8 @@ export interface LumenOptions {
   readonly axialStretch?: number | undefined;
   /** One a tree; `supply` where not given. Decides which caps are inlets. */
   readonly kinds?: readonly TreeKind[] | undefined;
+  /** (n) number that each row's vessel is called by; the forest's own vessel numbers (tree/vessels.ts) where left out. */
+  readonly vesselNumbers?: ArrayLike<number> | undefined;
 }
 
 export const LUMEN_DEFAULTS = { around: 24, axialStretch: 1 } as const;
@@ -42,19 +44,22 @@ export function buildLumen(forest: Forest, options: LumenOptions = {}): LumenMes
   if (!(stretch >= 1 && stretch <= 3.5))
     throw inputError('out-of-range', 'axialStretch', `got ${stretch}, expected 1 to 3.5`);
 
+  const numbers = Int32Array.from(
+    options.vesselNumbers ?? Int32Array.from({ length: forest.count }, (_, row) => vesselOfRow(forest, row)),
+  );
   const children = listChildren(forest);
   const shape = new JunctionShape();
-  const problems: LumenProblem[] = [];
+  const problems: Omit<LumenProblem, 'vessel'>[] = [];
   const chord = 2 * Math.sin(Math.PI / around);
   const layout = layOutTubes(forest, children, shape, around, 0.99 * chord * stretch, problems);
   const out = new GrowingSurface(forest.count * around * 16, forest.count * around * 32);
-  const rings = addTubes(out, forest, layout, around);
-  const patches = addCaps(out, forest, children, layout, rings, buildDisc(around), options.kinds);
+  const rings = addTubes(out, forest, layout, numbers, around);
+  const patches = addCaps(out, forest, children, layout, rings, buildDisc(around), numbers, options.kinds);
   const builder = new PatchBuilder(forest, children, layout, shape, around);
   const poor = Math.sin((LEAST_ANGLE * Math.PI) / 180);
   for (let row = 0; row < forest.count; row++) {
     if (forest.parent[row]! < 0 || children.start[row] === children.start[row + 1]) continue;
-    const worst = builder.addPatch(out, rings, row);
+    const worst = builder.addPatch(out, rings, numbers, row);
     if (worst < poor * poor) {
       const angle = (Math.asin(Math.sqrt(Math.max(0, worst))) * 180) / Math.PI;
       problems.push({
@@ -74,13 +79,19 @@ export function buildLumen(forest: Forest, options: LumenOptions = {}): LumenMes
     row: out.row.slice(0, out.vertices),
     along: out.along.slice(0, out.vertices),
     patches,
-    problems,
+    problems: problems.map((problem) => ({ ...problem, vessel: numbers[problem.row]! })),
     around,
   };
 }
 
 /** Adds rings and strips of every vessel; returns (n) the first vertex of each vessel's first ring. */
-function addTubes(out: GrowingSurface, forest: Forest, layout: TubeLayout, around: number): Int32Array {
+function addTubes(
+  out: GrowingSurface,
+  forest: Forest,
+  layout: TubeLayout,
+  numbers: Int32Array,
+  around: number,
+): Int32Array {
   const rings = new Int32Array(forest.count).fill(-1);
   // Corners of an even ring at 2j half steps, of an odd ring at 2j + 1.
   const cosine = new Float64Array(2 * around);
@@ -105,7 +116,7 @@ function addTubes(out: GrowingSurface, forest: Forest, layout: TubeLayout, aroun
     const strips = layout.strips[i]!;
     const start = out.vertices;
     rings[i] = start;
-    const vessel = vesselOfRow(forest, i);
+    const vessel = numbers[i]!;
     for (let k = 0; k <= strips; k++) {
       const t = strips === 0 ? 0 : k / strips;
       const s = layout.first[i]! + t * (layout.last[i]! - layout.first[i]!);
@@ -145,11 +156,12 @@ function addCaps(
   layout: TubeLayout,
   rings: Int32Array,
   disc: Disc,
+  numbers: Int32Array,
   kinds: readonly TreeKind[] | undefined,
 ): LumenPatch[] {
   const { around } = disc;
   const patches: LumenPatch[] = [
-    { name: 'wall', kind: 'wall', row: -1, tree: -1, centre: [0, 0, 0], normal: [0, 0, 0], radius: 0 },
+    { name: 'wall', kind: 'wall', row: -1, tree: -1, vessel: -1, centre: [0, 0, 0], normal: [0, 0, 0], radius: 0 },
   ];
   for (let row = 0; row < forest.count; row++) {
     const root = forest.parent[row]! < 0;
@@ -163,7 +175,7 @@ function addCaps(
     const centre = [position[3 * row]!, position[3 * row + 1]!, position[3 * row + 2]!] as const;
     const normal = [0, 1, 2].map((k) => sign * layout.axis[3 * vessel + k]!) as [number, number, number];
     const tree = forest.tree[row]!;
-    const number = vesselOfRow(forest, vessel);
+    const number = numbers[vessel]!;
     const drain = kinds?.[tree] === 'drain';
     const name = root
       ? drain
@@ -178,6 +190,7 @@ function addCaps(
       kind: root === drain ? 'outlet' : 'inlet',
       row,
       tree,
+      vessel: number,
       centre,
       normal,
       radius: forest.radius[vessel]!,

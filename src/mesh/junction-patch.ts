@@ -1,7 +1,6 @@
 import { InvariantError } from '../core/errors.ts';
 import type { Children } from '../tree/children.ts';
 import type { Forest } from '../tree/forest.ts';
-import { vesselOfRow } from '../tree/vessels.ts';
 import type { GrowingSurface } from './growing-surface.ts';
 import type { JunctionShape } from './junction-shape.ts';
 import { APEX, FREE, PatchMesh, RIM } from './patch-mesh.ts';
@@ -63,9 +62,10 @@ export class PatchBuilder {
    * Adds the wall of a node to a surface that already has the rings.
    *
    * @param rings (n) first vertex of each vessel's first ring
+   * @param numbers (n) what each row's vessel is called by
    * @returns     the worst score of its triangles: sin² of the smallest angle, or less than 0 where the wall is folded
    */
-  addPatch(out: GrowingSurface, rings: Int32Array, row: number): number {
+  addPatch(out: GrowingSurface, rings: Int32Array, numbers: Int32Array, row: number): number {
     const { forest, children, layout, shape } = this;
     const unit = loadShape(shape, forest, children, row, layout);
     let best = -Infinity;
@@ -81,7 +81,7 @@ export class PatchBuilder {
       if (this.overlapping) break;
     }
     if (last !== bestAttempt) this.tryPatch(out, rings, row, unit, bestAttempt);
-    this.emit(out, row, unit);
+    this.emit(out, numbers, row, unit);
     return best;
   }
 
@@ -136,7 +136,8 @@ export class PatchBuilder {
         const x = (out.position[3 * g]! - px) / unit;
         const y = (out.position[3 * g + 1]! - py) / unit;
         const z = (out.position[3 * g + 2]! - pz) / unit;
-        this.global[mesh.addVertex(x, y, z, shape.edgeAt(x, y, z), RIM)] = g;
+        shape.lookAt(x, y, z);
+        this.global[mesh.addVertex(x, y, z, shape.edgeHere(), RIM)] = g;
       }
     }
   }
@@ -156,8 +157,9 @@ export class PatchBuilder {
         if (angle < Math.atan2(shape.radius[tube]!, this.rim[tube]!) + 0.35) free = false;
       }
       if (!free) continue;
-      shape.shoot(x, y, z);
-      this.global[mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeAt(shape.x, shape.y, shape.z), FREE)] = -1;
+      shape.lookAt(x, y, z);
+      shape.shoot();
+      this.global[mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeHere(), FREE)] = -1;
     }
   }
 
@@ -220,7 +222,7 @@ export class PatchBuilder {
     return caps;
   }
 
-  private emit(out: GrowingSurface, row: number, unit: number): void {
+  private emit(out: GrowingSurface, numbers: Int32Array, row: number, unit: number): void {
     const { forest, layout, shape, mesh, global } = this;
     const px = forest.position[3 * row]!;
     const py = forest.position[3 * row + 1]!;
@@ -230,7 +232,8 @@ export class PatchBuilder {
       const x = mesh.position[3 * v]!;
       const y = mesh.position[3 * v + 1]!;
       const z = mesh.position[3 * v + 2]!;
-      const tube = shape.nearest(x, y, z);
+      shape.lookAt(x, y, z);
+      const tube = shape.nearest();
       const vessel = this.vessel(row, tube);
       const t = Math.min(1, (unit * shape.along) / layout.length[vessel]!);
       global[v] = out.addVertex(px + unit * x, py + unit * y, pz + unit * z, vessel, tube === 0 ? 1 - t : t);
@@ -241,12 +244,13 @@ export class PatchBuilder {
       if (a < 0 || mesh.cap[t] === 1) continue;
       const b = mesh.from[3 * t + 1]!;
       const c = mesh.from[3 * t + 2]!;
-      const tube = shape.nearest(
+      shape.lookAt(
         (p[3 * a]! + p[3 * b]! + p[3 * c]!) / 3,
         (p[3 * a + 1]! + p[3 * b + 1]! + p[3 * c + 1]!) / 3,
         (p[3 * a + 2]! + p[3 * b + 2]! + p[3 * c + 2]!) / 3,
       );
-      out.addTriangle(global[a]!, global[b]!, global[c]!, 0, vesselOfRow(forest, this.vessel(row, tube)));
+      const tube = shape.nearest();
+      out.addTriangle(global[a]!, global[b]!, global[c]!, 0, numbers[this.vessel(row, tube)]!);
     }
   }
 }

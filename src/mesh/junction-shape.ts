@@ -26,16 +26,18 @@ export class JunctionShape {
   /** How fast the edge length may grow with the distance from a thinner tube's wall. */
   grading = 0.4;
 
-  /** Results of the last `evaluate`: field, gradient, nearest tube. */
+  /**
+   * The point that the methods below look at or move. A field and not an argument: engines put numbers that go from
+   * function to function on the heap, and these functions are called a hundred million times for a large tree.
+   */
+  x = 0;
+  y = 0;
+  z = 0;
+  /** Results of the last `evaluate`: field and gradient, unnormalised where tubes blend. */
   f = 0;
   gx = 0;
   gy = 0;
   gz = 0;
-  near = 0;
-  /** Results of the last `project`. */
-  x = 0;
-  y = 0;
-  z = 0;
 
   /** Result of the last `nearest`. */
   along = 0;
@@ -63,8 +65,15 @@ export class JunctionShape {
     this.edge[i] = edge;
   }
 
-  /** Distance from a point to the half line of a tube. */
-  distance(tube: number, x: number, y: number, z: number): number {
+  lookAt(x: number, y: number, z: number): void {
+    this.x = x;
+    this.y = y;
+    this.z = z;
+  }
+
+  /** Distance from the point to the half line of a tube. */
+  distance(tube: number): number {
+    const { x, y, z } = this;
     const ux = this.axis[3 * tube]!;
     const uy = this.axis[3 * tube + 1]!;
     const uz = this.axis[3 * tube + 2]!;
@@ -75,9 +84,9 @@ export class JunctionShape {
     return Math.sqrt(px * px + py * py + pz * pz);
   }
 
-  /** Tube whose wall is nearest to a point; leaves in `along` how far along its axis the point is. */
-  nearest(x: number, y: number, z: number): number {
-    const { axis, radius, count } = this;
+  /** Tube whose wall is nearest to the point; leaves in `along` how far along its axis the point is. */
+  nearest(): number {
+    const { axis, radius, count, x, y, z } = this;
     let near = 0;
     let least = Infinity;
     for (let i = 0; i < count; i++) {
@@ -99,20 +108,20 @@ export class JunctionShape {
     return near;
   }
 
-  /** Edge length wanted at a point of the wall. */
-  edgeAt(x: number, y: number, z: number): number {
+  /** Edge length wanted at the point. */
+  edgeHere(): number {
     let best = Infinity;
     for (let i = 0; i < this.count; i++) {
-      const away = this.distance(i, x, y, z) - this.radius[i]!;
+      const away = this.distance(i) - this.radius[i]!;
       const edge = this.edge[i]! + (away > 0 ? this.grading * away : 0);
       if (edge < best) best = edge;
     }
     return best;
   }
 
-  /** Sets f, its gradient (unnormalised where tubes blend) and the nearest tube at a point. */
-  evaluate(x: number, y: number, z: number): void {
-    const { count, axis, own, grad, radius } = this;
+  /** Sets f and its gradient at the point. */
+  evaluate(): void {
+    const { count, axis, own, grad, radius, x, y, z } = this;
     let near = 0;
     for (let i = 0; i < count; i++) {
       const ux = axis[3 * i]!;
@@ -131,7 +140,6 @@ export class JunctionShape {
       grad[3 * i + 2] = pz * scale;
       if (own[i]! < own[near]!) near = i;
     }
-    this.near = near;
     let f = own[near]!;
     let gx = grad[3 * near]!;
     let gy = grad[3 * near + 1]!;
@@ -169,41 +177,40 @@ export class JunctionShape {
   }
 
   /**
-   * Moves a point to the wall; sets x, y, z and leaves the gradient there in gx, gy, gz.
+   * Moves the point to the wall and leaves the gradient there in gx, gy, gz.
    *
    * Along the gradient first: on a thin tube far from the node a ray grazes the wall. Where walls meet at a sharp angle
    * the gradient leads to and fro, and the ray from the node, along which f rises steadily, ends it.
    */
-  project(x: number, y: number, z: number): void {
+  project(): void {
     for (let step = 0; step < 4; step++) {
-      this.evaluate(x, y, z);
+      this.evaluate();
       const f = this.f;
-      if (f < ON_WALL && f > -ON_WALL) break;
+      if (f < ON_WALL && f > -ON_WALL) return;
       const square = this.gx * this.gx + this.gy * this.gy + this.gz * this.gz;
       if (square < 0.3) break;
       const t = f / square;
-      x -= t * this.gx;
-      y -= t * this.gy;
-      z -= t * this.gz;
+      this.x -= t * this.gx;
+      this.y -= t * this.gy;
+      this.z -= t * this.gz;
     }
-    this.evaluate(x, y, z);
-    if (this.f < ON_WALL && this.f > -ON_WALL) {
-      this.x = x;
-      this.y = y;
-      this.z = z;
-    } else this.shoot(x, y, z);
+    this.shoot();
   }
 
-  /** Moves a point to the wall along the ray from the node. */
-  shoot(x: number, y: number, z: number): void {
+  /** Moves the point to the wall along the ray from the node. */
+  shoot(): void {
+    const { x, y, z } = this;
     // Where the ray leaves the union without fillets; the wall is there or a little further out.
     let scale = 0;
     for (let i = 0; i < this.count; i++) {
-      const s = this.radius[i]! / Math.max(this.distance(i, x, y, z), 1e-9);
+      const s = this.radius[i]! / Math.max(this.distance(i), 1e-9);
       if (s > scale) scale = s;
     }
     for (let step = 0; step < 40; step++) {
-      this.evaluate(scale * x, scale * y, scale * z);
+      this.x = scale * x;
+      this.y = scale * y;
+      this.z = scale * z;
+      this.evaluate();
       const f = this.f;
       if (f < ON_WALL && f > -ON_WALL) break;
       // f is concave along the ray where tubes blend and rises all the way: Newton comes from below.
@@ -211,9 +218,6 @@ export class JunctionShape {
       if (!(slope > 0)) break;
       scale -= f / slope;
     }
-    this.x = scale * x;
-    this.y = scale * y;
-    this.z = scale * z;
   }
 
   /**

@@ -8,6 +8,8 @@ export interface LumenPatch {
   readonly row: number;
   /** Tree of the cap; −1 for the wall. */
   readonly tree: number;
+  /** Number of the vessel that ends here; −1 for the wall. */
+  readonly vessel: number;
   /** m, centre of the cap; zeros for the wall. */
   readonly centre: readonly [number, number, number];
   /** Unit normal out of the lumen; zeros for the wall. */
@@ -20,6 +22,8 @@ export interface LumenPatch {
 export interface LumenProblem {
   /** Row of the node, or of the vessel that ends there. */
   readonly row: number;
+  /** Number of that vessel. */
+  readonly vessel: number;
   readonly why: string;
 }
 
@@ -31,7 +35,7 @@ export interface LumenMesh {
   readonly triangle: Int32Array;
   /** (f) index into `patches`. */
   readonly patch: Int32Array;
-  /** (f) vessel number (see tree/vessels.ts) of the nearest vessel. */
+  /** (f) number of the nearest vessel. */
   readonly vessel: Int32Array;
   /** (v) row of the vessel a vertex belongs to. */
   readonly row: Int32Array;

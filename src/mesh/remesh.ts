@@ -36,6 +36,12 @@ export class Remesher {
   private clock = 0;
   private looked = -1;
   private most = 0;
+  /** Score that `rate` looks for, and the one it found; fields for the reason given at JunctionShape.x. */
+  private limit = 0;
+  private rated = 0;
+  private longest = 0;
+  /** Scores of a star while it is tried; no vertex has as many neighbours as all rims have corners. */
+  private scores = new Float64Array(256 * 16);
   private coarse = 0;
   private star = true;
   private thin = 1;
@@ -65,7 +71,7 @@ export class Remesher {
     }
     this.star = false;
     for (let t = 0; t < mesh.triangles; t++) this.rescore(t);
-    for (let pass = 0; pass < 3; pass++) {
+    for (let pass = 0; pass < 2; pass++) {
       this.collapseShort();
       this.splitLong();
       this.flipAll();
@@ -97,7 +103,7 @@ export class Remesher {
       const square = mesh.squaredLength(a, b);
       if (square < long * long * size * size) continue;
       this.project(a, b, this.star);
-      const m = mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeAt(shape.x, shape.y, shape.z), FREE);
+      const m = mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeHere(), FREE);
       mesh.split(h, m);
       this.rescoreStar(m);
       splits++;
@@ -105,19 +111,16 @@ export class Remesher {
     return splits;
   }
 
-  /** Finds the point of the wall between two vertices. */
+  /** Puts the shape's point on the wall between two vertices. */
   private project(a: number, b: number, coarse: boolean): void {
     const { shape } = this;
     const p = this.mesh.position;
-    const x = 0.5 * (p[3 * a]! + p[3 * b]!);
-    const y = 0.5 * (p[3 * a + 1]! + p[3 * b + 1]!);
-    const z = 0.5 * (p[3 * a + 2]! + p[3 * b + 2]!);
-    if (coarse) {
-      // Far from the wall the gradient may lead anywhere; the ray from the node keeps the patch a star.
-      shape.shoot(x, y, z);
-      return;
-    }
-    shape.project(x, y, z);
+    shape.x = 0.5 * (p[3 * a]! + p[3 * b]!);
+    shape.y = 0.5 * (p[3 * a + 1]! + p[3 * b + 1]!);
+    shape.z = 0.5 * (p[3 * a + 2]! + p[3 * b + 2]!);
+    // Far from the wall the gradient may lead anywhere; the ray from the node keeps the patch a star.
+    if (coarse) shape.shoot();
+    else shape.project();
   }
 
   /** Flips edges until none gains, looking only where a triangle has changed since it was last looked at. */
@@ -158,10 +161,11 @@ export class Remesher {
     const b = mesh.from[t]!;
     const c = mesh.from[mesh.previous(h)]!;
     const d = mesh.from[mesh.previous(t)]!;
-    const first = this.scoreOf(a, d, c, before);
-    if (!(first > before + 1e-9)) return false;
-    const second = this.scoreOf(b, c, d, before);
-    if (!(second > before + 1e-9)) return false;
+    this.limit = before + 1e-9;
+    if (!this.rate(a, d, c)) return false;
+    const first = this.rated;
+    if (!this.rate(b, c, d)) return false;
+    const second = this.rated;
     if (mesh.adjacent(c, d)) return false;
     mesh.flip(h);
     this.setScore(s, first);
@@ -205,61 +209,61 @@ export class Remesher {
       g = mesh.twin[mesh.previous(g)]!;
     } while (g !== t);
     if (common !== 2) return false;
-    if (moves) this.project(a, b, false);
-    else this.put(b);
-    const x = shape.x;
-    const y = shape.y;
-    const z = shape.z;
-    const limit = Math.min(worst, floor);
-    const longest = stretch * LONG * mesh.size[a]!;
-    if (!this.starFits(h, b, x, y, z, limit, longest)) return false;
-    if (moves && !this.starFits(t, a, x, y, z, limit, longest)) return false;
+    // Both ends go to the new place, are looked at there, and go back if it does not do.
+    const p = mesh.position;
+    const [ax, ay, az] = [p[3 * a]!, p[3 * a + 1]!, p[3 * a + 2]!];
+    const [bx, by, bz] = [p[3 * b]!, p[3 * b + 1]!, p[3 * b + 2]!];
+    if (moves) {
+      this.project(a, b, false);
+      this.put(b);
+    } else {
+      shape.x = bx;
+      shape.y = by;
+      shape.z = bz;
+    }
+    this.put(a);
+    const size = moves ? shape.edgeHere() : 0;
+    this.limit = Math.min(worst, floor);
+    this.longest = stretch * LONG * mesh.size[a]!;
+    if (!this.starFits(h, b) || (moves && !this.starFits(t, a))) {
+      p[3 * a] = ax;
+      p[3 * a + 1] = ay;
+      p[3 * a + 2] = az;
+      p[3 * b] = bx;
+      p[3 * b + 1] = by;
+      p[3 * b + 2] = bz;
+      return false;
+    }
+    if (moves) mesh.size[b] = size;
     mesh.collapse(h);
-    if (moves) this.set(b, x, y, z);
     this.rescoreStar(b);
     return true;
   }
 
-  /** Whether the star of the start of a half-edge could have its middle elsewhere, its triangles with `other` apart. */
-  private starFits(
-    start: number,
-    other: number,
-    x: number,
-    y: number,
-    z: number,
-    limit: number,
-    longest: number,
-  ): boolean {
+  /** Whether the star of the start of a half-edge does, its triangles with `other` apart. */
+  private starFits(start: number, other: number): boolean {
     const { mesh } = this;
+    const v = mesh.from[start]!;
+    const square = this.longest * this.longest;
     let e = start;
     do {
       const p = mesh.from[mesh.next(e)]!;
       const q = mesh.from[mesh.previous(e)]!;
       if (p !== other && q !== other) {
-        const dx = x - mesh.position[3 * p]!;
-        const dy = y - mesh.position[3 * p + 1]!;
-        const dz = z - mesh.position[3 * p + 2]!;
-        if (dx * dx + dy * dy + dz * dz > longest * longest) return false;
-        if (!(this.scoreAt(x, y, z, p, q, limit) > limit)) return false;
+        if (mesh.squaredLength(v, p) > square) return false;
+        if (!this.rate(v, p, q)) return false;
       }
       e = mesh.twin[mesh.previous(e)]!;
     } while (e !== start);
     return true;
   }
 
+  /** Puts a vertex where the shape's point is. */
   private put(v: number): void {
     const p = this.mesh.position;
-    this.shape.x = p[3 * v]!;
-    this.shape.y = p[3 * v + 1]!;
-    this.shape.z = p[3 * v + 2]!;
-  }
-
-  private set(v: number, x: number, y: number, z: number): void {
-    const p = this.mesh.position;
-    p[3 * v] = x;
-    p[3 * v + 1] = y;
-    p[3 * v + 2] = z;
-    this.mesh.size[v] = this.shape.edgeAt(x, y, z);
+    p[3 * v] = this.shape.x;
+    p[3 * v + 1] = this.shape.y;
+    p[3 * v + 2] = this.shape.z;
   }
 
   private smoothAll(): void {
@@ -296,25 +300,37 @@ export class Remesher {
     const dz = sz / sum - z;
     const least = STILL * mesh.size[v]!;
     if (worst > POOR && dx * dx + dy * dy + dz * dz < least * least) return false;
-    return this.moveTo(v, x + 0.9 * dx, y + 0.9 * dy, z + 0.9 * dz, Math.min(worst, GOOD));
+    this.shape.x = x + 0.9 * dx;
+    this.shape.y = y + 0.9 * dy;
+    this.shape.z = z + 0.9 * dz;
+    this.limit = Math.min(worst, GOOD);
+    return this.move(v);
   }
 
-  /** Moves a vertex to a point brought to the wall if all its triangles then score more than `limit`. */
-  private moveTo(v: number, tx: number, ty: number, tz: number, limit: number): boolean {
-    const { mesh, shape } = this;
-    shape.project(tx, ty, tz);
-    const { x, y, z } = shape;
+  /** Moves a vertex to the shape's point brought to the wall, if all its triangles then score more than the limit. */
+  private move(v: number): boolean {
+    const { mesh, shape, scores } = this;
+    shape.project();
+    const size = shape.edgeHere();
+    const p = mesh.position;
+    const x = p[3 * v]!;
+    const y = p[3 * v + 1]!;
+    const z = p[3 * v + 2]!;
+    this.put(v);
     const start = mesh.leaving[v]!;
     let h = start;
     let at = 0;
-    const scores = this.scores;
     do {
-      const score = this.scoreAt(x, y, z, mesh.from[mesh.next(h)]!, mesh.from[mesh.previous(h)]!, limit);
-      if (!(score > limit)) return false;
-      scores[at++] = score;
+      if (!this.rate(v, mesh.from[mesh.next(h)]!, mesh.from[mesh.previous(h)]!)) {
+        p[3 * v] = x;
+        p[3 * v + 1] = y;
+        p[3 * v + 2] = z;
+        return false;
+      }
+      scores[at++] = this.rated;
       h = mesh.twin[mesh.previous(h)]!;
     } while (h !== start);
-    this.set(v, x, y, z);
+    mesh.size[v] = size;
     at = 0;
     do {
       this.setScore((h / 3) | 0, scores[at++]!);
@@ -322,8 +338,6 @@ export class Remesher {
     } while (h !== start);
     return true;
   }
-
-  private scores = new Float64Array(512);
 
   /** Works on the triangles of small angle: flips, collapses, then small moves that raise the worst angle of a star. */
   private mendPoor(): number {
@@ -387,7 +401,8 @@ export class Remesher {
       const x = mesh.position[3 * v]!;
       const y = mesh.position[3 * v + 1]!;
       const z = mesh.position[3 * v + 2]!;
-      shape.evaluate(x, y, z);
+      shape.lookAt(x, y, z);
+      shape.evaluate();
       const size = Math.sqrt(shape.gx * shape.gx + shape.gy * shape.gy + shape.gz * shape.gz);
       const nx = shape.gx / size;
       const ny = shape.gy / size;
@@ -411,7 +426,9 @@ export class Remesher {
       for (let k = 0; k < 8 && !moved; k++) {
         const c = Math.cos((k * Math.PI) / 4);
         const s = Math.sin((k * Math.PI) / 4);
-        moved = this.moveTo(v, x + c * ax + s * bx, y + c * ay + s * by, z + c * az + s * bz, worst + 1e-4);
+        shape.lookAt(x + c * ax + s * bx, y + c * ay + s * by, z + c * az + s * bz);
+        this.limit = worst + 1e-4;
+        moved = this.move(v);
       }
       if (!moved) step *= 0.5;
     }
@@ -420,10 +437,12 @@ export class Remesher {
   private rescore(t: number): void {
     const { mesh } = this;
     if (mesh.from[3 * t]! < 0) return;
-    this.setScore(
-      t,
-      mesh.cap[t] === 1 ? 1 : this.scoreOf(mesh.from[3 * t]!, mesh.from[3 * t + 1]!, mesh.from[3 * t + 2]!, -2),
-    );
+    if (mesh.cap[t] === 1) this.setScore(t, 1);
+    else {
+      this.limit = -3;
+      this.rate(mesh.from[3 * t]!, mesh.from[3 * t + 1]!, mesh.from[3 * t + 2]!);
+      this.setScore(t, this.rated);
+    }
   }
 
   private rescoreStar(v: number): void {
@@ -436,15 +455,13 @@ export class Remesher {
     } while (h !== start);
   }
 
-  private scoreOf(a: number, b: number, c: number, enough: number): number {
-    const p = this.mesh.position;
-    return this.scoreAt(p[3 * a]!, p[3 * a + 1]!, p[3 * a + 2]!, b, c, enough);
-  }
-
-  /** Score of the triangle of a point and two vertices; cut short once it cannot be more than `enough`. */
-  private scoreAt(x: number, y: number, z: number, b: number, c: number, enough: number): number {
+  /** Scores the triangle of three vertices into `rated`; whether that is above `limit`. */
+  private rate(a: number, b: number, c: number): boolean {
     const { shape } = this;
     const p = this.mesh.position;
+    const x = p[3 * a]!;
+    const y = p[3 * a + 1]!;
+    const z = p[3 * a + 2]!;
     const ux = p[3 * b]! - x;
     const uy = p[3 * b + 1]! - y;
     const uz = p[3 * b + 2]! - z;
@@ -462,14 +479,21 @@ export class Remesher {
     const ez = vz - uz;
     const ww = ex * ex + ey * ey + ez * ez;
     const least = uu < vv ? (uu < ww ? uu : ww) : vv < ww ? vv : ww;
+    if (!(nn > 0)) {
+      this.rated = -2;
+      return false;
+    }
     const quality = (nn * least) / (uu * vv * ww);
-    if (!(nn > 0)) return -2;
-    if (quality <= enough) return quality;
+    this.rated = quality;
+    if (quality <= this.limit) return false;
     let depth: number;
     if (this.star) depth = (nx * x + ny * y + nz * z) / (Math.sqrt(nn) * this.thin);
     else {
       // A point inside that sees the wall here: on the nearest tube's axis, eight radii back towards the node.
-      const tube = shape.nearest(x + (ux + vx) / 3, y + (uy + vy) / 3, z + (uz + vz) / 3);
+      shape.x = x + (ux + vx) / 3;
+      shape.y = y + (uy + vy) / 3;
+      shape.z = z + (uz + vz) / 3;
+      const tube = shape.nearest();
       const r = shape.radius[tube]!;
       const s = Math.max(0, shape.along - 8 * r);
       const wx = x - s * shape.axis[3 * tube]!;
@@ -477,6 +501,8 @@ export class Remesher {
       const wz = z - s * shape.axis[3 * tube + 2]!;
       depth = (nx * wx + ny * wy + nz * wz) / (Math.sqrt(nn) * r);
     }
-    return depth > STAR ? quality : depth - 1 - STAR;
+    if (depth > STAR) return true;
+    this.rated = depth - 1 - STAR;
+    return this.rated > this.limit;
   }
 }

@@ -20,8 +20,8 @@ export interface TubeLayout {
   readonly side: Float64Array;
   /** (n) m, radius of the rings' corners: their polygons have the area of the vessel's circle. */
   readonly corner: Float64Array;
-  /** Edge of a ring over the radius of its corners. */
-  readonly chord: number;
+  /** Edge length wanted in junction patches over the corner radius of the tube it lies on. */
+  readonly edge: number;
 }
 
 /** Radius of a regular polygon's corners over the radius of the circle of the same area. */
@@ -41,22 +41,22 @@ export function loadShape(
   forest: Forest,
   children: Children,
   row: number,
-  layout: Pick<TubeLayout, 'axis' | 'corner' | 'chord'>,
+  layout: Pick<TubeLayout, 'axis' | 'corner' | 'edge'>,
 ): number {
   const start = children.start[row]!;
   const end = children.start[row + 1]!;
-  const { axis, corner, chord } = layout;
+  const { axis, corner, edge } = layout;
   shape.reset(end - start + 1);
   let unit = corner[row]!;
   for (let i = start; i < end; i++) unit = Math.max(unit, corner[children.list[i]!]!);
   if (forest.parent[row]! >= 0) {
     const a = corner[row]! / unit;
-    shape.addTube(-axis[3 * row]!, -axis[3 * row + 1]!, -axis[3 * row + 2]!, a, chord * a);
+    shape.addTube(-axis[3 * row]!, -axis[3 * row + 1]!, -axis[3 * row + 2]!, a, edge * a);
   }
   for (let i = start; i < end; i++) {
     const child = children.list[i]!;
     const a = corner[child]! / unit;
-    shape.addTube(axis[3 * child]!, axis[3 * child + 1]!, axis[3 * child + 2]!, a, chord * a);
+    shape.addTube(axis[3 * child]!, axis[3 * child + 1]!, axis[3 * child + 2]!, a, edge * a);
   }
   return unit;
 }
@@ -73,11 +73,13 @@ export function layOutTubes(
   shape: JunctionShape,
   around: number,
   spacing: number,
-  problems: LumenProblem[],
+  problems: Omit<LumenProblem, 'vessel'>[],
 ): TubeLayout {
   const n = forest.count;
   const chord = 2 * Math.sin(Math.PI / around);
   const ratio = cornerRatio(around);
+  // From 24 segments up no edge may be longer than 0.3 radii; patches reach 1.3 times what they are asked for.
+  const edge = around >= 24 ? Math.min(chord, 0.228) : chord;
   const length = new Float64Array(n);
   const axis = new Float64Array(3 * n);
   const side = new Float64Array(3 * n);
@@ -96,7 +98,7 @@ export function layOutTubes(
   const want = [new Float64Array(n), new Float64Array(n)] as const;
   for (let row = 0; row < n; row++) {
     if (forest.parent[row]! < 0 || children.start[row] === children.start[row + 1]) continue;
-    const unit = loadShape(shape, forest, children, row, { axis, corner, chord });
+    const unit = loadShape(shape, forest, children, row, { axis, corner, edge });
     for (let tube = 0; tube < shape.count; tube++) {
       const vessel = tube === 0 ? row : children.list[children.start[row]! + tube - 1]!;
       const end = tube === 0 ? 1 : 0;
@@ -109,7 +111,7 @@ export function layOutTubes(
   const strips = new Int32Array(n);
   for (let i = 0; i < n; i++) {
     if (forest.parent[i]! < 0) continue;
-    const edge = chord * corner[i]!;
+    const chordHere = chord * corner[i]!;
     const total = length[i]!;
     const least = need[0][i]! + need[1][i]!;
     const most = want[0][i]! + want[1][i]!;
@@ -133,7 +135,7 @@ export function layOutTubes(
     const rest = total - near - far;
     let count = Math.ceil(rest / (spacing * corner[i]!) - 1e-9);
     // A strip lower than half an edge would have flat triangles: the two patches then share a ring.
-    if (rest < 0.5 * edge) count = rootEnd || openEnd ? 1 : 0;
+    if (rest < 0.5 * chordHere) count = rootEnd || openEnd ? 1 : 0;
     if (count === 0) {
       near += 0.5 * rest;
       far = total - near;
@@ -148,7 +150,7 @@ export function layOutTubes(
       });
     }
   }
-  return { first, last, strips, length, axis, side, corner, chord };
+  return { first, last, strips, length, axis, side, corner, edge };
 }
 
 /** Sets a unit vector square to an axis: the coordinate direction that leans on it least, straightened. */

@@ -1,0 +1,76 @@
+import { boundaryTable } from '../../mesh/boundary-table.ts';
+import type { LumenMesh } from '../../mesh/lumen.ts';
+import { networkTable } from '../../mesh/network-table.ts';
+import type { FlowField, Forest, TreeKind } from '../../tree/forest.ts';
+import type { NamedBytes } from '../format.ts';
+import type { MeshUnit } from './length-unit.ts';
+import { encodeLumenVtp } from './lumen-vtp.ts';
+import { type CutNotes, encodeMeshJson } from './mesh-json.ts';
+import { encodeLumenMsh } from './msh.ts';
+import { BINARY_ABOVE, encodeBinaryStl, encodeNamedStl, encodeSingleStl } from './stl.ts';
+import { encodeBoundaryCsv, encodeNetworkCsv } from './tables.ts';
+
+export interface MeshFolderInput {
+  readonly mesh: LumenMesh;
+  /** The forest that was meshed, and its flow. */
+  readonly forest: Forest;
+  readonly field: FlowField;
+  readonly kinds: readonly TreeKind[];
+  /** Unit of the surface files; metres where left out. Tables are in metres always. */
+  readonly unit?: MeshUnit | undefined;
+  readonly axialStretch?: number | undefined;
+  /** kg/m³ */
+  readonly density: number;
+  /** Pa·s where it is the same everywhere, else null. */
+  readonly viscosity: number | null;
+  /** Where part of a forest was meshed (see mesh/cut-forest.ts). */
+  readonly cut?:
+    | {
+        readonly notes: Omit<CutNotes, 'patches'>;
+        readonly source: ArrayLike<number>;
+        readonly vesselNumbers: ArrayLike<number>;
+        readonly resistances: ArrayLike<number>;
+      }
+    | undefined;
+  readonly facts?: Readonly<Record<string, unknown>> | undefined;
+}
+
+/** The files of a mesh folder, by name. */
+export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
+  const { mesh, forest, field, kinds, cut } = input;
+  const unit = input.unit ?? 'm';
+  const binary = mesh.triangle.length / 3 > BINARY_ABOVE;
+  const boundary = boundaryTable(mesh, forest, field, input.density, cut?.resistances);
+  const network = networkTable(forest, field, { kinds, source: cut?.source, vesselNumbers: cut?.vesselNumbers });
+  const cutNotes: CutNotes | null =
+    cut === undefined
+      ? null
+      : {
+          ...cut.notes,
+          patches: mesh.patches.filter((patch) => patch.row >= 0 && cut.resistances[patch.row]! > 0).map((p) => p.name),
+        };
+  const files: NamedBytes[] = [
+    { name: 'lumen.stl', bytes: binary ? encodeBinaryStl(mesh, unit) : encodeNamedStl(mesh, unit) },
+    { name: 'lumen.vtp', bytes: encodeLumenVtp(mesh, forest, field, unit) },
+    { name: 'lumen.msh', bytes: encodeLumenMsh(mesh, unit) },
+    { name: 'boundary.csv', bytes: encodeBoundaryCsv(boundary) },
+    { name: 'network.csv', bytes: encodeNetworkCsv(network) },
+    {
+      name: 'mesh.json',
+      bytes: encodeMeshJson({
+        mesh,
+        forest,
+        unit,
+        axialStretch: input.axialStretch ?? 1,
+        binary,
+        density: input.density,
+        viscosity: input.viscosity,
+        cut: cutNotes,
+        facts: input.facts,
+      }),
+    },
+  ];
+  // A binary file is one solid already.
+  if (!binary) files.splice(1, 0, { name: 'lumen_single.stl', bytes: encodeSingleStl(mesh, unit) });
+  return files;
+}

@@ -1,0 +1,51 @@
+import type { BoundaryRow } from '../../mesh/boundary-table.ts';
+import type { NetworkRow } from '../../mesh/network-table.ts';
+import { printReal } from '../text/numbers.ts';
+import { TextWriter } from '../text/writer.ts';
+
+const BOUNDARY = [
+  ...['patch', 'type', 'radius_m', 'cx', 'cy', 'cz', 'nx', 'ny', 'nz', 'flow_m3_s', 'pressure_Pa'],
+  ...['mean_velocity_m_s', 'reynolds', 'resistance_Pa_s_m3', 'windkessel_r1', 'windkessel_r2', 'windkessel_c'],
+  ...['tree', 'vessel'],
+];
+
+/**
+ * `boundary.csv`, a line a cap; metres whatever the unit of the surface files.
+ *
+ * `resistance_Pa_s_m3` is empty at a tree's root and 0 where nothing was cut off; the windkessel columns are empty.
+ */
+export function encodeBoundaryCsv(rows: readonly BoundaryRow[]): Uint8Array {
+  const out = new TextWriter();
+  out.add(`${BOUNDARY.join(',')}\n`);
+  for (const row of rows) {
+    const cells = [
+      row.patch,
+      row.type,
+      ...[row.radius, ...row.centre, ...row.normal, row.flow, row.pressure, row.velocity, row.reynolds].map(printReal),
+      row.resistance === null ? '' : printReal(row.resistance),
+      '',
+      '',
+      '',
+      String(row.tree),
+      String(row.vessel),
+    ];
+    out.add(`${cells.join(',')}\n`);
+  }
+  return out.bytes();
+}
+
+const NETWORK = [
+  ...['segment', 'from', 'to', 'x0', 'y0', 'z0', 'x1', 'y1', 'z1', 'r0_m', 'r1_m', 'length_m'],
+  ...['flow_m3_s', 'p0_Pa', 'p1_Pa'],
+];
+
+/** `network.csv`, a line a tube, metres; blood runs from `from` to `to`. */
+export function encodeNetworkCsv(rows: readonly NetworkRow[]): Uint8Array {
+  const out = new TextWriter();
+  out.add(`${NETWORK.join(',')}\n`);
+  for (const row of rows) {
+    const numbers = [...row.start, ...row.end, row.radius, row.radius, row.length, row.flow, ...row.pressures];
+    out.add(`${row.segment},${row.from},${row.to},${numbers.map(printReal).join(',')}\n`);
+  }
+  return out.bytes();
+}
