@@ -83,7 +83,7 @@ describe('README', () => {
   it('shows the spec table that the schema gives', () => {
     const marked = /<!-- spec-table -->\n[\s\S]*?<!-- \/spec-table -->/;
     const wanted = `<!-- spec-table -->\n${library.specTable().trim()}\n<!-- /spec-table -->`;
-    if (process.env['UPDATE'] === '1')
+    if (process.env.UPDATE === '1')
       writeFileSync(
         README,
         text.replace(marked, () => wanted),

@@ -11,10 +11,9 @@ export function randomSpec(random: Random, seed: string, most = 60): Spec {
   const { tissue, inlet, direction, volume } = pick([box, ball, lobe, shell, block, cylinder])(between);
   const rule = pick(['least-power', 'junction-exponent', 'junction-exponent', 'pressure-matched']);
   const sizing: Json = { rule };
-  if (rule !== 'least-power') sizing['junction_exponent'] = Number(between(2.2, 3.4).toFixed(2));
+  if (rule !== 'least-power') sizing.junction_exponent = Number(between(2.2, 3.4).toFixed(2));
   const size = Math.cbrt(volume);
-  if (rule === 'junction-exponent' && random.next() < 0.5)
-    sizing['inlet_radius_um'] = Math.round(between(8, 40) * size);
+  if (rule === 'junction-exponent' && random.next() < 0.5) sizing.inlet_radius_um = Math.round(between(8, 40) * size);
   // Least-power radii go with the cube root of flow: a first vessel of 1 to 5 % of the tissue's size.
   const radius = between(0.01, 0.05) * size * 1e-3;
   const flow = (radius * radius * radius * Math.PI * Math.sqrt(625 / 0.0035)) / 4;
@@ -23,7 +22,7 @@ export function randomSpec(random: Random, seed: string, most = 60): Spec {
     random.next() < 0.75
       ? { count: 1 + Math.floor(random.next() * most) }
       : { spacing_um: Math.round(1000 * size * between(0.25, 0.6)) };
-  terminals['pressure_mmHg'] = 20;
+  terminals.pressure_mmHg = 20;
   return specFromValue({
     name: 'random',
     seed,
