@@ -14,8 +14,11 @@ export type { TriangleSurface } from './core/surface.ts';
 export { fromSi, toSi, UNITS, type Unit } from './core/units.ts';
 export { decodeTree } from './formats/decode-tree.ts';
 export type { DecodedTree, NamedBytes, TreeFormat } from './formats/format.ts';
+export { MESH_UNITS, type MeshUnit } from './formats/mesh/length-unit.ts';
 export { decodeSurface } from './formats/surface/surface-formats.ts';
 export { splitTreePath, TREE_FORMATS } from './formats/tree-formats.ts';
+export { LUMEN_DEFAULTS } from './mesh/build-lumen.ts';
+export type { LumenMesh } from './mesh/lumen.ts';
 export { CAUTION } from './report/caution.ts';
 export { renderReport } from './report/render.ts';
 export type { Report } from './report/report.ts';
@@ -25,6 +28,9 @@ export {
   type GrowOptions,
   type GrowResult,
   growRun,
+  type MeshOptions,
+  type MeshResult,
+  meshTree,
   promiseLines,
   type ReportedRun,
   reportRun,

@@ -1,14 +1,21 @@
 import { checkTree } from './check/check-tree.ts';
 import type { CheckResult } from './check/result.ts';
+import { inputError } from './core/errors.ts';
 import type { Watch } from './core/progress.ts';
 import type { TriangleSurface } from './core/surface.ts';
 import { solveWithEnds } from './flow/ends.ts';
 import { narrowTube, withFlow } from './flow/narrow.ts';
 import { measurePower } from './flow/power.ts';
 import { solveFlow } from './flow/solve.ts';
+import type { NamedBytes } from './formats/format.ts';
+import type { MeshUnit } from './formats/mesh/length-unit.ts';
+import { encodeMeshFolder } from './formats/mesh/mesh-folder.ts';
 import { freezeGrowth } from './growth/freeze.ts';
 import { type Growth, growForest } from './growth/grow.ts';
 import type { Stopped } from './growth/grower.ts';
+import { buildLumen } from './mesh/build-lumen.ts';
+import { type CutOptions, cutField, cutForest, cutResistances } from './mesh/cut-forest.ts';
+import type { LumenMesh } from './mesh/lumen.ts';
 import { tubeWeights } from './refine/cost.ts';
 import { type RelaxResult, relaxJunctions } from './refine/relax.ts';
 import { buildReport } from './report/build.ts';
@@ -18,8 +25,9 @@ import type { Spec } from './spec/types.ts';
 import { specToJson } from './spec/write.ts';
 import { buildTissue } from './tissue/build-tissue.ts';
 import type { Tissue } from './tissue/tissue.ts';
-import type { Forest, TreeRecord } from './tree/forest.ts';
+import type { FlowField, Forest, TreeRecord } from './tree/forest.ts';
 import { strahlerOrders } from './tree/strahler.ts';
+import { countVessels } from './tree/vessels.ts';
 
 /** Version of the program, as written into every result. */
 export const VERSION = '0.1.0';
@@ -151,6 +159,79 @@ export function solveAgain(record: TreeRecord, spec: Spec, change: FlowChange): 
   }
   if (reversed.length > 0) return { spec: used, record: null, reversed };
   return { spec: used, record: solveRecord(withFlow(forest, flow), used), reversed };
+}
+
+export interface MeshOptions extends CutOptions {
+  /** Segments round a vessel. */
+  readonly around?: number | undefined;
+  /** Unit of the surface files; metres where left out. */
+  readonly unit?: MeshUnit | undefined;
+}
+
+export interface MeshResult {
+  readonly mesh: LumenMesh;
+  /** The files of a mesh folder. */
+  readonly files: readonly NamedBytes[];
+  /** Vessels that were meshed, and that were cut off. */
+  readonly vessels: number;
+  readonly removed: number;
+}
+
+/**
+ * Meshes the lumen of a tree, or of its wider part.
+ *
+ * @param spec tells blood, and pressures where the record holds no solution; null where there is none
+ * @throws InputError for options out of range, or a record with neither solution nor spec
+ */
+export function meshTree(record: TreeRecord, spec: Spec | null, options: MeshOptions = {}): MeshResult {
+  const solved = record.field !== null || spec === null ? record : solveRecord(record.forest, spec);
+  const { kinds, field: whole } = solved;
+  if (whole === null) {
+    throw inputError('no-flow', 'tree', 'got neither a flow solution nor a spec, expected one of them for the tables');
+  }
+  const { around, unit, keepAbove, keepOrder } = options;
+  const cut =
+    keepAbove === undefined && keepOrder === undefined ? null : cutForest(record.forest, { keepAbove, keepOrder });
+  const forest = cut?.forest ?? record.forest;
+  const field = cut === null ? whole : cutField(cut, whole);
+  const mesh = buildLumen(forest, { around, kinds, vesselNumbers: cut?.vesselNumbers });
+  const files = encodeMeshFolder({
+    mesh,
+    forest,
+    field,
+    kinds,
+    unit,
+    density: spec?.blood.density ?? densityOf(whole),
+    viscosity: spec?.blood.viscosity.value ?? onlyValue(whole.viscosity),
+    cut:
+      cut === null
+        ? undefined
+        : {
+            notes: { keepAbove: keepAbove ?? null, keepOrder: keepOrder ?? null, removed: cut.removed },
+            source: cut.source,
+            vesselNumbers: cut.vesselNumbers,
+            resistances: cutResistances(cut, whole, field),
+          },
+    facts: {
+      program: `vesselwright ${VERSION}`,
+      name: spec?.name,
+      seed: spec?.seed,
+      sizing: spec?.sizing.rule,
+      junction_exponent: spec === null || spec.sizing.rule === 'least-power' ? undefined : spec.sizing.exponent,
+    },
+  });
+  return { mesh, files, vessels: countVessels(forest), removed: cut?.removed ?? 0 };
+}
+
+/** kg/m³, from the Reynolds number of the first vessel: Re = 2 ρ v r / μ. */
+function densityOf(field: FlowField): number {
+  return (field.reynolds[0]! * field.viscosity[0]!) / (2 * field.velocity[0]! * field.forest.radius[0]!);
+}
+
+/** The one value of a column, or null where there are several. */
+function onlyValue(column: ArrayLike<number>): number | null {
+  for (let i = 1; i < column.length; i++) if (column[i] !== column[0]) return null;
+  return column[0]!;
 }
 
 /** What a report is made of: a run as grown, or a tree solved again, whose tissue may not be known. */

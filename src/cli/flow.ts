@@ -120,7 +120,7 @@ function flow(path: string, options: FlowArguments, talk: Talk): number {
         ),
         ...failed.map(({ title, where }) => `  BROKEN: ${title}, worst at ${where ?? '?'}`),
         ...lapsed.map(({ title }) => `  no longer kept by the changed tree: ${title}`),
-        `  written: ${files.map((file) => join(options.out, file)).join(', ')}`,
+        `  written: ${join(options.out, '/')}: ${files.join(', ')}`,
         `  look at both: vesselwright view ${path} ${options.out}`,
         '',
         `${CAUTION}\n`,

@@ -141,7 +141,7 @@ function describeRun(grown: GrownFolder, out: string): string {
     `  promises: ${kept} held, ${broken.length} broken, ${unchecked} not asked for or not checked`,
     ...broken.map(({ title, failures, where }) => `    BROKEN: ${title}: ${failures} times, worst at ${where ?? '?'}`),
     ...result.shortfalls.map((sentence) => `    NOT MET: ${sentence}`),
-    `  written: ${files.map((file) => join(out, file)).join(', ')}`,
+    `  written: ${join(out, '/')}: ${files.join(', ')}`,
     `  look at it: vesselwright view ${out}`,
     '',
     CAUTION,

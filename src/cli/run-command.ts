@@ -9,10 +9,11 @@ import { tellFailure } from './failure.ts';
 import { addFlow } from './flow.ts';
 import { addGrow } from './grow.ts';
 import type { Io } from './io.ts';
+import { addMesh } from './mesh.ts';
 import { addPresets } from './presets.ts';
 import { addView } from './view.ts';
 
-const COMMANDS = [addGrow, addFlow, addExport, addCheck, addCompare, addView, addPresets];
+const COMMANDS = [addGrow, addFlow, addMesh, addExport, addCheck, addCompare, addView, addPresets];
 
 /**
  * Runs one command line.

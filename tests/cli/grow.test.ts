@@ -39,7 +39,7 @@ describe('grow', () => {
     expect(out).toContain('describe no patient');
     for (const name of ['tree.vtp', 'spec.json', 'report.json', 'report.html']) {
       expect(existsSync(scratch.path('run', name)), name).toBe(true);
-      expect(out).toContain(scratch.path('run', name));
+      expect(out).toMatch(new RegExp(`written: ${run}/: .*${name}`));
     }
     expect(scratch.names()).toEqual(['run', 'spec.json']);
   });

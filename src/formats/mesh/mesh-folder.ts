@@ -71,6 +71,6 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
     },
   ];
   // A binary file is one solid already.
-  if (!binary) files.splice(1, 0, { name: 'lumen_single.stl', bytes: encodeSingleStl(mesh, unit) });
+  if (!binary) files.splice(1, 0, { name: 'lumen_one_solid.stl', bytes: encodeSingleStl(mesh, unit) });
   return files;
 }

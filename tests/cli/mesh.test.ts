@@ -1,0 +1,121 @@
+import { existsSync, readFileSync, writeFileSync } from 'node:fs';
+import { afterAll, beforeAll, describe, expect, test } from 'vitest';
+import { soundSpec } from '../support/bend-spec.ts';
+import { makeScratch, runCli, type Scratch } from '../support/run-cli.ts';
+
+let scratch: Scratch;
+let run: string;
+beforeAll(async () => {
+  scratch = makeScratch();
+  // A small drop makes wide vessels, so that a tree of few triangles comes out.
+  const spec = soundSpec();
+  spec.trees[0].inlet.pressure_mmHg = 20.2;
+  spec.trees[0].terminals.count = 6;
+  writeFileSync(scratch.path('spec.json'), JSON.stringify(spec));
+  run = scratch.path('run');
+  await runCli(['grow', scratch.path('spec.json'), '--out', run]);
+});
+afterAll(() => scratch.remove());
+
+const FILES = [
+  'boundary.csv',
+  'lumen.msh',
+  'lumen.stl',
+  'lumen.vtp',
+  'lumen_one_solid.stl',
+  'mesh.json',
+  'network.csv',
+];
+const text = (...names: string[]) => readFileSync(scratch.path(...names), 'utf8');
+
+describe('mesh', () => {
+  test('writes a mesh folder whose check holds: exit 0', async () => {
+    const { code, out, err } = await runCli(['mesh', run, '--out', scratch.path('mesh')]);
+    expect({ code, err }, out).toEqual({ code: 0, err: '' });
+    for (const file of FILES) {
+      expect(existsSync(scratch.path('mesh', file)), file).toBe(true);
+      expect(out).toContain(file);
+    }
+    expect(text('mesh', 'lumen.stl').match(/^solid \w+$/gm)).toHaveLength(8);
+    expect(text('mesh', 'lumen_one_solid.stl').match(/^solid \w+$/gm)).toHaveLength(1);
+    const notes = JSON.parse(text('mesh', 'mesh.json'));
+    expect(notes).toMatchObject({
+      unit: 'm',
+      around: 24,
+      seed: 'sound-1',
+      density_kg_m3: 1060,
+      viscosity_Pa_s: 0.0035,
+    });
+    const check = await runCli(['check', scratch.path('mesh'), '--json']);
+    expect(JSON.parse(check.out)).toMatchObject({ kind: 'mesh', held: true });
+    expect(check.code).toBe(0);
+  });
+
+  test('--unit, --around and --keep-above are told in mesh.json, and the mesh is checked in metres all the same', async () => {
+    const argv = ['--unit', 'mm', '--around', '28', '--keep-order', '2', '--keep-above', '1', '--json'];
+    const { code, out } = await runCli(['mesh', run, ...argv, '--out', scratch.path('coarse')]);
+    const value = JSON.parse(out);
+    expect(code, JSON.stringify(value.findings)).toBe(0);
+    expect(value.removed).toBeGreaterThan(0);
+    const notes = JSON.parse(text('coarse', 'mesh.json'));
+    expect(notes).toMatchObject({ unit: 'mm', around: 28, cut_off: { keep_above_m: 1e-6, keep_order: 2 } });
+    // The block is 12 mm wide: in millimetres some corner lies beyond 1.
+    let reach = 0;
+    for (const [, x] of text('coarse', 'lumen.stl').matchAll(/vertex (\S+)/g)) reach = Math.max(reach, Number(x));
+    expect(reach).toBeGreaterThan(1);
+    expect(reach).toBeLessThan(12);
+    expect((await runCli(['check', scratch.path('coarse')])).code).toBe(0);
+  });
+
+  test('a tree without a spec but with a flow solution is meshed too', async () => {
+    await runCli(['export', run, '--to', scratch.path('tree.csv')]);
+    const { code } = await runCli(['mesh', scratch.path('tree.csv'), '--out', scratch.path('bare')]);
+    expect(code).toBe(0);
+    const notes = JSON.parse(text('bare', 'mesh.json'));
+    expect(notes.density_kg_m3).toBeCloseTo(1060, 9);
+    expect(notes.viscosity_Pa_s).toBe(0.0035);
+  });
+
+  test('a damaged mesh fails its check with the patch named: exit 1', async () => {
+    await runCli(['mesh', run, '--out', scratch.path('damaged')]);
+    const whole = text('damaged', 'lumen.stl');
+    const end = whole.indexOf('endfacet') + 'endfacet\n'.length;
+    writeFileSync(scratch.path('damaged', 'lumen.stl'), whole.slice(0, whole.indexOf('facet')) + whole.slice(end));
+    const { code, out } = await runCli(['check', scratch.path('damaged')]);
+    expect(code).toBe(1);
+    expect(out).toMatch(/^BROKEN +mesh-closed/m);
+    // It is still a mesh folder of this program, and may be replaced.
+    expect((await runCli(['mesh', run, '--out', scratch.path('damaged')])).code).toBe(0);
+  });
+
+  test.each([
+    ['--around', '3', /^--around: got "3", expected a whole number from 8 to 256/],
+    ['--unit', 'inch', /^--unit: got "inch", expected one of m, mm, um/],
+    ['--keep-above', '-1', /^--keep-above: got "-1", expected a number > 0/],
+    ['--keep-above', '1e9', /^--keep-above: .*expected at least/],
+    ['--keep-order', '9', /^--keep-order: .*expected at least/],
+  ])('refuses %s %s', async (option, value, says) => {
+    const { code, out, err } = await runCli(['mesh', run, option, value, '--out', scratch.path('refused')]);
+    expect({ code, out }).toEqual({ code: 2, out: '' });
+    expect(err).toMatch(says);
+    expect(existsSync(scratch.path('refused'))).toBe(false);
+  });
+
+  test('refuses a tree with neither spec nor solution, a mesh folder, and to replace a run', async () => {
+    await runCli(['export', run, '--to', scratch.path('tree.swc')]);
+    const bare = await runCli(['mesh', scratch.path('tree.swc'), '--out', scratch.path('refused')]);
+    expect(bare).toMatchObject({
+      code: 2,
+      err: expect.stringMatching(/tree\.swc: got neither a flow solution nor a spec/),
+    });
+    await runCli(['mesh', run, '--out', scratch.path('once')]);
+    const twice = await runCli(['mesh', scratch.path('once'), '--out', scratch.path('refused')]);
+    expect(twice).toMatchObject({
+      code: 2,
+      err: expect.stringMatching(/once: got a mesh folder, which holds no tree/),
+    });
+    const over = await runCli(['mesh', run, '--out', run]);
+    expect(over).toMatchObject({ code: 2, err: expect.stringMatching(/^--out: got .*which is no mesh folder/) });
+    expect(existsSync(scratch.path('run', 'tree.vtp'))).toBe(true);
+  });
+});
