@@ -17,6 +17,8 @@ import { hangFirst, plant, type Seedling } from './seedling.ts';
 const REFRESH = 1.05;
 /** Growth between two sizings of trees whose radii depend on all their lengths. */
 const RESIZE = 1.15;
+/** Growth between two rebuilds of the grid. */
+const GRID = 1.5;
 /** Edge of a grid cell over the spacing of terminals. */
 const CELL = 0.9;
 /** Radius certified over radius needed. */
@@ -246,7 +248,7 @@ export class Grower {
     const served = this.served;
     this.nextRefresh = Math.max(served + 1, Math.ceil(served * REFRESH));
     if (served >= this.nextGrid) {
-      this.nextGrid = 2 * served;
+      this.nextGrid = GRID * served;
       this.room.rebuild(CELL * Math.cbrt(this.tissue.volume / served));
     }
     let changed = false;
