@@ -4,9 +4,10 @@ import { CSV } from './tree/csv.ts';
 import { JSON_TREE } from './tree/json.ts';
 import { SWC } from './tree/swc.ts';
 import { VTP } from './tree/vtp.ts';
+import { VTU } from './tree/vtu.ts';
 
 /** Every format a tree can be written to and read from; help, README and conformance tests read this table. */
-export const TREE_FORMATS = [VTP, CSV, JSON_TREE, SWC] as const satisfies readonly TreeFormat[];
+export const TREE_FORMATS = [VTP, CSV, JSON_TREE, SWC, VTU] as const satisfies readonly TreeFormat[];
 
 /** A path taken apart: what it is written in, and the files that stand there. */
 export interface TreePath {

@@ -34,7 +34,7 @@ function snapshot(record: TreeRecord): string {
 const FIELD = ['pressure', 'transit', 'viscosity', 'velocity', 'wallShear', 'reynolds', 'haematocrit'] as const;
 
 it('has formats and records to test', () => {
-  expect(TREE_FORMATS.map((format) => format.id)).toEqual(['vtp', 'csv', 'json', 'swc']);
+  expect(TREE_FORMATS.map((format) => format.id)).toEqual(['vtp', 'csv', 'json', 'swc', 'vtu']);
   expect(Object.keys(ZOO).length).toBeGreaterThanOrEqual(6);
 });
 
@@ -175,7 +175,7 @@ describe('splitTreePath', () => {
 
   it('lists what it knows when it does not know a name', () => {
     expect(() => splitTreePath('tree.xyz', '--to')).toThrow(
-      /--to: got tree.xyz, expected .*\.vtp, \.csv, \.json, \.swc/,
+      /--to: got tree.xyz, expected .*\.vtp, \.csv, \.json, \.swc, \.vtu/,
     );
   });
 });

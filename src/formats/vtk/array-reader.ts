@@ -1,7 +1,7 @@
 import { decodeText } from '../../core/text.ts';
 import type { FaultList } from '../faults.ts';
 import { parseReal } from '../text/numbers.ts';
-import { decodeBase64 } from './base64.ts';
+import { type BlockCoding, type Fail, readBase64Block, readBlock } from './blocks.ts';
 import { type Element, scanXml } from './xml.ts';
 
 const SIZES: Readonly<Record<string, number>> = {
@@ -17,6 +17,8 @@ const SIZES: Readonly<Record<string, number>> = {
   Float64: 8,
 };
 
+const ZLIB = 'vtkZLibDataCompressor';
+
 /** A VTK XML file of which arrays are read one by one when they are asked for. */
 export interface VtkFile {
   readonly name: string;
@@ -25,16 +27,16 @@ export interface VtkFile {
   readonly type: string;
   /** Numbers of an array, all as float64; null after a fault. */
   numbers(array: Element): Float64Array | null;
-  /** Texts of an array of type String; null after a fault. */
+  /** Texts of an array of type String, or of their codes as Int8 or UInt8; null after a fault. */
   texts(array: Element): string[] | null;
 }
 
 /**
  * Opens a VTK XML file: raw or base64 appended data, inline base64 and inline numbers, either byte order, either header
- * size, uncompressed.
+ * size, plain or packed by zlib.
  *
  * @returns null after a fault
- * Source: VTK XML formats as documented by Kitware: `[count of bytes][data]` a block, offsets from the byte after `_`.
+ * Source: VTK XML formats as documented by Kitware; offsets count from the byte after `_`.
  */
 export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): VtkFile | null {
   const root = scanXml(bytes, name, faults);
@@ -44,8 +46,9 @@ export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): Vtk
     faults.add('not-vtk', name, `got <${root.name}>, expected <VTKFile>`);
     return null;
   }
-  if ((attributes.compressor ?? '') !== '') {
-    faults.add('compressed', name, `got data packed by ${attributes.compressor}, expected a file written uncompressed`);
+  const packer = attributes.compressor ?? '';
+  if (packer !== '' && packer !== ZLIB) {
+    faults.add('compressed', name, `got data packed by ${packer}, expected ${ZLIB} or a file written uncompressed`);
   }
   const order = attributes.byte_order ?? 'LittleEndian';
   if (order !== 'LittleEndian' && order !== 'BigEndian') {
@@ -70,7 +73,7 @@ export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): Vtk
   if (faults.count > 0) return null;
 
   const big = order === 'BigEndian';
-  const headerSize = header === 'UInt64' ? 8 : 4;
+  const coding: BlockCoding = { big, headerSize: header === 'UInt64' ? 8 : 4, packed: packer === ZLIB };
   const base64 = appended?.attributes.encoding !== 'raw';
 
   const place = (array: Element): string => `${name} ${array.attributes.Name ?? array.name}`;
@@ -78,53 +81,19 @@ export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): Vtk
     faults.add(code, place(array), message);
     return null;
   };
-  /** The data of a block, whose header says how long it is. */
-  const unwrap = (array: Element, block: Uint8Array, from: number): Uint8Array | null => {
-    if (from + headerSize > block.length) {
-      return fault(array, 'truncated', `starts at byte ${from} of ${block.length}: the file is cut short`);
-    }
-    const view = new DataView(block.buffer, block.byteOffset + from, headerSize);
-    const size = headerSize === 8 ? Number(view.getBigUint64(0, !big)) : view.getUint32(0, !big);
-    const start = from + headerSize;
-    if (size > block.length - start) {
-      return fault(
-        array,
-        'truncated',
-        `should be ${size} bytes long, ${block.length - start} are left: the file is cut short`,
-      );
-    }
-    return block.subarray(start, start + size);
-  };
   const block = (array: Element): Uint8Array | null => {
-    if (array.attributes.format === 'appended') {
-      const offset = parseReal(array.attributes.offset ?? '');
-      if (pool === null) return fault(array, 'appended', 'is said to be in the appended data, of which there is none');
-      if (!(Number.isInteger(offset) && offset >= 0)) {
-        return fault(array, 'offset', `got offset "${array.attributes.offset}", expected a whole number`);
-      }
-      if (!base64) return unwrap(array, pool, offset);
-      if (offset > pool.length) return fault(array, 'truncated', `starts at byte ${offset} of ${pool.length}`);
-      return decodeBlock(array, pool.subarray(offset), true);
+    const fail: Fail = (code, message) => fault(array, code, message);
+    if (array.attributes.format !== 'appended') {
+      return readBase64Block(bytes.subarray(array.from, array.to), false, coding, fail);
     }
-    return decodeBlock(array, bytes.subarray(array.from, array.to), false);
-  };
-  /** Base64 text of a block; what follows it in a pool is not looked at. */
-  const decodeBlock = (array: Element, text: Uint8Array, shared: boolean): Uint8Array | null => {
-    let own = text;
-    if (shared) {
-      const head = decodeBase64(text.subarray(0, headerSize === 8 ? 12 : 8));
-      if (head === null || head.length < headerSize) return fault(array, 'base64', 'got no base64 header');
-      const view = new DataView(head.buffer, head.byteOffset, head.length);
-      const size = headerSize === 8 ? Number(view.getBigUint64(0, !big)) : view.getUint32(0, !big);
-      // The header may have been encoded by itself, with padding of its own.
-      const apart = text[headerSize === 8 ? 11 : 7] === 0x3d;
-      const inGroups = (count: number) => 4 * Math.ceil(count / 3);
-      const length = apart ? inGroups(headerSize) + inGroups(size) : inGroups(headerSize + size);
-      if (length > text.length) return fault(array, 'truncated', `should be ${size} bytes long: the file is cut short`);
-      own = text.subarray(0, length);
+    const offset = parseReal(array.attributes.offset ?? '');
+    if (pool === null) return fail('appended', 'is said to be in the appended data, of which there is none');
+    if (!(Number.isInteger(offset) && offset >= 0)) {
+      return fail('offset', `got offset "${array.attributes.offset}", expected a whole number`);
     }
-    const decoded = decodeBase64(own);
-    return decoded === null ? fault(array, 'base64', 'got text that is not base64') : unwrap(array, decoded, 0);
+    if (!base64) return readBlock(pool, offset, coding, fail);
+    if (offset > pool.length) return fail('truncated', `starts at byte ${offset} of ${pool.length}`);
+    return readBase64Block(pool.subarray(offset), true, coding, fail);
   };
   const isText = (array: Element): boolean => (array.attributes.format ?? 'ascii') === 'ascii';
   const numbers = (array: Element): Float64Array | null => {
