@@ -1,10 +1,12 @@
 import { cpSync, existsSync, mkdirSync, readFileSync, writeFileSync } from 'node:fs';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
-import { VTP } from '../../src/formats/tree/vtp.ts';
+import { splitTreePath } from '../../src/index.ts';
 import { soundSpec } from '../support/bend-spec.ts';
 import { makeScratch, runCli, type Scratch } from '../support/run-cli.ts';
 
 /* What is done with a run that is there: check, compare, export. */
+
+const VTP = splitTreePath('tree.vtp', 'test').format;
 
 let scratch: Scratch;
 let run: string;
