@@ -11,7 +11,7 @@ import {
   surfacesOfTree,
   type TreeFiles,
 } from '../node/index.ts';
-import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
+import { addCommonOptions, addExample, type Context, runWork, TREE_ENDINGS } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
 
@@ -24,7 +24,7 @@ export function addCheck(program: Command, context: Context): void {
         'A run’s report is held to its cost figures too. What a file does not tell (a spec, a flow solution) is said to\n' +
         'be unchecked.',
     )
-    .argument('<result>', 'run folder, tree file (.vtp .csv .json .swc) or mesh folder');
+    .argument('<result>', `run folder, tree file (${TREE_ENDINGS}) or mesh folder`);
   addCommonOptions(command, 'print promises and findings as one JSON document');
   addExample(command, 'check runs/gel', 'check meshes/gel --json');
   command.action((path: string, options: CommonOptions) => runWork(context, options, (talk) => check(path, talk)));

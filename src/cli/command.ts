@@ -1,5 +1,12 @@
 import type { Command } from 'commander';
+import { TREE_FORMATS } from '../index.ts';
 import { type CommonOptions, type Io, Talk } from './io.ts';
+
+const endings = (formats: readonly { readonly extensions: readonly string[] }[]): string =>
+  formats.flatMap((format) => format.extensions).join(' ');
+/** Endings of the files a tree may be read from, for help; and of those that hold it in one file. */
+export const TREE_ENDINGS = endings(TREE_FORMATS);
+export const ONE_FILE_ENDINGS = endings(TREE_FORMATS.filter((format) => format.parts.length === 1));
 
 /** What a command is run with, and where its exit code goes. */
 export interface Context {

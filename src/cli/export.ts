@@ -3,7 +3,7 @@ import { join } from 'node:path';
 import type { Command } from 'commander';
 import { inputError, splitTreePath, TREE_FORMATS } from '../index.ts';
 import { placeForFile, readTree, writeFiles } from '../node/index.ts';
-import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
+import { addCommonOptions, addExample, type Context, runWork, TREE_ENDINGS } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
 
@@ -16,7 +16,7 @@ export function addExport(program: Command, context: Context): void {
     .command('export')
     .summary('write a tree in another format')
     .description('Writes a tree in the format that the file’s extension names.')
-    .argument('<tree>', 'run folder or tree file (.vtp .csv .json .swc)')
+    .argument('<tree>', `run folder or tree file (${TREE_ENDINGS})`)
     .requiredOption('--to <file>', `file to write: ${TREE_FORMATS.flatMap((format) => format.extensions).join(', ')}`);
   addCommonOptions(command, null);
   command.addHelpText('after', `\nFormats:\n${describeFormats()}`);

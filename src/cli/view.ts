@@ -4,7 +4,7 @@ import { fileURLToPath } from 'node:url';
 import type { Command } from 'commander';
 import { inputError, splitTreePath } from '../index.ts';
 import { isSystemError, readTree, startViewServer, type ViewedRun } from '../node/index.ts';
-import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
+import { addCommonOptions, addExample, type Context, ONE_FILE_ENDINGS, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
 import { wholeNumber } from './option-values.ts';
@@ -24,7 +24,7 @@ export function addView(program: Command, context: Context): void {
       'Serves the viewer and the given trees on this machine’s loopback address and prints the address to open.\n' +
         'Runs until Ctrl-C, which is its normal end: exit code 0.',
     )
-    .argument('<run...>', 'run folders or tree files (.vtp .json .swc)')
+    .argument('<run...>', `run folders or tree files (${ONE_FILE_ENDINGS})`)
     .option('--port <port>', 'port to serve on; 0 takes a free one', '0');
   addCommonOptions(command, null);
   addExample(command, 'view runs/gel', 'view runs/before runs/after --port 8123');
