@@ -137,7 +137,9 @@ export class PatchBuilder {
         const y = (out.position[3 * g + 1]! - py) / unit;
         const z = (out.position[3 * g + 2]! - pz) / unit;
         shape.lookAt(x, y, z);
-        this.global[mesh.addVertex(x, y, z, shape.edgeHere(), RIM)] = g;
+        // A rim's edges stay as they are, however near a thin tube is.
+        const size = Math.max(shape.edgeHere(), 0.7 * shape.edge[tube]!);
+        this.global[mesh.addVertex(x, y, z, size, RIM)] = g;
       }
     }
   }

@@ -23,7 +23,7 @@ export class JunctionShape {
   radius = new Float64Array(8);
   /** (k) edge length wanted on the wall of each tube. */
   edge = new Float64Array(8);
-  /** How fast the edge length may grow with the distance from a thinner tube's wall. */
+  /** How fast the edge length may grow with the distance from a thinner tube's wall and fillet. */
   grading = 0.4;
 
   /**
@@ -112,7 +112,7 @@ export class JunctionShape {
   edgeHere(): number {
     let best = Infinity;
     for (let i = 0; i < this.count; i++) {
-      const away = this.distance(i) - this.radius[i]!;
+      const away = this.distance(i) - (1 + FILLET) * this.radius[i]!;
       const edge = this.edge[i]! + (away > 0 ? this.grading * away : 0);
       if (edge < best) best = edge;
     }
@@ -238,7 +238,7 @@ export class JunctionShape {
       let cosine = 0;
       for (let m = 0; m < 3; m++) cosine += this.axis[3 * tube + m]! * this.axis[3 * j + m]!;
       const sine = Math.sqrt(Math.max(0, 1 - cosine * cosine));
-      const growth = graded ? (0.75 * this.edge[tube]! - this.edge[j]!) / this.grading : 0;
+      const growth = graded ? (0.75 * this.edge[tube]! - this.edge[j]!) / this.grading + FILLET * b : 0;
       const fillet = FILLET * Math.min(a, b);
       const sideGap = Math.max(fillet * sine, growth);
       const ballGap = Math.max(fillet, growth);

@@ -4,11 +4,11 @@ import { FREE, type PatchMesh } from './patch-mesh.ts';
 /** Longest edge allowed, in edge lengths wanted. */
 const LONG = 1.3;
 /** Longest edge allowed while the patch is coarse, at each attempt. */
-const COARSE = [1.3, 1.15, 1.4, 1.22];
+const COARSE = [1.4, 1.15, 1.3, 1.22];
 /** Shortest edge wanted. */
 const SHORT = 0.62;
 /** Move too small to be worth it, in edge lengths wanted. */
-const STILL = 0.06;
+const STILL = 0.1;
 /** Least distance of a triangle's plane from the node, in radii of the thinnest tube, while the patch is coarse. */
 const STAR = 0.2;
 /** sin² of the smallest angle that smoothing must keep: 35°. */
@@ -80,6 +80,7 @@ export class Remesher {
       this.smoothAll();
     }
     this.flipAll();
+    for (let pass = 0; pass < 3 && this.splitLong() > 0; pass++) this.flipAll();
     for (let pass = 0; pass < 8; pass++) if (this.mendPoor() === 0) break;
     let worst = 1;
     for (let t = 0; t < mesh.triangles; t++) {
@@ -181,7 +182,7 @@ export class Remesher {
       const b = mesh.from[mesh.twin[h]!]!;
       const size = Math.min(mesh.size[a]!, mesh.size[b]!);
       if (mesh.squaredLength(a, b) > SHORT * SHORT * size * size) continue;
-      this.tryCollapse(h, 0.1, 1.2);
+      this.tryCollapse(h, 0.1, 1);
     }
   }
 
@@ -321,7 +322,12 @@ export class Remesher {
     let h = start;
     let at = 0;
     do {
-      if (!this.rate(v, mesh.from[mesh.next(h)]!, mesh.from[mesh.previous(h)]!)) {
+      const n = mesh.from[mesh.next(h)]!;
+      const long = LONG * (size + mesh.size[n]!);
+      if (
+        (!this.star && this.limit > 0 && 4 * mesh.squaredLength(v, n) > long * long) ||
+        !this.rate(v, n, mesh.from[mesh.previous(h)]!)
+      ) {
         p[3 * v] = x;
         p[3 * v + 1] = y;
         p[3 * v + 2] = z;
@@ -379,9 +385,9 @@ export class Remesher {
       }
     }
     const floor = mesh.score[t]! + 1e-3;
-    if (mesh.kind[mesh.from[edge]!] === FREE && this.tryCollapse(edge, floor, 1.15)) return true;
+    if (mesh.kind[mesh.from[edge]!] === FREE && this.tryCollapse(edge, floor, 1)) return true;
     const twin = mesh.twin[edge]!;
-    return mesh.kind[mesh.from[twin]!] === FREE && this.tryCollapse(twin, floor, 1.15);
+    return mesh.kind[mesh.from[twin]!] === FREE && this.tryCollapse(twin, floor, 1);
   }
 
   /** Pattern search for the place of a vertex that makes the worst triangle of its star best. */

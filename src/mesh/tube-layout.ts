@@ -93,8 +93,10 @@ export function layOutTubes(
       axis[3 * i + k] = (forest.position[3 * i + k]! - forest.position[3 * parent + k]!) / length[i]!;
     layFrame(axis, side, i);
   }
-  // Needed and wanted distance of the rim from the node, at the root-side end and at the far end of each vessel.
+  // Distances of the rim from the node that are needed, that leave a row of triangles, and that let edges grow up to
+  // this tube's: at the root-side end and at the far end of each vessel.
   const need = [new Float64Array(n), new Float64Array(n)] as const;
+  const nice = [new Float64Array(n), new Float64Array(n)] as const;
   const want = [new Float64Array(n), new Float64Array(n)] as const;
   for (let row = 0; row < n; row++) {
     if (forest.parent[row]! < 0 || children.start[row] === children.start[row + 1]) continue;
@@ -102,8 +104,11 @@ export function layOutTubes(
     for (let tube = 0; tube < shape.count; tube++) {
       const vessel = tube === 0 ? row : children.list[children.start[row]! + tube - 1]!;
       const end = tube === 0 ? 1 : 0;
-      need[end][vessel] = unit * shape.clearAlong(tube, false);
-      want[end][vessel] = unit * (shape.clearAlong(tube, true) + 0.6 * shape.edge[tube]!);
+      const clear = shape.clearAlong(tube, false);
+      const strip = 0.6 * shape.edge[tube]!;
+      need[end][vessel] = unit * clear;
+      nice[end][vessel] = unit * (clear + strip);
+      want[end][vessel] = unit * (shape.clearAlong(tube, true) + strip);
     }
   }
   const first = new Float64Array(n);
@@ -114,13 +119,15 @@ export function layOutTubes(
     const chordHere = chord * corner[i]!;
     const total = length[i]!;
     const least = need[0][i]! + need[1][i]!;
-    const most = want[0][i]! + want[1][i]!;
-    let near = want[0][i]!;
-    let far = want[1][i]!;
-    if (most > total) {
-      const share = least < total ? (total - least) / (most - least) : 0;
-      near = need[0][i]! + share * (near - need[0][i]!);
-      far = need[1][i]! + share * (far - need[1][i]!);
+    const [from, to] = nice[0][i]! + nice[1][i]! < total ? [nice, want] : [need, nice];
+    const lower = from[0][i]! + from[1][i]!;
+    const upper = to[0][i]! + to[1][i]!;
+    let near = to[0][i]!;
+    let far = to[1][i]!;
+    if (upper > total) {
+      const share = lower < total ? (total - lower) / (upper - lower) : 0;
+      near = from[0][i]! + share * (near - from[0][i]!);
+      far = from[1][i]! + share * (far - from[1][i]!);
       if (!(least < total)) {
         near *= total / least;
         far = total - near;
