@@ -2,6 +2,7 @@ import { squaredDistanceToSegment } from '../core/segments.ts';
 import { fermatPoint } from '../physics/fermat.ts';
 import { FIT_MARGIN, RUN_OUT, separationReach } from '../room/reach.ts';
 import type { Room } from '../room/room.ts';
+import { depthGradient } from '../tissue/depth-gradient.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 
 /*
@@ -118,14 +119,17 @@ export class Attacher {
   }
 
   /**
-   * As `attach`, with one bend in the new vessel, for a site that no straight vessel reaches: bends half way, off to
-   * six sides, by a third and by two thirds of the way. Some hundred tries, so for sites that must be served.
+   * As `attach`, with one bend in the new vessel, for a site that no straight vessel reaches: half way, off to six sides
+   * by a third and by two thirds of the way, and straight inwards from the site. Some hundred tries, so for sites that
+   * must be served.
    */
   attachBent(tree: number, x: number, y: number, z: number, share: number): number {
     this.follow();
     this.blocked.length = 0;
     const found = this.search(tree, x, y, z, share, BENT_CANDIDATES);
     const via = new Float64Array(3);
+    const slope = new Float64Array(3);
+    const steep = depthGradient(this.room.tissue, x, y, z, slope);
     for (let c = 0; c < found; c++) {
       const row = this.candidate[c]!;
       const count = Math.min(2, this.placeTries(row, x, y, z, share));
@@ -133,9 +137,14 @@ export class Attacher {
         const jx = this.tries[3 * k]!;
         const jy = this.tries[3 * k + 1]!;
         const jz = this.tries[3 * k + 2]!;
-        for (let side = 0; side < 12; side++) {
+        for (let side = 0; side < 15; side++) {
           if (this.blocked.some((top) => this.isBelow(row, top))) break;
-          sideways(jx, jy, jz, x, y, z, side, via);
+          if (side < 12) sideways(jx, jy, jz, x, y, z, side, via);
+          else {
+            // Straight in from the wall, for a site that lies just deep enough.
+            const far = ([0.1, 0.25, 0.5][side - 12]! * span(x - jx, y - jy, z - jz)) / Math.max(steep, 1e-9);
+            for (let i = 0; i < 3; i++) via[i] = [x, y, z][i]! + far * slope[i]!;
+          }
           const served = this.tryAt(row, jx, jy, jz, x, y, z, share, via);
           if (served >= 0) return served;
         }

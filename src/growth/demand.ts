@@ -13,6 +13,8 @@ export interface SiteStream {
 const MOST_TRIES = 6;
 /** Growth of the tree, as a factor, between two tries of one site: by then its surroundings have changed. */
 const WAIT = 1.3;
+/** Streamed places in a row that may fail before there is held to be no room: so many, and two a terminal served. */
+const MOST_FAILURES = 600;
 /** Places tried for each terminal asked for by count, before there is held to be no room. */
 const MOST_PLACES = 12;
 
@@ -33,6 +35,7 @@ export class Demand {
   private readonly stream: SiteStream | null;
   private readonly minDepth: number;
   private readonly waiting: number[] = [];
+  private readonly dropped: number[] = [];
   private due: number[] = [];
   private tries: number[] = [];
   private x: number[] = [];
@@ -41,6 +44,7 @@ export class Demand {
   private shares: number[] = [];
   private fresh = 0;
   private places = 0;
+  private failures = 0;
 
   /**
    * @param stream   for `count`: where sites come from; the others have their list
@@ -74,7 +78,7 @@ export class Demand {
     if (this.waiting.length > 0 && this.served >= this.due[this.waiting[0]!]!) return this.take(this.waiting.shift()!);
     if (this.stream === null) {
       if (this.fresh < this.x.length) return this.take(this.fresh++);
-    } else if (this.places < MOST_PLACES * this.wanted + 1000 && this.stream.next(this.minDepth)) {
+    } else if (this.hasPlaces() && this.stream.next(this.minDepth)) {
       this.places++;
       return this.take(this.addSite(this.stream.x, this.stream.y, this.stream.z, 1));
     }
@@ -85,18 +89,36 @@ export class Demand {
   /** Gives the site in hand, or an evicted one, back to be tried later. */
   giveBack(site: number, evicted: boolean): void {
     if (evicted) this.served--;
+    else this.failures++;
     const tries = this.tries[site]! + (evicted ? 0 : 1);
     this.tries[site] = tries;
     // By count one place is as good as another: a failed one is tried only once more.
-    if (tries >= (this.by === 'count' ? 2 : MOST_TRIES)) return;
+    if (tries >= (this.by === 'count' ? 2 : MOST_TRIES)) {
+      this.dropped.push(site);
+      return;
+    }
     this.due[site] = evicted ? this.served : Math.ceil(this.served * WAIT) + 1;
     this.waiting.push(site);
   }
 
-  /** Forgets how often sites were tried, for another round. */
+  /** Counts the site in hand as served. */
+  serve(): void {
+    this.served++;
+    this.failures = 0;
+  }
+
+  /** Puts sites that were given up back in line, and forgets how often any was tried. */
   forgive(): void {
     this.tries.fill(0);
     this.places = 0;
+    this.failures = 0;
+    for (const site of this.by === 'count' ? [] : this.dropped) {
+      this.due[site] = this.served;
+      // It has failed before: it may be served past a bend.
+      this.tries[site] = 1;
+      this.waiting.push(site);
+    }
+    this.dropped.length = 0;
   }
 
   /** True for a site that no other can stand in for and that has been tried without success. */
@@ -122,6 +144,11 @@ export class Demand {
 
   get siteCount(): number {
     return this.x.length;
+  }
+
+  /** Whether more places are worth asking the stream for. */
+  private hasPlaces(): boolean {
+    return this.places < MOST_PLACES * this.wanted + 1000 && this.failures < MOST_FAILURES + 2 * this.served;
   }
 
   private take(site: number): true {

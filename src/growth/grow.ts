@@ -43,6 +43,7 @@ export function growForest(
     let stopped = grower.grow();
     if (stopped !== 'cancelled') stopped = grower.finish();
     if (stopped === 'cancelled' || guess === null || attempt >= RESTARTS) return { grower, stopped };
+    if (!grower.cramped && attempt >= 1) return { grower, stopped };
     if (!grower.cramped && (stopped === 'complete' || grower.misfits().length === 0)) return { grower, stopped };
     const needed = grower.foresee(demands.map((demand) => demand.wanted));
     guess = guess.map((radius, t) => (unknown[t]! ? Math.max(SPARE * needed[t]!, 1.05 * radius) : radius));

@@ -152,20 +152,21 @@ export class Grower {
     for (let round = 0; ; round++) {
       if (this.watch.signal?.aborted) return 'cancelled';
       if (this.cramped) return 'no-room';
-      let evicted = 0;
       for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.resized) this.resize(t, true);
-      evicted += this.settleAll(round < ROUNDS);
-      if (evicted === 0 && this.trees.every((tree) => tree.full || tree.demand.served >= tree.demand.wanted)) break;
-      if (round < ROUNDS) {
-        if (round < ROUNDS / 2) {
-          for (const tree of this.trees) {
-            tree.full = false;
-            tree.demand.forgive();
-          }
+      const again = round < ROUNDS;
+      const evicted = this.settleAll(again);
+      if (evicted === 0 && (this.served === this.wanted || !again)) break;
+      if (!again) continue;
+      const before = this.served;
+      if (round < ROUNDS / 2) {
+        // Radii and neighbours are not what they were when a site was given up.
+        for (const tree of this.trees) {
+          tree.full = false;
+          tree.demand.forgive();
         }
-        if (this.grow('proof') === 'cancelled') return 'cancelled';
-        if (evicted === 0 && !this.trees.some((tree) => tree.resized)) break;
-      } else if (evicted === 0) break;
+      }
+      if (this.grow('proof') === 'cancelled') return 'cancelled';
+      if (evicted === 0 && this.served === before) break;
     }
     return this.served === this.wanted ? 'complete' : 'no-room';
   }
@@ -231,7 +232,7 @@ export class Grower {
       demand.giveBack(site, false);
       return;
     }
-    demand.served++;
+    demand.serve();
     this.keepSite(row, site);
     if (!first) {
       let branch = row;
