@@ -2,7 +2,7 @@ import { spawnSync } from 'node:child_process';
 import { existsSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
-import { afterAll, beforeAll, describe, expect, it } from 'vitest';
+import { afterAll, describe, expect, it } from 'vitest';
 import { VTP } from '../../src/formats/tree/vtp.ts';
 import { VTU } from '../../src/formats/tree/vtu.ts';
 import type { TreeRecord } from '../../src/tree/forest.ts';
@@ -130,11 +130,52 @@ function run(command: string, argv: readonly string[]): string {
   return done.stdout;
 }
 
+interface Reading {
+  readonly record: TreeRecord;
+  readonly want: ReturnType<typeof describeRecord>;
+  readonly found: Found;
+}
+
+/** Grows and exports a tree by the built program and has the other readers open it. */
+function readRun(folder: string, preset: string, terminals: string | null): Reading {
+  if (!existsSync(MAIN)) throw new Error(`${MAIN} is missing: run npm run build first`);
+  const count = terminals === null ? [] : ['--terminals', terminals];
+  run(process.execPath, [MAIN, 'grow', preset, ...count, '--out', folder, '--quiet']);
+  for (const extension of ['vtu', 'csv', 'swc', 'json']) {
+    run(process.execPath, [MAIN, 'export', folder, '--to', join(folder, `tree.${extension}`), '--quiet']);
+  }
+  const bytes = new Uint8Array(readFileSync(join(folder, 'tree.vtp')));
+  const { record } = VTP.decode([{ name: 'tree.vtp', bytes }]);
+  for (const length of NAME_LENGTHS) {
+    const [file] = VTU.encode({ ...record, names: namesOfLength(record, length) });
+    writeFileSync(join(folder, `named-${String(length).padStart(2, '0')}.vtu`), file!.bytes);
+  }
+  return { record, want: describeRecord(record), found: JSON.parse(run(PYTHON, [SCRIPT, folder])) };
+}
+
+/** A name of a length a tree: aaa, bbb, … */
+function namesOfLength(record: TreeRecord, length: number): string[] {
+  return record.names.map((_, t) => String.fromCharCode(97 + t).repeat(length));
+}
+
+/** What `make` gives or throws, made the first time it is asked for. */
+function once<T>(make: () => T): () => T {
+  let answer: () => T = () => {
+    try {
+      const value = make();
+      answer = () => value;
+    } catch (error) {
+      answer = () => {
+        throw error;
+      };
+    }
+    return answer();
+  };
+  return () => answer();
+}
+
 describe('other readers', () => {
   const scratch = mkdtempSync(join(tmpdir(), 'readers-'));
-  beforeAll(() => {
-    if (!existsSync(MAIN)) throw new Error(`${MAIN} is missing: run npm run build first`);
-  });
   afterAll(() => rmSync(scratch, { recursive: true, force: true }));
 
   it('say which Debian packages to install when modules are missing', () => {
@@ -153,30 +194,11 @@ describe('other readers', () => {
   });
 
   describe.each(CASES)('of %s', (preset, terminals) => {
-    let record: TreeRecord;
-    let want: ReturnType<typeof describeRecord>;
-    let found: Found;
-
-    beforeAll(() => {
-      const folder = join(scratch, preset);
-      const count = terminals === null ? [] : ['--terminals', terminals];
-      run(process.execPath, [MAIN, 'grow', preset, ...count, '--out', folder, '--quiet']);
-      for (const extension of ['vtu', 'csv', 'swc', 'json']) {
-        run(process.execPath, [MAIN, 'export', folder, '--to', join(folder, `tree.${extension}`), '--quiet']);
-      }
-      const bytes = new Uint8Array(readFileSync(join(folder, 'tree.vtp')));
-      record = VTP.decode([{ name: 'tree.vtp', bytes }]).record;
-      for (const length of NAME_LENGTHS) {
-        const names = record.names.map((_, t) => String.fromCharCode(97 + t).repeat(length));
-        const [file] = VTU.encode({ ...record, names });
-        writeFileSync(join(folder, `named-${String(length).padStart(2, '0')}.vtu`), file!.bytes);
-      }
-      want = describeRecord(record);
-      found = JSON.parse(run(PYTHON, [SCRIPT, folder]));
-    });
+    // Made by the first test that asks, so that what goes wrong fails tests and skips none.
+    const reading = once(() => readRun(join(scratch, preset), preset, terminals));
 
     /** Points, cells, arrays by name and type, and range of each. */
-    const expectGrid = (grid: Grid, real: string, whole: string): void => {
+    const expectGrid = (grid: Grid, { want }: Reading, real: string, whole: string): void => {
       expect(grid.points).toBe(want.points);
       expect(grid.cells).toBe(want.cells);
       expect(grid.pointType).toBe(real);
@@ -185,7 +207,7 @@ describe('other readers', () => {
       expect(grid.cellData).toEqual({ ...typed(want.cellReals, real), ...typed(want.cellWholes, whole) });
       expect(grid.pointData).toEqual(typed(want.pointReals, real));
     };
-    const texts = (names: readonly string[]) => ({
+    const texts = ({ record }: Reading, names = record.names) => ({
       format_version: [1],
       tree_names: names,
       tree_kinds: record.kinds,
@@ -193,6 +215,7 @@ describe('other readers', () => {
     });
 
     it('is a tree with something to read', () => {
+      const { record, want } = reading();
       expect(want.cells).toBeGreaterThan(20);
       expect(record.field).not.toBeNull();
       expect(record.provenance).toContain('"seed"');
@@ -200,30 +223,33 @@ describe('other readers', () => {
     });
 
     it('VTK reads .vtp and .vtu', () => {
+      const { found, want } = reading();
       for (const grid of [found.vtkOfVtp, found.vtkOfVtu]) {
         expect(grid.errors).toEqual([]);
-        expectGrid(grid, 'double', 'int');
+        expectGrid(grid, reading(), 'double', 'int');
         expect(grid.cellTypes).toEqual({ 'vtkLine of 2': want.cells });
-        expect(grid.fieldData).toEqual(texts(record.names));
+        expect(grid.fieldData).toEqual(texts(reading()));
       }
     });
 
     it('meshio reads .vtu', () => {
-      expectGrid(found.meshioOfVtu, 'float64', 'int32');
+      const { found, want } = reading();
+      expectGrid(found.meshioOfVtu, reading(), 'float64', 'int32');
       expect(found.meshioOfVtu.cellTypes).toEqual({ line: [want.cells, 2] });
-      expect(found.meshioOfVtu.fieldData).toEqual(texts(record.names));
+      expect(found.meshioOfVtu.fieldData).toEqual(texts(reading()));
     });
 
     it('meshio reads .vtu whatever the names', () => {
+      const { found, record } = reading();
       expect(found.meshioOfNamed).toHaveLength(NAME_LENGTHS.length);
       for (const [k, grid] of found.meshioOfNamed.entries()) {
-        expectGrid(grid, 'float64', 'int32');
-        const names = record.names.map((_, t) => String.fromCharCode(97 + t).repeat(NAME_LENGTHS[k]!));
-        expect(grid.fieldData).toEqual(texts(names));
+        expectGrid(grid, reading(), 'float64', 'int32');
+        expect(grid.fieldData).toEqual(texts(reading(), namesOfLength(record, NAME_LENGTHS[k]!)));
       }
     });
 
     it('a parser of the standard reads .swc, in micrometres', () => {
+      const { found, want } = reading();
       const near = (got: Column, metres: Column) => {
         expect(got.count).toBe(metres.count);
         for (const key of ['min', 'max', 'first', 'last'] as const) {
@@ -241,6 +267,7 @@ describe('other readers', () => {
     });
 
     it('Python reads .csv and .json', () => {
+      const { found, record, want } = reading();
       const [x_m, y_m, z_m] = want.axes;
       const numbers = (count: number) => describeColumn(Array.from({ length: count }, (_, i) => i));
       const nodes = { x_m, y_m, z_m, ...want.pointReals };
