@@ -193,7 +193,7 @@ export class Application {
   /** Lists tree files and opens the first. */
   async #offer(sources: Source[]): Promise<void> {
     if (sources.length === 0) {
-      this.#fail('Got no tree file, expected a run with its tree.vtp, or one of .vtp, .json, .swc.');
+      this.#fail('Got no tree file, expected a run with its tree.vtp, or one of .vtp, .vtu, .json, .swc.');
       return;
     }
     this.#sources = sources;

@@ -8,7 +8,7 @@ export interface Source {
 }
 
 /** Formats of one file; a tree in two tables (.csv) is for the command line. */
-const TREE_ENDINGS = ['.vtp', '.swc', '.json'];
+const TREE_ENDINGS = ['.vtp', '.vtu', '.swc', '.json'];
 /** Files of a run or a mesh folder that may come along and hold no tree. */
 const COMPANIONS = ['report.json', 'spec.json', 'mesh.json', 'lumen.vtp'];
 

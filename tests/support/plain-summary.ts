@@ -5,13 +5,14 @@ export class PlainSummary implements Reporter {
   onTestRunEnd(modules: readonly TestModule[]): void {
     const count = { passed: 0, failed: 0, skipped: 0 };
     for (const module of modules) {
-      let tests = 0;
+      let failed = 0;
       for (const test of module.children.allTests()) {
-        tests++;
         const state = test.result().state;
         if (state === 'passed' || state === 'failed' || state === 'skipped') count[state]++;
+        if (state === 'failed') failed++;
       }
-      if (tests === 0 && module.state() === 'failed') count.failed++;
+      // A file that did not load, or whose set-up threw, has failed though none of its tests says so.
+      if (failed === 0 && module.state() === 'failed') count.failed++;
     }
     console.log(`\n${count.passed} passed, ${count.failed} failed, ${count.skipped} skipped`);
   }
