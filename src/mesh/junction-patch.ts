@@ -4,8 +4,9 @@ import type { Forest } from '../tree/forest.ts';
 import type { GrowingSurface } from './growing-surface.ts';
 import type { JunctionShape } from './junction-shape.ts';
 import { APEX, FREE, PatchMesh, RIM } from './patch-mesh.ts';
-import { Remesher } from './remesh.ts';
+import { Remesher, RIM_SIZE } from './remesh.ts';
 import { triangulateDirections } from './sphere-hull.ts';
+import { ThinTubes } from './thin-tubes.ts';
 import { loadShape, type TubeLayout } from './tube-layout.ts';
 
 /** Directions of an icosahedron's corners, turned so that none lies along a coordinate axis. */
@@ -32,6 +33,8 @@ const SPREAD = ((): Float64Array => {
 
 /** How often a patch is tried, from a start a little different each time, until its score is good. */
 const ATTEMPTS = 6;
+/** Factor by which swollen tubes shrink at a step, at each attempt. */
+const SHRINK = [0.7, 0.8, 0.6, 0.85];
 /** sin² of the smallest angle that ends the tries: 22°. */
 const ENOUGH = 0.14;
 
@@ -39,6 +42,7 @@ const ENOUGH = 0.14;
 export class PatchBuilder {
   private readonly mesh = new PatchMesh();
   private readonly remesher: Remesher;
+  private readonly thin: ThinTubes;
   private readonly forest: Forest;
   private readonly children: Children;
   private readonly layout: TubeLayout;
@@ -56,6 +60,7 @@ export class PatchBuilder {
     this.shape = shape;
     this.around = around;
     this.remesher = new Remesher(this.mesh, shape);
+    this.thin = new ThinTubes(shape);
   }
 
   /**
@@ -89,21 +94,31 @@ export class PatchBuilder {
   private overlapping = false;
 
   private tryPatch(out: GrowingSurface, rings: Int32Array, row: number, unit: number, attempt: number): number {
-    const { mesh, shape, around } = this;
+    const { mesh, shape, around, thin, remesher } = this;
     mesh.reset();
     this.addRims(out, rings, row, unit);
+    const swollen = thin.swell(this.rim);
+    if (swollen) thin.takeRims(mesh, around);
     this.addSpread(attempt);
     this.overlapping =
       !triangulateDirections(mesh, this.directions(attempt)) || this.markCaps() !== shape.count * around;
     if (this.overlapping) {
       // Join the rims as if they were small enough to be apart. Closed, if not simple.
+      thin.restore();
       mesh.reset();
       this.addRims(out, rings, row, unit);
       this.addSpread(attempt);
       if (!triangulateDirections(mesh, this.shrunkDirections()) || this.markCaps() !== shape.count * around)
         throw new InvariantError(`addPatch: no triangulation of the rims of node ${row}`);
     }
-    const worst = this.remesher.run(64 * around * shape.count + 4000, attempt);
+    remesher.start(160 * around * shape.count + 8000, attempt);
+    if (swollen && !this.overlapping) {
+      for (let more = true; more; ) {
+        more = thin.shrink(mesh, SHRINK[attempt % SHRINK.length]!);
+        remesher.follow(around);
+      }
+    }
+    const worst = remesher.finish();
     return this.overlapping ? Math.min(worst, -1) : worst;
   }
 
@@ -137,8 +152,7 @@ export class PatchBuilder {
         const y = (out.position[3 * g + 1]! - py) / unit;
         const z = (out.position[3 * g + 2]! - pz) / unit;
         shape.lookAt(x, y, z);
-        // A rim's edges stay as they are, however near a thin tube is.
-        const size = Math.max(shape.edgeHere(), 0.7 * shape.edge[tube]!);
+        const size = Math.max(shape.edgeHere(), RIM_SIZE * shape.edge[tube]!);
         this.global[mesh.addVertex(x, y, z, size, RIM)] = g;
       }
     }

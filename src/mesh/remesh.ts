@@ -1,5 +1,5 @@
 import type { JunctionShape } from './junction-shape.ts';
-import { FREE, type PatchMesh } from './patch-mesh.ts';
+import { FREE, type PatchMesh, RIM } from './patch-mesh.ts';
 
 /** Longest edge allowed, in edge lengths wanted. */
 const LONG = 1.3;
@@ -11,6 +11,8 @@ const SHORT = 0.62;
 const STILL = 0.1;
 /** Least distance of a triangle's plane from the node, in radii of the thinnest tube, while the patch is coarse. */
 const STAR = 0.2;
+/** Least edge length wanted at a rim over that of its tube: a rim's edges stay as they are, however near a thin tube is. */
+export const RIM_SIZE = 0.7;
 /** sin² of the smallest angle that smoothing must keep: 35°. */
 const GOOD = 0.33;
 /** sin² of the smallest angle from which on a flip is not looked for: 42°. */
@@ -52,11 +54,12 @@ export class Remesher {
   }
 
   /**
-   * @param most vertices; splitting stops there, which happens only where the rims run into each other
+   * Works a coarse triangulation up to the edge lengths wanted.
+   *
+   * @param most    vertices; splitting stops there, which happens only where the rims run into each other
    * @param attempt varies the edge length of the coarse stage
-   * @returns    the worst score of the patch
    */
-  run(most: number, attempt: number): number {
+  start(most: number, attempt: number): void {
     this.most = most;
     this.coarse = COARSE[attempt % COARSE.length]!;
     const { mesh } = this;
@@ -71,14 +74,37 @@ export class Remesher {
     }
     this.star = false;
     for (let t = 0; t < mesh.triangles; t++) this.rescore(t);
-    for (let pass = 0; pass < 2; pass++) {
-      this.collapseShort();
-      this.splitLong();
-      this.flipAll();
-      this.smoothAll();
-      this.flipAll();
-      this.smoothAll();
+    for (let pass = 0; pass < 2; pass++) this.cycle();
+  }
+
+  /**
+   * Brings the mesh to a shape, or rims, that have changed a little.
+   *
+   * @param around corners of a rim; rims and their apexes come first among the vertices
+   */
+  follow(around: number): void {
+    const { mesh, shape } = this;
+    const p = mesh.position;
+    for (let v = 0; v < mesh.vertices; v++) {
+      if (mesh.kind[v] !== FREE && mesh.kind[v] !== RIM) continue;
+      shape.lookAt(p[3 * v]!, p[3 * v + 1]!, p[3 * v + 2]!);
+      if (mesh.kind[v] === FREE) {
+        shape.project();
+        this.put(v);
+      }
+      const size = shape.edgeHere();
+      mesh.size[v] =
+        mesh.kind[v] === FREE ? size : Math.max(size, RIM_SIZE * shape.edge[Math.floor(v / (around + 1))]!);
     }
+    for (let t = 0; t < mesh.triangles; t++) this.rescore(t);
+    this.flipAll();
+    this.smoothAll();
+    this.cycle();
+  }
+
+  /** Ends the work; returns the worst score of the patch. */
+  finish(): number {
+    const { mesh } = this;
     this.flipAll();
     for (let pass = 0; pass < 3 && this.splitLong() > 0; pass++) this.flipAll();
     for (let pass = 0; pass < 8; pass++) if (this.mendPoor() === 0) break;
@@ -87,6 +113,15 @@ export class Remesher {
       if (mesh.from[3 * t]! >= 0 && mesh.cap[t] === 0 && mesh.score[t]! < worst) worst = mesh.score[t]!;
     }
     return worst;
+  }
+
+  private cycle(): void {
+    this.collapseShort();
+    this.splitLong();
+    this.flipAll();
+    this.smoothAll();
+    this.flipAll();
+    this.smoothAll();
   }
 
   private splitLong(): number {
