@@ -139,6 +139,9 @@ export function layOutTubes(
     }
     const rootEnd = forest.parent[forest.parent[i]!]! < 0;
     const openEnd = children.start[i] === children.start[i + 1];
+    // A cap needs a strip of its own, not too low.
+    if (openEnd) near = Math.max(need[0][i]!, Math.min(near, total - 0.7 * chordHere));
+    if (rootEnd) far = Math.max(need[1][i]!, Math.min(far, total - near - 0.7 * chordHere));
     const rest = total - near - far;
     let count = Math.ceil(rest / (spacing * corner[i]!) - 1e-9);
     // A strip lower than half an edge would have flat triangles: the two patches then share a ring.
