@@ -45,7 +45,7 @@ export const PALETTES = [
   },
 ] as const satisfies readonly Palette[];
 
-export type PaletteId = (typeof PALETTES)[number]['id'];
+type PaletteId = (typeof PALETTES)[number]['id'];
 
 /** The palette of an id; the first where there is none. */
 export function paletteOf(id: string): Palette {

@@ -14,7 +14,7 @@ export type Taken<F> = { readonly [K in keyof F]: F[K] extends Field<infer T> ? 
 const fieldsBehind = new WeakMap<object, Fields>();
 
 /** The fields of an object schema made by `record`; undefined for any other schema. */
-export function fieldsOf(schema: object): Fields | undefined {
+function fieldsOf(schema: object): Fields | undefined {
   return fieldsBehind.get(schema);
 }
 
