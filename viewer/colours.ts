@@ -45,8 +45,6 @@ export const PALETTES = [
   },
 ] as const satisfies readonly Palette[];
 
-type PaletteId = (typeof PALETTES)[number]['id'];
-
 /** The palette of an id; the first where there is none. */
 export function paletteOf(id: string): Palette {
   return PALETTES.find((palette) => palette.id === id) ?? PALETTES[0];
