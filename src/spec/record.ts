@@ -10,6 +10,9 @@ export type Report = (path: readonly (string | number)[], code: string, message:
 /** What the fields of an object come to, quantities in SI. */
 export type Taken<F> = { readonly [K in keyof F]: F[K] extends Field<infer T> ? T : never };
 
+/** The fields behind the schema of an object, for the tables that are made from it. */
+const fieldsBehind = new WeakMap<object, Fields>();
+
 /**
  * The schema of one object of a spec: strict keys, one key per quantity and allowed unit, every fault reported.
  *
@@ -41,6 +44,7 @@ export function record<F extends Fields>(
       // Runs in spite of faults found before, so that all are reported at once.
       { when: (payload) => isObject(payload.value) },
     );
+  fieldsBehind.set(object, fields);
   return object.transform((raw) => {
     const taken: Record<string, unknown> = {};
     for (const [name, field] of Object.entries(fields)) taken[name] = field.take(raw, name);
@@ -50,6 +54,7 @@ export function record<F extends Fields>(
 
 /** Adds to an object's JSON schema what keys alone cannot say: no other keys, one unit per quantity. */
 export function tightenJsonSchema(schema: object, json: Record<string, unknown>): void {
+  const fields = fieldsBehind.get(schema);
   if (!fields) return;
   json.additionalProperties = false;
   const choices: object[] = [];
