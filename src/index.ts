@@ -25,19 +25,13 @@ export type { Report } from './report/report.ts';
 export {
   type FlowChange,
   type FlowResult,
-  type GrowOptions,
-  type GrowResult,
-  growRun,
   type MeshOptions,
   type MeshResult,
   meshTree,
-  promiseLines,
-  type ReportedRun,
-  reportRun,
   solveAgain,
-  solveRecord,
-  VERSION,
-} from './run.ts';
+} from './rerun.ts';
+export { type GrowOptions, type GrowResult, growRun, solveRecord, VERSION } from './run.ts';
+export { promiseLines, type ReportedRun, reportRun } from './run-report.ts';
 export { specSchema } from './spec/json-schema.ts';
 export { parseSpec, specFromValue } from './spec/parse.ts';
 export { shapeFiles } from './spec/shape-files.ts';

@@ -39,6 +39,10 @@ const LAYERS: Record<string, readonly string[]> = {
   report: ['core', 'tree', 'physics', 'spec'],
 };
 const FOLDERS = Object.keys(LAYERS);
+/** Files at the top of src: they may import every folder of the library, and no folder may import them. */
+const TOP = ['index.ts', 'rerun.ts', 'run-report.ts', 'run.ts'];
+/** Those of them that the edges may not see. */
+const HIDDEN = TOP.filter((file) => file !== 'index.ts');
 
 /** Lints planted files in a scratch folder under the project's own rules; gives each file's findings. */
 function lintPlanted(planted: ReadonlyMap<string, string>): Map<string, string[]> {
@@ -73,20 +77,27 @@ function importing(places: readonly string[]): string {
 
 describe('import rules', () => {
   const planted = new Map<string, string>();
+  const inFolders = (folders: readonly string[], up: string) => folders.map((folder) => `${up}/${folder}/planted.ts`);
   const forbidden = (folder: string) => [
-    ...FOLDERS.filter((other) => other !== folder && !LAYERS[folder]!.includes(other)),
-    'cli',
-    'node',
+    ...inFolders(
+      FOLDERS.filter((other) => other !== folder && !LAYERS[folder]!.includes(other)),
+      '..',
+    ),
+    ...inFolders(['cli', 'node'], '..'),
+    ...TOP.map((file) => `../${file}`),
   ];
   for (const folder of FOLDERS) {
-    planted.set(`src/${folder}/bad.ts`, importing(forbidden(folder).map((other) => `../${other}/planted.ts`)));
-    planted.set(`src/${folder}/good.ts`, importing(LAYERS[folder]!.map((other) => `../${other}/planted.ts`)));
+    planted.set(`src/${folder}/bad.ts`, importing(forbidden(folder)));
+    planted.set(`src/${folder}/good.ts`, importing(inFolders(LAYERS[folder]!, '..')));
     planted.set(`src/${folder}/disk.ts`, importing(['node:fs']));
   }
   planted.set('viewer/disk.ts', importing(['node:fs']));
-  planted.set('src/cli/inside.ts', importing(['../growth/grow.ts']));
-  planted.set('src/node/inside.ts', importing(['../growth/grow.ts']));
-  planted.set('viewer/inside.ts', importing(['../src/growth/grow.ts']));
+  // The rules go by path, so what is planted bears the names of the files it stands for.
+  const below = [...inFolders(FOLDERS, '.'), ...inFolders(['cli', 'node'], '.'), 'node:fs'];
+  for (const file of TOP) planted.set(`src/${file}`, importing(below));
+  const inside = (src: string) => ['growth/grow.ts', ...HIDDEN].map((path) => `${src}/${path}`);
+  for (const edge of ['src/cli', 'src/node']) planted.set(`${edge}/inside.ts`, importing(inside('..')));
+  planted.set('viewer/inside.ts', importing(inside('../src')));
   let found = new Map<string, string[]>();
   beforeAll(() => {
     found = lintPlanted(planted);
@@ -97,6 +108,21 @@ describe('import rules', () => {
     const folders = readdirSync(join(ROOT, 'src'), { withFileTypes: true }).filter((entry) => entry.isDirectory());
     expect(folders.map((entry) => entry.name).sort()).toEqual([...FOLDERS, 'cli', 'node'].sort());
   });
+
+  it('knows every file at the top of src', () => {
+    expect(
+      readdirSync(join(ROOT, 'src'))
+        .filter((name) => name.endsWith('.ts'))
+        .sort(),
+    ).toEqual(TOP);
+  });
+
+  for (const file of TOP) {
+    it(`${file} may have every folder of the library, but no edge and no node module`, () => {
+      expect(count(`src/${file}`, 'noRestrictedImports')).toBe(2);
+      expect(count(`src/${file}`, 'noNodejsModules')).toBe(1);
+    });
+  }
 
   for (const folder of FOLDERS) {
     it(`${folder} is refused what is not below it, and let have what is`, () => {
@@ -109,7 +135,7 @@ describe('import rules', () => {
   it('keeps node modules out of the viewer, and the inside of the library from the edges', () => {
     expect(count('viewer/disk.ts', 'noNodejsModules')).toBe(1);
     for (const path of ['src/cli/inside.ts', 'src/node/inside.ts', 'viewer/inside.ts']) {
-      expect(count(path, 'noRestrictedImports')).toBe(1);
+      expect(count(path, 'noRestrictedImports')).toBe(1 + HIDDEN.length);
     }
   });
 });
