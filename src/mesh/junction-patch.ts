@@ -97,7 +97,7 @@ export class PatchBuilder {
     const { mesh, shape, around, thin, remesher } = this;
     mesh.reset();
     this.addRims(out, rings, row, unit);
-    const swollen = thin.swell(this.rim);
+    const swollen = thin.swell(this.rim, attempt >> 1);
     if (swollen) thin.takeRims(mesh, around);
     this.addSpread(attempt);
     this.overlapping =

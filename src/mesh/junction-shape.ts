@@ -33,6 +33,8 @@ export class JunctionShape {
   x = 0;
   y = 0;
   z = 0;
+  /** Tube that `evaluate` leaves out, or −1. */
+  without = -1;
   /** Results of the last `evaluate`: field and gradient, unnormalised where tubes blend. */
   f = 0;
   gx = 0;
@@ -122,8 +124,12 @@ export class JunctionShape {
   /** Sets f and its gradient at the point. */
   evaluate(): void {
     const { count, axis, own, grad, radius, x, y, z } = this;
-    let near = 0;
+    let near = this.without === 0 ? 1 : 0;
     for (let i = 0; i < count; i++) {
+      if (i === this.without) {
+        own[i] = Infinity;
+        continue;
+      }
       const ux = axis[3 * i]!;
       const uy = axis[3 * i + 1]!;
       const uz = axis[3 * i + 2]!;
@@ -247,6 +253,40 @@ export class JunctionShape {
       const s = side * cosine + a * sine > 0 ? side : ball;
       if (s > clear) clear = s;
     }
-    return clear;
+    return this.count > 2 && clear < Infinity ? this.clearOfFillets(tube, clear) : clear;
+  }
+
+  /** The same place, moved out until the rim is also clear of what fills the creases between the other tubes. */
+  private clearOfFillets(tube: number, from: number): number {
+    const a = this.radius[tube]!;
+    const u = this.axis.subarray(3 * tube, 3 * tube + 3);
+    // Two directions square to the axis.
+    const k = Math.abs(u[0]!) < 0.6 ? 0 : 1;
+    const e = [0, 1, 2].map((m) => (m === k ? 1 : 0) - u[k]! * u[m]!);
+    const scale = a / Math.sqrt(e[0]! * e[0]! + e[1]! * e[1]! + e[2]! * e[2]!);
+    for (let m = 0; m < 3; m++) e[m]! *= scale;
+    const f = [u[1]! * e[2]! - u[2]! * e[1]!, u[2]! * e[0]! - u[0]! * e[2]!, u[0]! * e[1]! - u[1]! * e[0]!];
+    this.without = tube;
+    let s = from;
+    for (let step = 0; step < 40; step++) {
+      let least = Infinity;
+      for (let j = 0; j < 12; j++) {
+        const c = Math.cos((j * Math.PI) / 6);
+        const d = Math.sin((j * Math.PI) / 6);
+        this.lookAt(
+          s * u[0]! + c * e[0]! + d * f[0]!,
+          s * u[1]! + c * e[1]! + d * f[1]!,
+          s * u[2]! + c * e[2]! + d * f[2]!,
+        );
+        this.evaluate();
+        if (this.f < least) least = this.f;
+      }
+      const short = 0.5 * FILLET * a - least;
+      if (short <= 1e-9) break;
+      // The field grows no faster than the distance: never too far.
+      s += Math.max(short, 0.02 * a);
+    }
+    this.without = -1;
+    return s;
   }
 }

@@ -33,9 +33,10 @@ export class ThinTubes {
    * Swells the shape's thin tubes.
    *
    * @param rim  axial place of each rim
+   * @param skip sizes that would fit to be passed over, where there are more
    * @returns whether there are any
    */
-  swell(rim: readonly number[]): boolean {
+  swell(rim: readonly number[], skip: number): boolean {
     const { shape } = this;
     const { count } = shape;
     if (this.radius.length < count) {
@@ -52,6 +53,7 @@ export class ThinTubes {
     this.swollen = 0;
     if (thinnest >= THIN) return false;
     for (let i = 0; i < count; i++) this.slack[i] = (rim[i]! - shape.clearAlong(i, false)) / this.radius[i]!;
+    let left = skip;
     for (const size of SWOLLEN) {
       if (size <= thinnest) break;
       this.setRadii(size);
@@ -60,10 +62,10 @@ export class ThinTubes {
         if (this.radius[i]! >= size && shape.clearAlong(i, false) > rim[i]! + 1e-9) fits = false;
       if (!fits) continue;
       this.swollen = size;
-      return true;
+      if (left-- === 0) break;
     }
-    this.setRadii(0);
-    return false;
+    this.setRadii(this.swollen);
+    return this.swollen > 0;
   }
 
   /** Gives the shape its real radii back. */
