@@ -116,6 +116,7 @@ export class Remesher {
   }
 
   private cycle(): void {
+    this.unfold();
     this.collapseShort();
     this.splitLong();
     this.flipAll();
@@ -227,24 +228,10 @@ export class Remesher {
     const t = mesh.twin[h]!;
     const a = mesh.from[h]!;
     const b = mesh.from[t]!;
-    if (mesh.vertices > this.mark.length) this.mark = new Int32Array(2 * mesh.vertices);
-    const round = ++this.round;
-    let common = 0;
-    let worst = 1;
-    let g = h;
-    do {
-      this.mark[mesh.from[mesh.next(g)]!] = round;
-      worst = Math.min(worst, mesh.score[(g / 3) | 0]!);
-      g = mesh.twin[mesh.previous(g)]!;
-    } while (g !== h);
+    if (this.linked(h) !== 2) return false;
     const moves = mesh.kind[b] === FREE;
-    g = t;
-    do {
-      if (this.mark[mesh.from[mesh.next(g)]!] === round) common++;
-      if (moves) worst = Math.min(worst, mesh.score[(g / 3) | 0]!);
-      g = mesh.twin[mesh.previous(g)]!;
-    } while (g !== t);
-    if (common !== 2) return false;
+    let worst = this.worstAround(h);
+    if (moves) worst = Math.min(worst, this.worstAround(t));
     // Both ends go to the new place, are looked at there, and go back if it does not do.
     const p = mesh.position;
     const [ax, ay, az] = [p[3 * a]!, p[3 * a + 1]!, p[3 * a + 2]!];
@@ -274,6 +261,90 @@ export class Remesher {
     mesh.collapse(h);
     this.rescoreStar(b);
     return true;
+  }
+
+  /**
+   * Draws vertices of folded triangles into neighbours where that leaves less folded, whatever the angles.
+   *
+   * A small fold can be stuck for all other steps: each asks that no single triangle gets worse.
+   */
+  private unfold(): void {
+    const { mesh } = this;
+    for (let t = 0; t < mesh.triangles; t++) {
+      for (let k = 0; k < 3; k++) {
+        const v = mesh.from[3 * t + k]!;
+        if (v < 0 || mesh.score[t]! >= 0) break;
+        if (mesh.kind[v] === FREE) this.unfoldAt(3 * t + k);
+      }
+    }
+  }
+
+  /** Tries the neighbours of the start of a half-edge in turn. */
+  private unfoldAt(start: number): boolean {
+    const { mesh } = this;
+    let before = 0;
+    let h = start;
+    do {
+      before += Math.min(0, mesh.score[(h / 3) | 0]!);
+      h = mesh.twin[mesh.previous(h)]!;
+    } while (h !== start);
+    this.limit = 0;
+    do {
+      const to = mesh.from[mesh.next(h)]!;
+      if (this.linked(h) === 2) {
+        let after = 0;
+        let e = h;
+        do {
+          const p = mesh.from[mesh.next(e)]!;
+          const q = mesh.from[mesh.previous(e)]!;
+          if (p !== to && q !== to) {
+            this.rate(to, p, q);
+            after += Math.min(0, this.rated);
+          }
+          e = mesh.twin[mesh.previous(e)]!;
+        } while (e !== h);
+        if (after > before + 1e-9) {
+          mesh.collapse(h);
+          this.rescoreStar(to);
+          return true;
+        }
+      }
+      h = mesh.twin[mesh.previous(h)]!;
+    } while (h !== start);
+    return false;
+  }
+
+  /** Neighbours that the two ends of a half-edge have in common. */
+  private linked(h: number): number {
+    const { mesh } = this;
+    if (mesh.vertices > this.mark.length) this.mark = new Int32Array(2 * mesh.vertices);
+    const round = ++this.round;
+    let g = h;
+    do {
+      this.mark[mesh.from[mesh.next(g)]!] = round;
+      g = mesh.twin[mesh.previous(g)]!;
+    } while (g !== h);
+    const t = mesh.twin[h]!;
+    let common = 0;
+    g = t;
+    do {
+      if (this.mark[mesh.from[mesh.next(g)]!] === round) common++;
+      g = mesh.twin[mesh.previous(g)]!;
+    } while (g !== t);
+    return common;
+  }
+
+  /** Worst score in the star of the start of a half-edge. */
+  private worstAround(start: number): number {
+    const { mesh } = this;
+    let worst = 1;
+    let h = start;
+    do {
+      const score = mesh.score[(h / 3) | 0]!;
+      if (score < worst) worst = score;
+      h = mesh.twin[mesh.previous(h)]!;
+    } while (h !== start);
+    return worst;
   }
 
   /** Whether the star of the start of a half-edge does, its triangles with `other` apart. */
@@ -430,14 +501,7 @@ export class Remesher {
     const { mesh, shape } = this;
     let step = 0.3 * mesh.size[v]!;
     for (let round = 0; round < 6; round++) {
-      let worst = 1;
-      const start = mesh.leaving[v]!;
-      let h = start;
-      do {
-        const score = mesh.score[(h / 3) | 0]!;
-        if (score < worst) worst = score;
-        h = mesh.twin[mesh.previous(h)]!;
-      } while (h !== start);
+      const worst = this.worstAround(mesh.leaving[v]!);
       if (worst > GOOD) return;
       const x = mesh.position[3 * v]!;
       const y = mesh.position[3 * v + 1]!;
