@@ -70,8 +70,8 @@ export function checkTree(
   if (tissue === null) {
     promises.push(tallies.containment.skip(spec === null ? 'no spec' : `no surface given for ${lacking.join(', ')}`));
   } else {
-    const stubs = findStubs(record, tissue.depth);
-    measureContainment(forest, tissue, stubs.exempt, tallies.containment);
+    const stubs = findStubs(record, tissue.depth, size);
+    measureContainment(forest, tissue, stubs.skip, tallies.containment);
     promises.push(tallies.containment.close(`${stubs.note}slack 1e-9 of the tissue's size`));
   }
 
@@ -108,21 +108,46 @@ export function checkTree(
   return gatherResult(promises, all, warnings, figures);
 }
 
-/** First vessels whose root lies no deeper than their radius: the stubs that lead in. */
+/** How long a stub may be: this share of the tissue's size outside it, and so many radii to come in at a slant. */
+const OUTSIDE = 0.1;
+const SLANT = 20;
+
+/**
+ * Inlet stubs: of a first vessel whose root lies no deeper than its radius, the stretch until the axis is first as deep
+ * as the radius. A stretch that is longer than a stub may be, or that leaves the tissue again, is none: the whole vessel
+ * is then looked at.
+ */
 function findStubs(
   record: TreeRecord,
   depth: (x: number, y: number, z: number) => number,
-): { exempt: Uint8Array; note: string } {
-  const { count, treeStart, position, radius } = record.forest;
-  const exempt = new Uint8Array(count);
-  const trees: string[] = [];
+  size: number,
+): { skip: Map<number, number>; note: string } {
+  const { treeStart, position: p, radius } = record.forest;
+  const skip = new Map<number, number>();
+  const told: string[] = [];
   for (let t = 0; t + 1 < treeStart.length; t++) {
     const root = treeStart[t]!;
-    if (depth(position[3 * root]!, position[3 * root + 1]!, position[3 * root + 2]!) > radius[root]!) continue;
-    exempt[root + 1] = 1;
-    trees.push(record.names[t] ?? String(t));
+    const r = radius[root]!;
+    const [x, y, z] = [p[3 * root]!, p[3 * root + 1]!, p[3 * root + 2]!];
+    const [ux, uy, uz] = [p[3 * root + 3]! - x, p[3 * root + 4]! - y, p[3 * root + 5]! - z];
+    const length = Math.hypot(ux, uy, uz);
+    let inside = false;
+    for (let s = 0; s <= Math.min(length, OUTSIDE * size + SLANT * r); ) {
+      const here = depth(x + (s / length) * ux, y + (s / length) * uy, z + (s / length) * uz);
+      if (here >= r * (1 - 1e-9)) {
+        if (s > 0) {
+          skip.set(root + 1, s);
+          told.push(`the first ${Number((s * 1e6).toPrecision(4))} µm of ${record.names[t] ?? t}`);
+        }
+        break;
+      }
+      if (inside && here < 0) break;
+      inside ||= here > 0;
+      // Small steps, so that a thin part that is crossed is not stepped over.
+      s += 0.04 * r;
+    }
   }
-  return { exempt, note: trees.length === 0 ? '' : `exempt: the inlet stub of ${trees.join(', ')}; ` };
+  return { skip, note: told.length === 0 ? '' : `exempt: the inlet stub, ${told.join(', ')}; ` };
 }
 
 function checkLaw(

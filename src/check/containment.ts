@@ -30,19 +30,25 @@ interface Tube {
  * outside nor the worst so far, or until they are half a radius long; then a ring of points is measured. Deep vessels
  * cost one look-up.
  *
- * @param exempt (n) 1 where a tube is not looked at
+ * @param skip  m by row: length of a tube's first stretch that is not looked at (inlet stubs)
  * @param tally  sees one value a vessel: its shallowest point met, in m
  */
-export function measureContainment(forest: Forest, region: Region, exempt: Uint8Array, tally: Tally): void {
+export function measureContainment(
+  forest: Forest,
+  region: Region,
+  skip: ReadonlyMap<number, number>,
+  tally: Tally,
+): void {
   const { count, parent } = forest;
   const low = new Float64Array(256);
   const high = new Float64Array(256);
   const vector = () => new Float64Array(3);
   const tube: Tube = { r: 0, length: 0, from: vector(), along: vector(), across: vector(), aside: vector() };
   for (let i = 0; i < count; i++) {
-    if (parent[i]! < 0 || exempt[i] === 1) continue;
+    if (parent[i]! < 0) continue;
     layTube(tube, forest, i);
     const { r, length, from, along } = tube;
+    const start = skip.get(i) ?? 0;
     const worst = Number.isNaN(tally.worst) ? Infinity : tally.worst;
     // Depths from here on need not be known: the vessel is no finding and not the worst. Once it is a finding that will
     // not be listed, only a new worst is of interest.
@@ -57,7 +63,7 @@ export function measureContainment(forest: Forest, region: Region, exempt: Uint8
       if (tally.failures >= tally.head.cap && tally.breaks(depth)) enough = Math.min(worst, depth);
     };
     let top = 0;
-    low[0] = 0;
+    low[0] = start;
     high[top++] = length;
     let whole = true;
     while (top > 0) {
@@ -71,7 +77,7 @@ export function measureContainment(forest: Forest, region: Region, exempt: Uint8
       if (whole) {
         whole = false;
         squareUp(tube);
-        look(0);
+        look(start);
         look(length);
       }
       if (2 * half <= SPACING * r || top > 250) {
@@ -85,7 +91,7 @@ export function measureContainment(forest: Forest, region: Region, exempt: Uint8
     }
     // Between two stations the depth can fall by no more than half their distance.
     if (shallowest - 0.5 * SPACING * r < enough) {
-      const a = Math.max(0, place - SPACING * r);
+      const a = Math.max(start, place - SPACING * r);
       const b = Math.min(length, place + SPACING * r);
       shallowest = Math.min(
         shallowest,

@@ -27,6 +27,8 @@ const HEADROOM = 1.03;
 export const SPARE = 1.06;
 /** Rounds of sizing, evicting and growing again before what is left is dropped. */
 const ROUNDS = 24;
+/** Rounds altogether; what does not fit by then is left for the check to tell. */
+const MOST_ROUNDS = 60;
 
 interface GrowingTree {
   readonly seedling: Seedling;
@@ -59,6 +61,8 @@ export class Grower {
   private siteOf = new Int32Array(1024).fill(-1);
   /** Set when a first vessel needs a wider stub than was planted: the tree must be planted anew. */
   cramped = false;
+  /** Vessels that were made to fit by moving a node. */
+  private mended = 0;
   private nextRefresh = 2;
   private nextResize = 2;
   private nextGrid = 8;
@@ -154,8 +158,11 @@ export class Grower {
       if (this.cramped) return 'no-room';
       for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.resized) this.resize(t, true);
       const again = round < ROUNDS;
+      const moved = this.mended;
       const evicted = this.settleAll(again);
-      if (evicted === 0 && (this.served === this.wanted || !again)) break;
+      // A node that was moved has changed lengths, and with them radii: only a sizing that changes nothing is the last.
+      const calm = evicted === 0 && this.mended === moved;
+      if ((calm && (this.served === this.wanted || !again)) || round >= MOST_ROUNDS) break;
       if (!again) continue;
       const before = this.served;
       if (round < ROUNDS / 2) {
@@ -166,7 +173,7 @@ export class Grower {
         }
       }
       if (this.grow('proof') === 'cancelled') return 'cancelled';
-      if (evicted === 0 && this.served === before) break;
+      if (calm && this.served === before) break;
     }
     return this.served === this.wanted ? 'complete' : 'no-room';
   }
@@ -297,7 +304,11 @@ export class Grower {
         const row = order[k]!;
         // An eviction further up may have taken the row, or given it to another place.
         for (let tries = 0; tries < 8 && this.builder.parent[row]! >= 0 && this.room.outgrown(row); tries++) {
-          if (this.settle(row) || mendByMoving(this.builder, this.room, row, HEADROOM)) break;
+          if (this.settle(row)) break;
+          if (mendByMoving(this.builder, this.room, row, HEADROOM)) {
+            this.mended++;
+            break;
+          }
           this.settle(row);
           const gone = this.evictFor(row, again);
           if (gone === 0) break;

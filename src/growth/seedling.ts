@@ -16,6 +16,8 @@ export interface Seedling {
 
 /** How far outside the tissue an inlet may sit, as a share of the tissue's longest edge. */
 const OUTSIDE = 0.1;
+/** Radii that a stub may be longer than that, to come in at a slant. */
+const SLANT = 20;
 
 /**
  * Plants a tree: its root at the inlet and, where a direction is given or the inlet is not deep enough for the first
@@ -49,7 +51,9 @@ export function plant(
   const runOut = 1.02 * FIT_MARGIN * (RUN_OUT + Math.SQRT2) * inletRadius;
   const wanted = 1.06 * inletRadius;
   let at = 0;
-  for (let step = 0; step < 4000 && at <= 2 * room.span; step++) {
+  let inside = false;
+  let reached = false;
+  while (at <= OUTSIDE * room.span + SLANT * inletRadius) {
     const here = tissue.depth(x + at * direction[0], y + at * direction[1], z + at * direction[2]);
     if (here >= wanted && at >= runOut) {
       const stub = builder.addChild(root, x + at * direction[0], y + at * direction[1], z + at * direction[2]);
@@ -57,7 +61,12 @@ export function plant(
       if (!deep) room.exempt.add(stub);
       return { root, stub };
     }
-    at += Math.max(here < wanted ? Math.min(wanted - here, 0.5 * inletRadius) : runOut - at, 0.02 * inletRadius);
+    // Once in, a stub stays in: it is no way through empty space, and only its way in is exempt.
+    if ((inside && here < 0) || (reached && here < wanted)) break;
+    inside ||= here > 0;
+    reached ||= here >= wanted;
+    // Small steps, so that a thin part that is crossed is not stepped over.
+    at += 0.04 * inletRadius;
   }
   throw inputError(
     'tissue-too-small',

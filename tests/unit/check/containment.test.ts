@@ -23,7 +23,7 @@ function depthOf(nodes: readonly HandNode[], radius: number, tissue: Shape): Tal
     describe: () => '',
     cap: 100,
   });
-  measureContainment(forest, measureShape(tissue, NONE), new Uint8Array(forest.count), tally);
+  measureContainment(forest, measureShape(tissue, NONE), new Map(), tally);
   return tally;
 }
 
@@ -156,6 +156,16 @@ describe('in a tissue from a spec', () => {
     const got = containment(spec(HAND_SPEC.tissue), NONE, buildRecord(deep, HAND_SPEC));
     expect(got.note).not.toContain('exempt');
     expect(got.checked).toBe(8);
+  });
+
+  test('a first vessel that crosses empty space is no stub', () => {
+    // A thin plate at the inlet, and the block a good way behind it.
+    const plate = { shape: 'box', min: [0, 0, 0], max: [5e-5, 0.02, 0.02] } as const;
+    const block = { shape: 'box', min: [0.0024, 0, 0], max: [0.02, 0.02, 0.02] } as const;
+    const got = containment(spec({ shape: 'union', parts: [plate, block] }));
+    expect(got.held).toBe(false);
+    expect(got.findings.map((finding) => finding.vessel)).toContain('supply:0');
+    expect(got.note).not.toContain('exempt');
   });
 
   test('a random vessel pushed out is the one that is named', () => {
