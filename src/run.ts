@@ -1,5 +1,6 @@
 import { checkTree } from './check/check-tree.ts';
 import type { CheckResult } from './check/result.ts';
+import { type Fault, InputError } from './core/errors.ts';
 import type { Watch } from './core/progress.ts';
 import type { TriangleSurface } from './core/surface.ts';
 import { solveFlow } from './flow/solve.ts';
@@ -8,7 +9,7 @@ import { type Growth, growForest } from './growth/grow.ts';
 import type { Stopped } from './growth/grower.ts';
 import { tubeWeights } from './refine/cost.ts';
 import { type RelaxResult, relaxJunctions } from './refine/relax.ts';
-import type { Spec } from './spec/types.ts';
+import type { Spec, TreeSpec } from './spec/types.ts';
 import { specToJson } from './spec/write.ts';
 import { buildTissue } from './tissue/build-tissue.ts';
 import type { Tissue } from './tissue/tissue.ts';
@@ -62,6 +63,7 @@ export function growRun(
   options: GrowOptions = {},
 ): GrowResult {
   const tissue = buildTissue(spec.tissue, surfaces, spec.forbidden);
+  refusePointsOutside(spec, tissue);
   const best = growBest(spec, tissue, options);
   const { grower } = best.growth;
   let stopped = best.growth.stopped;
@@ -75,16 +77,46 @@ export function growRun(
   const forest = freezeGrowth(grower, spec);
   const record = solveRecord(forest, used);
   const check = checkTree(record, used, surfaces);
-  const shortfalls: string[] = [];
-  spec.trees.forEach((tree, t) => {
-    const { demand } = grower.trees[t]!;
-    if (demand.served < demand.wanted) {
-      shortfalls.push(
-        `tree ${tree.name} serves ${demand.served} of the ${demand.wanted} terminals asked for: no room was found for the rest`,
-      );
-    }
-  });
+  const shortfalls = spec.trees.flatMap((tree, t) => tellUnserved(tree, t, grower));
   return { spec: used, record, tissue, check, stopped, shortfalls };
+}
+
+/** Sites named when they could not be served; the rest are counted. */
+const MOST_NAMED = 8;
+
+/** What a tree was asked and does not serve, in a sentence, or nothing. */
+function tellUnserved(tree: TreeSpec, t: number, grower: Growth['grower']): string[] {
+  const { demand } = grower.trees[t]!;
+  if (demand.served >= demand.wanted) return [];
+  const count = `tree ${tree.name} serves ${demand.served} of the ${demand.wanted} terminals asked for: no room was found for the rest`;
+  // By count one place is as good as another, so none of them is missing.
+  if (tree.terminals.by === 'count') return [count];
+  const sites = grower.unserved(t);
+  const millimetres = (x: number) => Number((1e3 * x).toPrecision(4));
+  const named = sites
+    .slice(0, MOST_NAMED)
+    .map((site) => `(${[demand.siteX(site), demand.siteY(site), demand.siteZ(site)].map(millimetres).join(', ')})`);
+  const more = sites.length > MOST_NAMED ? ` and ${sites.length - MOST_NAMED} more` : '';
+  return [`${count}, at ${named.join(', ')}${more}, in mm`];
+}
+
+/** A point that no terminal could ever reach is the caller's fault, each named. */
+function refusePointsOutside(spec: Spec, tissue: Tissue): void {
+  const faults: Fault[] = [];
+  spec.trees.forEach((tree, t) => {
+    if (tree.terminals.by !== 'points') return;
+    tree.terminals.points.forEach(([x, y, z], k) => {
+      const depth = tissue.depth(x, y, z);
+      if (depth > 0) return;
+      const got = depth === 0 ? 'on the boundary' : `${Number((-1e6 * depth).toPrecision(4))} µm outside`;
+      faults.push({
+        code: 'point-outside',
+        where: `trees[${t}].terminals.points[${k}]`,
+        message: `got a point ${got} of the tissue, expected one inside`,
+      });
+    });
+  });
+  if (faults.length > 0) throw new InputError(faults);
 }
 
 /** The solved record of a forest under a spec's pressures and blood. */

@@ -8,7 +8,9 @@ type Json = Record<string, unknown>;
 export function randomSpec(random: Random, seed: string, most = 60): Spec {
   const pick = <T>(list: readonly T[]): T => list[Math.floor(random.next() * list.length)]!;
   const between = (a: number, b: number) => a + (b - a) * random.next();
-  const { tissue, inlet, direction, volume } = pick([box, ball, lobe, shell, block, cylinder])(between);
+  const { tissue, inlet, direction, volume, forbidden } = pick([box, ball, lobe, shell, block, cylinder, barred])(
+    between,
+  );
   const rule = pick(['least-power', 'junction-exponent', 'junction-exponent', 'pressure-matched']);
   const sizing: Json = { rule };
   if (rule !== 'least-power') sizing.junction_exponent = Number(between(2.2, 3.4).toFixed(2));
@@ -26,7 +28,7 @@ export function randomSpec(random: Random, seed: string, most = 60): Spec {
   return specFromValue({
     name: 'random',
     seed,
-    tissue,
+    tissue: forbidden === undefined ? tissue : { ...tissue, forbidden },
     trees: [
       {
         inlet: {
@@ -52,6 +54,7 @@ interface Place {
   readonly direction: readonly number[];
   /** mm³, about. */
   readonly volume: number;
+  readonly forbidden?: readonly Json[];
 }
 
 function box(between: Between): Place {
@@ -131,5 +134,17 @@ function cylinder(between: Between): Place {
     inlet: [0, 0, 0],
     direction: [0, 0, 1],
     volume: 3.14 * r * r * l,
+  };
+}
+
+/** A box with a part that vessels keep out of, in the way of a straight trunk. */
+function barred(between: Between): Place {
+  const x = between(6, 12);
+  return {
+    tissue: { shape: 'box', min_mm: [0, 0, 0], max_mm: [x, x, x] },
+    forbidden: [{ shape: 'sphere', center_mm: [0.6 * x, 0.5 * x, 0.5 * x], radius_mm: 0.22 * x }],
+    inlet: [0, x / 2, x / 2],
+    direction: [1, 0, 0],
+    volume: 0.3 * x * x * x,
   };
 }
