@@ -7,7 +7,7 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 
 /*
  * The same spec and seed give the same bytes on every Node the program supports, and twice on one. The versions come
- * from the npm registry, which carries Node itself as packages; the built program is run, as users have it.
+ * as npm packages, which carry Node itself; the built program is run, as users have it.
  */
 
 const MAIN = new URL('../../dist/cli/main.js', import.meta.url).pathname;

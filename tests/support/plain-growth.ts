@@ -6,7 +6,7 @@ import { fermatPoint } from '../../src/physics/fermat.ts';
  * the cheapest wins. No clearance, no index, no shortcuts: slow, and obviously right.
  *
  * Source: constrained constructive optimisation, W. Schreiner and P. F. Buxbaum (1993), IEEE Trans Biomed Eng 40:482;
- * cost Σ Q^(2/3) L as in the outside tables' section C; from memory.
+ * cost Σ Q^(2/3) L (Gilbert 1967, branched transport); from memory.
  */
 export interface PlainNode {
   position: [number, number, number];

@@ -5,7 +5,7 @@ import { type MeshUnit, positionsIn } from './length-unit.ts';
 /**
  * A lumen surface as MSH 2.2 text, a physical surface with its name a patch.
  *
- * Source: check-values G, MSH 2.2: `id type ntags physical elementary nodes…`, type 2 a triangle.
+ * Source: Gmsh manual (public text quoting it), MSH 2.2: `id type ntags physical elementary nodes…`, type 2 a triangle.
  */
 export function encodeLumenMsh(
   mesh: Pick<LumenMesh, 'position' | 'triangle' | 'patch' | 'patches'>,

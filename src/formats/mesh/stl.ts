@@ -14,7 +14,7 @@ type Surface = Pick<LumenMesh, 'position' | 'triangle' | 'patch' | 'patches'>;
  * Corners are printed with all the digits they have, so that equal corners are equal texts. STL has no place for the
  * unit; mesh.json says it.
  *
- * Source: de-facto standard of 1989, check-values G.
+ * Source: de-facto standard of 1989, layout confirmed with an independent writer.
  */
 export function encodeNamedStl(mesh: Surface, unit: MeshUnit): Uint8Array {
   const out = new TextWriter();

