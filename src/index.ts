@@ -23,6 +23,8 @@ export { CAUTION } from './report/caution.ts';
 export { renderReport } from './report/render.ts';
 export type { Report } from './report/report.ts';
 export {
+  checkRun,
+  describeChanges,
   type FlowChange,
   type FlowResult,
   type MeshOptions,

@@ -1,4 +1,8 @@
+import { type CheckTreeOptions, checkTree } from './check/check-tree.ts';
+import type { CheckResult } from './check/result.ts';
 import { inputError } from './core/errors.ts';
+import type { TriangleSurface } from './core/surface.ts';
+import { fromSi } from './core/units.ts';
 import { solveWithEnds } from './flow/ends.ts';
 import { narrowTube, withFlow } from './flow/narrow.ts';
 import type { NamedBytes } from './formats/format.ts';
@@ -8,9 +12,12 @@ import { buildLumen } from './mesh/build-lumen.ts';
 import { type CutOptions, cutField, cutForest, cutResistances } from './mesh/cut-forest.ts';
 import type { LumenMesh } from './mesh/lumen.ts';
 import { solveRecord, VERSION } from './run.ts';
+import { type SolvedAgain, solvedAgainOf, VISCOSITY_RANGE } from './spec/solved-again.ts';
 import type { Spec } from './spec/types.ts';
+import { specToJson } from './spec/write.ts';
 import type { FlowField, TreeRecord } from './tree/forest.ts';
-import { countVessels } from './tree/vessels.ts';
+import { strahlerOrders } from './tree/strahler.ts';
+import { countVessels, vesselName } from './tree/vessels.ts';
 
 /*
  * What is run on a tree that stands, grown here or read from a file: its flow solved again, its lumen meshed.
@@ -18,7 +25,7 @@ import { countVessels } from './tree/vessels.ts';
 
 /** What is done to a tree before its flow is solved again. */
 export interface FlowChange {
-  /** Pa·s, > 0; the spec's where left out. */
+  /** Pa·s, > 0; that of the solution before where left out. */
   readonly viscosity?: number | undefined;
   /** Tubes by row, and what is taken off their radius: above 0 and below 1. */
   readonly narrow?: readonly { readonly row: number; readonly fraction: number }[] | undefined;
@@ -26,11 +33,13 @@ export interface FlowChange {
 
 /** A tree solved again. */
 export interface FlowResult {
-  /** The spec, with the viscosity used. */
+  /** The spec with the viscosity used: what the solution is judged by. */
   readonly spec: Spec;
-  /** Null where flow would run backwards: a tree file holds no such flow. */
+  /** Null where flow would run backwards: a tree file holds no such flow. Its provenance is the spec as grown. */
   readonly record: TreeRecord | null;
-  /** Rows through which it would. */
+  /** All that was changed since the tree was grown; null where nothing was. */
+  readonly solvedAgain: SolvedAgain | null;
+  /** Rows through which flow would run backwards. */
   readonly reversed: readonly number[];
 }
 
@@ -38,14 +47,30 @@ export interface FlowResult {
  * Solves a grown tree again under another viscosity, or with vessels narrowed. With the viscosity alone, flows stay and
  * pressures follow. Where a vessel is narrowed, roots and terminals keep their pressures and flows follow.
  *
+ * @param spec as grown; what was changed since then stands in the record's provenance and is kept
+ * @throws InputError for a viscosity that no spec may state
  * Cost: O(n)
  */
 export function solveAgain(record: TreeRecord, spec: Spec, change: FlowChange): FlowResult {
-  const viscosity = change.viscosity ?? spec.blood.viscosity.value;
-  const used: Spec = { ...spec, blood: { ...spec.blood, viscosity: { law: 'constant', value: viscosity } } };
-  const solved = solveRecord(record.forest, used);
+  const before = solvedAgainOf(record.provenance);
   const narrow = change.narrow ?? [];
-  if (narrow.length === 0) return { spec: used, record: solved, reversed: [] };
+  const viscosity = change.viscosity ?? before?.viscosity ?? spec.blood.viscosity.value;
+  const { min, max } = VISCOSITY_RANGE;
+  if (!(viscosity >= min && viscosity <= max)) {
+    throw inputError('out-of-range', 'viscosity', `got ${viscosity} Pa·s, expected ${min} to ${max} Pa·s`);
+  }
+  const changes: SolvedAgain = {
+    viscosity: viscosity === spec.blood.viscosity.value ? null : viscosity,
+    narrowed: [
+      ...(before?.narrowed ?? []),
+      ...narrow.map(({ row, fraction }) => ({ vessel: vesselName(record.forest, record.names, row), fraction })),
+    ],
+  };
+  const solvedAgain = changes.viscosity === null && changes.narrowed.length === 0 ? null : changes;
+  const used = specAsSolved(spec, solvedAgain);
+  const provenance = specToJson(spec, { version: VERSION, solvedAgain });
+  const solved = solveRecord(record.forest, used);
+  if (narrow.length === 0) return { spec: used, record: { ...solved, provenance }, solvedAgain, reversed: [] };
   let forest = record.forest;
   for (const { row, fraction } of narrow) forest = narrowTube(forest, row, 1 - fraction);
   const roots = spec.trees.map((tree) => tree.inlet.pressure);
@@ -54,8 +79,68 @@ export function solveAgain(record: TreeRecord, spec: Spec, change: FlowChange): 
   for (let i = 0; i < forest.count; i++) {
     if (!(flow[i]! * flow[forest.treeStart[forest.tree[i]!]!]! > 0)) reversed.push(i);
   }
-  if (reversed.length > 0) return { spec: used, record: null, reversed };
-  return { spec: used, record: solveRecord(withFlow(forest, flow), used), reversed };
+  if (reversed.length > 0) return { spec: used, record: null, solvedAgain, reversed };
+  const after = solveRecord(withFlow(forest, flow), used);
+  return { spec: used, record: { ...after, provenance }, solvedAgain, reversed };
+}
+
+/** The spec with the viscosity that the flow was solved with last. */
+function specAsSolved(spec: Spec, solvedAgain: SolvedAgain | null): Spec {
+  const value = solvedAgain?.viscosity ?? spec.blood.viscosity.value;
+  return { ...spec, blood: { ...spec.blood, viscosity: { law: 'constant', value } } };
+}
+
+/** Changes after growth, a phrase each. */
+export function describeChanges(solvedAgain: SolvedAgain | null): string[] {
+  if (solvedAgain === null) return [];
+  const { viscosity, narrowed } = solvedAgain;
+  const short = (value: number) => Number(value.toPrecision(6));
+  return [
+    ...(viscosity === null ? [] : [`solved with a viscosity of ${short(fromSi(viscosity, 'mPa_s'))} mPa·s`]),
+    ...narrowed.map(({ vessel, fraction }) => `${vessel} narrowed: ${short(100 * fraction)} % of its radius taken off`),
+  ];
+}
+
+/**
+ * `checkTree` of a tree whose flow may have been solved again: promises that what was changed necessarily breaks are said
+ * to be unchecked, viscosities are held to the one it was solved with, all else is as strict as ever.
+ */
+export function checkRun(
+  record: TreeRecord,
+  spec: Spec | null,
+  surfaces: ReadonlyMap<string, TriangleSurface>,
+  options: CheckTreeOptions = {},
+): CheckResult {
+  const solvedAgain = solvedAgainOf(record.provenance);
+  if (spec === null || solvedAgain === null) return checkTree(record, spec, surfaces, options);
+  const result = checkTree(record, specAsSolved(spec, solvedAgain), surfaces, options);
+  const lapsed = lapsedPromises(spec, solvedAgain);
+  const note = `not checked: changed after growth (flow: ${describeChanges(solvedAgain).join('; ')})`;
+  const promises = result.promises.map((promise) =>
+    lapsed.has(promise.id) && promise.held !== null
+      ? { ...promise, worst: null, where: null, held: null, checked: 0, failures: 0, note }
+      : promise,
+  );
+  return {
+    ...result,
+    held: promises.every((promise) => promise.held !== false),
+    promises,
+    findings: result.findings.filter((finding) => !lapsed.has(finding.promise)),
+  };
+}
+
+/** Ids of promises that cannot be kept by a tree that was changed so. */
+function lapsedPromises(spec: Spec, { viscosity, narrowed }: SolvedAgain): ReadonlySet<string> {
+  const lapsed: string[] = [];
+  // Ends keep their pressures where a vessel is narrowed, but radii leave the law, and flows those asked for.
+  if (narrowed.length > 0) lapsed.push('junction-law', 'sizing', 'inlet-flow', 'terminal-flow');
+  if (viscosity !== null) {
+    const { sizing } = spec;
+    lapsed.push('terminal-pressure');
+    if (sizing.rule === 'least-power') lapsed.push('sizing');
+    if (sizing.rule === 'junction-exponent' && sizing.scale.by === 'mean-pressure') lapsed.push('sizing');
+  }
+  return new Set(lapsed);
 }
 
 export interface MeshOptions extends CutOptions {
@@ -77,16 +162,18 @@ export interface MeshResult {
 /**
  * Meshes the lumen of a tree, or of its wider part.
  *
- * @param spec tells blood, and pressures where the record holds no solution; null where there is none
+ * @param grown spec as grown, which tells blood, and pressures where the record holds no solution; null where there is none
  * @throws InputError for options out of range, or a record with neither solution nor spec
  */
-export function meshTree(record: TreeRecord, spec: Spec | null, options: MeshOptions = {}): MeshResult {
+export function meshTree(record: TreeRecord, grown: Spec | null, options: MeshOptions = {}): MeshResult {
+  const spec = grown === null ? null : specAsSolved(grown, solvedAgainOf(record.provenance));
   const solved = record.field !== null || spec === null ? record : solveRecord(record.forest, spec);
   const { kinds, field: whole } = solved;
   if (whole === null) {
     throw inputError('no-flow', 'tree', 'got neither a flow solution nor a spec, expected one of them for the tables');
   }
   const { around, unit, keepAbove, keepOrder } = options;
+  judgeCut(record, options);
   const cut =
     keepAbove === undefined && keepOrder === undefined ? null : cutForest(record.forest, { keepAbove, keepOrder });
   const forest = cut?.forest ?? record.forest;
@@ -118,6 +205,31 @@ export function meshTree(record: TreeRecord, spec: Spec | null, options: MeshOpt
     },
   });
   return { mesh, files, vessels: countVessels(forest), removed: cut?.removed ?? 0 };
+}
+
+/** Refuses a cut that leaves nothing of a tree, by the tree's name. */
+function judgeCut(record: TreeRecord, { keepAbove = 0, keepOrder = 1 }: CutOptions): void {
+  if (!(keepAbove > 0 || keepOrder > 1)) return;
+  const { forest, names } = record;
+  const order = strahlerOrders(forest);
+  const short = (length: number) => Number(fromSi(length, 'um').toPrecision(4));
+  for (const [t, name] of names.entries()) {
+    const root = forest.treeStart[t]!;
+    let [widest, highest, any] = [0, 0, false];
+    for (let i = root + 1; i < forest.treeStart[t + 1]!; i++) {
+      if (forest.parent[i] !== root) continue;
+      any ||= forest.radius[i]! >= keepAbove && order[i]! >= keepOrder;
+      widest = Math.max(widest, forest.radius[i]!);
+      highest = Math.max(highest, order[i]!);
+    }
+    if (any) continue;
+    const narrow = widest < keepAbove;
+    const got = narrow
+      ? `got ${short(keepAbove)} µm, but tree ${name} begins with a vessel of radius ${short(widest)} µm`
+      : `got ${keepOrder}, but tree ${name} begins with a vessel of order ${highest}`;
+    const wanted = narrow ? `expected at most ${short(widest)} µm` : `expected at most ${highest}`;
+    throw inputError('nothing-left', narrow ? 'keepAbove' : 'keepOrder', `${got}, ${wanted}`);
+  }
 }
 
 /** kg/m³, from the Reynolds number of the first vessel: Re = 2 ρ v r / μ. */

@@ -1,7 +1,7 @@
 import { readFileSync } from 'node:fs';
 import { join } from 'node:path';
 import type { Command } from 'commander';
-import { type CheckResult, checkLumen, checkTable, checkTree } from '../index.ts';
+import { type CheckResult, checkLumen, checkRun, checkTable } from '../index.ts';
 import {
   claimedCost,
   isMeshFolder,
@@ -22,7 +22,7 @@ export function addCheck(program: Command, context: Context): void {
     .description(
       'Recomputes every promise of a run, a tree file or a mesh folder from the files alone, and lists what breaks one.\n' +
         'A run’s report is held to its cost figures too. What a file does not tell (a spec, a flow solution) is said to\n' +
-        'be unchecked.',
+        'be unchecked; so is what was changed after growth by `flow`.',
     )
     .argument('<result>', `run folder, tree file (${TREE_ENDINGS}) or mesh folder`);
   addCommonOptions(command, 'print promises and findings as one JSON document');
@@ -47,7 +47,7 @@ function checkTreeFiles(tree: TreeFiles, talk: Talk): CheckResult {
   if (tree.run && readText(join(tree.folder, 'spec.json')) !== tree.record.provenance) {
     talk.note(`${join(tree.path, 'spec.json')} is not the spec that tree.vtp carries; the tree’s own was used`);
   }
-  return checkTree(tree.record, spec, surfaces, { claimed: claimedCost(tree) });
+  return checkRun(tree.record, spec, surfaces, { claimed: claimedCost(tree) });
 }
 
 /** Text of a file, or null where there is none. */

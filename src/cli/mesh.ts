@@ -4,7 +4,6 @@ import {
   type CheckResult,
   checkLumen,
   checkTable,
-  InputError,
   inputError,
   LUMEN_DEFAULTS,
   MESH_UNITS,
@@ -17,7 +16,10 @@ import { MESH_FOLDER, placeForFolder, readTree, specOfTree, writeFolder } from '
 import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
-import { positiveNumber, wholeNumber } from './option-values.ts';
+import { positiveNumber, wholeNumber, withOptionNames } from './option-values.ts';
+
+/** What the library's options are called on the command line. */
+const OPTION_NAMES = { around: '--around', keepAbove: '--keep-above', keepOrder: '--keep-order' };
 
 interface MeshArguments extends CommonOptions {
   readonly out: string;
@@ -56,7 +58,7 @@ function mesh(path: string, options: MeshArguments, talk: Talk): number {
   const tree = readTree(path);
   for (const note of tree.notes) talk.note(note);
   talk.onProgress({ stage: 'mesh', done: 0, total: 1 });
-  const made = withOptionNames(path, () => meshTree(tree.record, specOfTree(tree), wanted));
+  const made = withOptionNames({ ...OPTION_NAMES, tree: path }, () => meshTree(tree.record, specOfTree(tree), wanted));
   talk.onProgress({ stage: 'proof', done: 0, total: 1 });
   const check = checkFiles(made);
   const files = made.files.map(({ name, bytes }) => ({ name, content: bytes }));
@@ -86,22 +88,6 @@ function meshOptions(options: MeshArguments): MeshOptions {
       options.keepAbove === undefined ? undefined : toSi(positiveNumber(options.keepAbove, '--keep-above'), 'um'),
     keepOrder: options.keepOrder === undefined ? undefined : wholeNumber(options.keepOrder, '--keep-order', 1, 1000),
   };
-}
-
-/** Faults of the library's options, told by the names they have on the command line. */
-function withOptionNames<T>(path: string, step: () => T): T {
-  const names: Readonly<Record<string, string>> = {
-    around: '--around',
-    keepAbove: '--keep-above',
-    keepOrder: '--keep-order',
-    tree: path,
-  };
-  try {
-    return step();
-  } catch (error) {
-    if (!(error instanceof InputError)) throw error;
-    throw new InputError(error.faults.map((fault) => ({ ...fault, where: names[fault.where] ?? fault.where })));
-  }
 }
 
 /** The independent check, on the bytes that will be written. */

@@ -1,4 +1,4 @@
-import { inputError, rowOfVessel, type TreeRecord, toSi, UNITS, type Unit } from '../index.ts';
+import { InputError, inputError, rowOfVessel, type TreeRecord, toSi, UNITS, type Unit } from '../index.ts';
 
 /** Whole number of an option. */
 export function wholeNumber(text: string, option: string, least: number, most: number): number {
@@ -85,4 +85,18 @@ export function narrowOf(text: string, record: TreeRecord): NarrowOption {
     throw inputError('bad-value', option, message);
   }
   return { row, fraction };
+}
+
+/**
+ * Runs something of the library; faults of its options are told by the names they have on the command line.
+ *
+ * @param names option of the library → where it came from
+ */
+export function withOptionNames<T>(names: Readonly<Record<string, string>>, step: () => T): T {
+  try {
+    return step();
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error;
+    throw new InputError(error.faults.map((fault) => ({ ...fault, where: names[fault.where] ?? fault.where })));
+  }
 }

@@ -5,6 +5,7 @@ import { describeValue, NOT_BUILT } from './got.ts';
 import { keysOf } from './quantity.ts';
 import { type Report, record } from './record.ts';
 import { EXTENT, TISSUE } from './shape-schema.ts';
+import { SOLVED_AGAIN, VISCOSITY_RANGE } from './solved-again.ts';
 import { line, plain, whole, word } from './text-schema.ts';
 import { TREES } from './tree-schema.ts';
 
@@ -23,11 +24,7 @@ export const VISCOSITY_FIELDS = {
       .default('constant'),
     { doc: 'Viscosity law.', range: '"constant"', fallback: '"constant"' },
   ),
-  value: amountOr(
-    'viscosity',
-    { value: 3.5, unit: 'mPa_s' },
-    { range: { min: 1e-5, max: 1 }, doc: 'Dynamic viscosity.' },
-  ),
+  value: amountOr('viscosity', { value: 3.5, unit: 'mPa_s' }, { range: VISCOSITY_RANGE, doc: 'Dynamic viscosity.' }),
 } as const;
 
 export const BLOOD_FIELDS = {
@@ -173,6 +170,11 @@ export const SPEC_FIELDS = {
       fallback: '"quick"',
     },
   ),
+  solved_again: value(SOLVED_AGAIN.optional(), {
+    doc: 'What was changed after growth, in a tree whose flow was solved again; not read when growing.',
+    range: '`viscosity_*`, `narrowed`',
+    fallback: 'none',
+  }),
 } as const;
 
 /** The one schema: JSON value in, checked values in SI out; `resolve.ts` makes the `Spec` of them. */

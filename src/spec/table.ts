@@ -9,6 +9,7 @@ import {
   VISCOSITY_FIELDS,
 } from './schema.ts';
 import { SHAPE_FIELDS, TISSUE_FIELDS } from './shape-schema.ts';
+import { NARROWED_FIELDS, SOLVED_AGAIN_FIELDS } from './solved-again.ts';
 import { INLET_FIELDS, TERMINAL_FIELDS, TREE_FIELDS } from './tree-schema.ts';
 
 const SECTIONS: readonly (readonly [string, Fields])[] = [
@@ -23,6 +24,8 @@ const SECTIONS: readonly (readonly [string, Fields])[] = [
   ['sizing', SIZING_FIELDS],
   ['clearance', CLEARANCE_FIELDS],
   ['junctions', JUNCTION_FIELDS],
+  ['solved_again', SOLVED_AGAIN_FIELDS],
+  ['solved_again.narrowed[]', NARROWED_FIELDS],
 ];
 
 /** Markdown table of every key of a spec: units, default, range, meaning. Keys of a shape stand after its name. */

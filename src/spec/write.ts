@@ -1,5 +1,6 @@
 import { fromSi } from '../core/units.ts';
 import { SPEC_FORMAT } from './schema.ts';
+import { type SolvedAgain, solvedAgainOut } from './solved-again.ts';
 import type { InletSpec, Shape, SizingSpec, Spec, TerminalsSpec } from './types.ts';
 
 /** What a written spec says of its writer. */
@@ -8,6 +9,8 @@ export interface SpecStamp {
   readonly format?: number | undefined;
   /** Version of the program. */
   readonly version?: string | undefined;
+  /** What was changed in the tree after it was grown. */
+  readonly solvedAgain?: SolvedAgain | null | undefined;
 }
 
 /**
@@ -41,6 +44,7 @@ export function specToJson(spec: Spec, stamp: SpecStamp = {}): string {
     clearance: { gap_m: spec.clearance.gap },
     junctions: { min_angle_deg: fromSi(spec.junctions.minAngle, 'deg') },
     refine: spec.refine,
+    solved_again: solvedAgainOut(stamp.solvedAgain),
   };
   return `${layOut(value, '')}\n`;
 }
