@@ -21,7 +21,7 @@ export function encodeBoundaryCsv(rows: readonly BoundaryRow[]): Uint8Array {
     const cells = [
       row.patch,
       row.type,
-      ...[row.radius, ...row.centre, ...row.normal, row.flow, row.pressure, row.velocity, row.reynolds].map(printReal),
+      ...[row.radius, ...row.centre, ...row.normal, row.flow, row.pressure, row.velocity, row.reynolds].map(printPlain),
       row.resistance === null ? '' : printReal(row.resistance),
       '',
       '',
@@ -32,6 +32,11 @@ export function encodeBoundaryCsv(rows: readonly BoundaryRow[]): Uint8Array {
     out.add(`${cells.join(',')}\n`);
   }
   return out.bytes();
+}
+
+/** A number as text; a negative zero, which a normal along an axis has, as 0. */
+function printPlain(value: number): string {
+  return printReal(value + 0);
 }
 
 const NETWORK = [
