@@ -10,7 +10,7 @@ export function isMeshFolder(path: string): boolean {
 }
 
 /**
- * Reads the files of a mesh folder that `checkLumen` looks at.
+ * Reads the files of a mesh folder that `checkLumen` looks at; those that the folder lacks are null.
  *
  * @throws InputError where `lumen.stl` or `boundary.csv` cannot be read
  */
@@ -24,5 +24,8 @@ export function readMesh(path: string): LumenFiles {
     boundary: read('boundary.csv'),
     network: may('network.csv'),
     notes: may('mesh.json'),
+    vtp: may('lumen.vtp'),
+    msh: may('lumen.msh'),
+    oneSolid: may('lumen_one_solid.stl'),
   };
 }

@@ -93,18 +93,18 @@ function addTube(lumen: HandLumen, t: number, around: number): void {
       pressure_Pa: 8000 - end * drop,
       mean_velocity_m_s: velocity,
       reynolds: (DENSITY * velocity * 2 * radius) / VISCOSITY,
-      resistance_Pa_s_m3: '',
+      resistance_Pa_s_m3: end === 0 ? '' : 0,
       windkessel_r1: '',
       windkessel_r2: '',
       windkessel_c: '',
       tree: t,
-      vessel: t,
+      vessel: 10 * t + 3 * end,
     });
     // The network has a node half-way, so that there is one where flow can be conserved.
     const [x0, y0, z0] = place((end * length) / 2, 0, 0);
     const [x1, y1, z1] = place(((end + 1) * length) / 2, 0, 0);
     lumen.network.push({
-      segment: 2 * t + end,
+      segment: 10 * t + 3 * end,
       from: 3 * t + end,
       to: 3 * t + end + 1,
       ...{ x0, y0, z0, x1, y1, z1 },

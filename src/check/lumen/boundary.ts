@@ -22,11 +22,14 @@ export interface BoundaryTable {
   readonly velocity: Float64Array;
   readonly reynolds: Float64Array;
   readonly tree: readonly string[];
+  readonly vessel: readonly string[];
+  /** Pa·s/m³ as printed: nothing at a tree's root, 0 where nothing was cut off. */
+  readonly resistance: readonly string[];
 }
 
 const NEEDED = [
   ...['patch', 'type', 'radius_m', 'cx', 'cy', 'cz', 'nx', 'ny', 'nz', 'flow_m3_s', 'pressure_Pa'],
-  ...['mean_velocity_m_s', 'reynolds', 'tree', 'vessel'],
+  ...['mean_velocity_m_s', 'reynolds', 'resistance_Pa_s_m3', 'tree', 'vessel'],
 ];
 
 /**
@@ -64,6 +67,8 @@ export function readBoundary(file: string, text: string): BoundaryTable {
     velocity: numberColumn(table, 'mean_velocity_m_s'),
     reynolds: numberColumn(table, 'reynolds'),
     tree: textColumn(table, 'tree'),
+    vessel: textColumn(table, 'vessel'),
+    resistance: textColumn(table, 'resistance_Pa_s_m3'),
   };
 }
 

@@ -1,13 +1,19 @@
+import { InputError } from '../../core/errors.ts';
 import { decodeText } from '../../core/text.ts';
 import { type CheckResult, gatherResult, type PromiseResult, type Tally } from '../result.ts';
 import { type BoundaryTable, measureBoundary, readBoundary } from './boundary.ts';
+import { lookAtBoundaryNames, lookAtResistances } from './boundary-names.ts';
 import { measureCaps } from './caps.ts';
 import { findCrossings } from './crossings.ts';
 import { createLumenTallies, type LumenTallies } from './lumen-tallies.ts';
+import { readMshSolids } from './msh-file.ts';
 import { measureNetwork, networkAxis, readNetwork } from './network.ts';
+import { lookAtCounts, lookAtInsidePoints } from './note-figures.ts';
 import { type MeshNotes, readMeshNotes } from './notes.ts';
-import { readSolids, type Solids } from './solids.ts';
+import { isBinary, readSolids, type Solids } from './solids.ts';
 import { type Components, type Edges, listEdges, measureComponents } from './topology.ts';
+import { printedSlack, Reference } from './twins.ts';
+import { readVtpSolids, type StatedSolids } from './vtp-file.ts';
 import { type Welded, weldCorners } from './weld.ts';
 
 /** The files of a mesh folder that the checker reads, as bytes. */
@@ -16,10 +22,16 @@ export interface LumenFiles {
   readonly surface: Uint8Array;
   /** `boundary.csv` */
   readonly boundary: Uint8Array;
-  /** `network.csv` */
+  /** `network.csv`. Here and below: null where the folder lacks the file, left out where it was not looked for. */
   readonly network?: Uint8Array | null | undefined;
   /** `mesh.json` */
   readonly notes?: Uint8Array | null | undefined;
+  /** `lumen.vtp` */
+  readonly vtp?: Uint8Array | null | undefined;
+  /** `lumen.msh` */
+  readonly msh?: Uint8Array | null | undefined;
+  /** `lumen_one_solid.stl`, which is not written beside a binary `lumen.stl`. */
+  readonly oneSolid?: Uint8Array | null | undefined;
 }
 
 export interface CheckLumenOptions {
@@ -32,7 +44,9 @@ const LEGAL_NAME = /^[A-Za-z][A-Za-z0-9_]*$/;
 /**
  * Recomputes every promise of a lumen mesh from its files.
  *
- * @throws InputError where a file is not what its name says, naming the lines
+ * The other surface files are held to `lumen.stl`; one of them that is cut short breaks its promise.
+ *
+ * @throws InputError where `lumen.stl`, a table or `mesh.json` is not what its name says, naming the lines
  * Cost: O(f log f); 10⁵ triangles take about 3 s.
  */
 export function checkLumen(files: LumenFiles, options: CheckLumenOptions = {}): CheckResult {
@@ -70,8 +84,32 @@ export function checkLumen(files: LumenFiles, options: CheckLumenOptions = {}): 
   const networkTallies = { drop: tallies.drop, flow: tallies.networkFlow, ends: tallies.ends };
   if (network !== null) measureNetwork(network, boundary, notes.viscosity, networkTallies);
 
+  lookAtBoundaryNames(boundary, network, tallies.boundaryNames);
+  lookAtResistances(boundary, notes.cutPatches, tallies.resistance);
+  const binary = isBinary(files.surface);
+  lookAtFiles(files, binary, tallies.files);
+  const reference = new Reference(mesh, solids, printedSlack(mesh.position, binary));
+  const unread = lookAtTwins(files, binary, reference, notes, tallies);
+  if (notes.counts !== null) {
+    const counted = {
+      vertices: mesh.position.length / 3,
+      edges: edges.count,
+      triangles: mesh.triangle.length / 3,
+      vessels: network?.count ?? null,
+      caps: boundary.count,
+      components: components.count,
+    };
+    lookAtCounts(notes.counts, counted, tallies.counts);
+  } else unread.set(tallies.counts, 'mesh.json gives no counts');
+  if (notes.insidePoint !== undefined || notes.insidePoints !== undefined)
+    lookAtInsidePoints(notes, mesh, components, tallies.inside);
+  else unread.set(tallies.inside, 'mesh.json gives no point');
+
   const all = Object.values(tallies) as Tally[];
-  const promises = all.map((tally) => closeTally(tally, tallies, notes, network !== null));
+  const promises = all.map((tally) => {
+    const why = unread.get(tally);
+    return why === undefined ? closeTally(tally, tallies, notes, network !== null) : tally.skip(why);
+  });
   return gatherResult(promises, all, [], {
     triangles: mesh.triangle.length / 3,
     vertices: mesh.position.length / 3,
@@ -90,6 +128,67 @@ function closeTally(tally: Tally, tallies: LumenTallies, notes: MeshNotes, netwo
     return tally.close('mesh.json gives no density or viscosity: velocities only');
   }
   return tally.close();
+}
+
+/** Names the files that the program always writes and the folder lacks. */
+function lookAtFiles(files: LumenFiles, binary: boolean, tally: Tally): void {
+  tally.checked += 2;
+  const others = [
+    ['network.csv', files.network],
+    ['mesh.json', files.notes],
+    ['lumen.vtp', files.vtp],
+    ['lumen.msh', files.msh],
+    ['lumen_one_solid.stl', binary ? undefined : files.oneSolid],
+  ] as const;
+  for (const [name, bytes] of others) {
+    if (bytes === undefined) continue;
+    tally.checked++;
+    if (bytes === null) tally.fail(name, -1, 1, 0, 'the folder lacks the file');
+  }
+}
+
+/**
+ * Holds the other surface files to `lumen.stl`.
+ *
+ * @returns why a promise could not be looked at
+ */
+function lookAtTwins(
+  files: LumenFiles,
+  binary: boolean,
+  reference: Reference,
+  notes: MeshNotes,
+  tallies: LumenTallies,
+): Map<Tally, string> {
+  const unread = new Map<Tally, string>();
+  const look = (
+    file: string,
+    bytes: Uint8Array | null | undefined,
+    tally: Tally,
+    read: (file: string, bytes: Uint8Array) => Solids & Partial<Pick<StatedSolids, 'unit'>>,
+  ) => {
+    if (bytes === undefined || bytes === null) {
+      unread.set(tally, bytes === null ? `no ${file}` : `${file} was not looked for`);
+      return;
+    }
+    try {
+      const twin = read(file, bytes);
+      if (twin.unit !== undefined && twin.unit !== notes.unitName)
+        tally.fail(file, -1, 1, 0, `unit of length: got ${twin.unit ?? 'none'}, mesh.json says ${notes.unitName}`);
+      reference.compare(file, scaleSolids(twin, notes.unit), tally !== tallies.oneSolid, tally);
+    } catch (error) {
+      if (!(error instanceof InputError)) throw error;
+      for (const { where, message } of error.faults) tally.fail(where, -1, 1, 0, message);
+    }
+  };
+  look('lumen.vtp', files.vtp, tallies.vtp, readVtpSolids);
+  look('lumen.msh', files.msh, tallies.msh, readMshSolids);
+  look('lumen_one_solid.stl', files.oneSolid, tallies.oneSolid, (file, bytes) => {
+    const solids = readSolids(file, bytes, ['lumen']);
+    if (solids.names.length !== 1) tallies.oneSolid.fail(file, -1, 1, 0, `got ${solids.names.length} solids`);
+    return solids;
+  });
+  if (binary && !files.oneSolid) unread.set(tallies.oneSolid, 'a binary lumen.stl is one solid already');
+  return unread;
 }
 
 /** Scales file units to metres. */

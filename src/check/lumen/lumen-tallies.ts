@@ -25,6 +25,14 @@ export interface LumenTallies {
   readonly drop: Tally;
   readonly networkFlow: Tally;
   readonly ends: Tally;
+  readonly resistance: Tally;
+  readonly boundaryNames: Tally;
+  readonly files: Tally;
+  readonly vtp: Tally;
+  readonly msh: Tally;
+  readonly oneSolid: Tally;
+  readonly counts: Tally;
+  readonly inside: Tally;
 }
 
 /** How the things that are measured are named. */
@@ -204,5 +212,19 @@ export function createLumenTallies(around: number, names: LumenNames, cap: numbe
       patch,
       (value) => `pressure is off by ${value.toExponential(3)} of the whole drop`,
     ),
+    resistance: tally('boundary-resistance', 'resistances stand where something was cut off', none, patch, () => ''),
+    boundaryNames: tally(
+      'boundary-names',
+      'type, tree and vessel of boundary.csv are those of the patch names',
+      none,
+      patch,
+      () => '',
+    ),
+    files: tally('folder-files', 'the folder holds every file of a mesh', none, patch, () => ''),
+    vtp: tally('file-vtp', 'lumen.vtp holds the triangles and patches of lumen.stl', none, triangle, () => ''),
+    msh: tally('file-msh', 'lumen.msh holds the triangles and patches of lumen.stl', none, triangle, () => ''),
+    oneSolid: tally('file-one-solid', 'lumen_one_solid.stl holds the triangles of lumen.stl', none, triangle, () => ''),
+    counts: tally('notes-counts', 'counts of mesh.json are those of the files', none, triangle, () => ''),
+    inside: tally('notes-inside', 'points of mesh.json lie inside the lumen, one a part', none, triangle, () => ''),
   };
 }

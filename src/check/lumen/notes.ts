@@ -12,12 +12,22 @@ export interface MeshNotes {
   readonly density: number;
   /** Names of a binary file's patches by number, or null. */
   readonly patches: readonly string[] | null;
+  /** The word for `unit`. */
+  readonly unitName: string;
+  /** What the file says the mesh has, by key; null where it does not say. */
+  readonly counts: Readonly<Record<string, unknown>> | null;
+  /** As the file has them: `inside_point_m`, `inside_points_m`; undefined where it has none. */
+  readonly insidePoint: unknown;
+  readonly insidePoints: unknown;
+  /** Names of the patches behind which something was cut off; none where nothing was, null where it does not say. */
+  readonly cutPatches: readonly string[] | null;
 }
 
 const UNIT: Readonly<Record<string, number>> = { m: 1, mm: 1e-3, um: 1e-6 };
 
 /**
- * Reads `mesh.json`: keys `unit`, `around`, `viscosity_Pa_s`, `density_kg_m3`, `patches` (names), all optional.
+ * Reads `mesh.json`: keys `unit`, `around`, `viscosity_Pa_s`, `density_kg_m3`, `patches` (names), `counts`,
+ * `inside_point_m`, `inside_points_m`, `cut_off`, all optional.
  *
  * @param text null where there is no such file: metres, 24 round a vessel
  * @throws InputError where it is not JSON or a key is not what it should be
@@ -53,5 +63,20 @@ export function readMeshNotes(file: string, text: string | null): MeshNotes {
     viscosity: number('viscosity_Pa_s', Number.NaN),
     density: number('density_kg_m3', Number.NaN),
     patches: named ? patches : null,
+    unitName: unit,
+    counts: isObject(notes.counts) ? notes.counts : null,
+    insidePoint: notes.inside_point_m,
+    insidePoints: notes.inside_points_m,
+    cutPatches: cutPatches(notes.cut_off),
   };
+}
+
+function isObject(value: unknown): value is Readonly<Record<string, unknown>> {
+  return typeof value === 'object' && value !== null && !Array.isArray(value);
+}
+
+function cutPatches(cutOff: unknown): readonly string[] | null {
+  if (cutOff === null) return [];
+  if (!isObject(cutOff) || !Array.isArray(cutOff.patches)) return null;
+  return cutOff.patches.map(String);
 }

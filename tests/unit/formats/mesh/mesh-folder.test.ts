@@ -24,6 +24,9 @@ function text(files: Map<string, Uint8Array>, name: string): string {
 
 function failures(files: Map<string, Uint8Array>) {
   return checkLumen({
+    vtp: files.get('lumen.vtp')!,
+    msh: files.get('lumen.msh')!,
+    oneSolid: files.get('lumen_one_solid.stl')!,
     surface: files.get('lumen.stl')!,
     boundary: files.get('boundary.csv')!,
     network: files.get('network.csv')!,
@@ -70,7 +73,7 @@ describe('encodeMeshFolder', () => {
     expect(x(inches) / x(files)).toBeCloseTo(1000, 9);
   });
 
-  it('heads the tables as the contract does', () => {
+  it('heads the tables with the documented columns', () => {
     expect(text(files, 'boundary.csv').split('\n')[0]).toBe(
       'patch,type,radius_m,cx,cy,cz,nx,ny,nz,flow_m3_s,pressure_Pa,mean_velocity_m_s,reynolds,resistance_Pa_s_m3,' +
         'windkessel_r1,windkessel_r2,windkessel_c,tree,vessel',
@@ -78,6 +81,14 @@ describe('encodeMeshFolder', () => {
     expect(text(files, 'network.csv').split('\n')[0]).toBe(
       'segment,from,to,x0,y0,z0,x1,y1,z1,r0_m,r1_m,length_m,flow_m3_s,p0_Pa,p1_Pa',
     );
+  });
+
+  it('writes no negative zero to the tables', () => {
+    // The trunk lies along x, and its inlet's normal is (−1, −0, −0).
+    expect(Object.is(mesh.patches[1]!.normal[1], -0)).toBe(true);
+    expect(text(files, 'boundary.csv')).not.toMatch(/(^|,)-0(,|$)/m);
+    expect(text(files, 'network.csv')).not.toMatch(/(^|,)-0(,|$)/m);
+    expect(text(files, 'boundary.csv').split('\n')[1]!.split(',').slice(6, 9)).toEqual(['-1', '0', '0']);
   });
 
   it('writes MSH 2.2 with a physical name a patch', () => {
