@@ -29,19 +29,17 @@ export function reportRun(result: ReportedRun, resources: ReportInput['resources
 
 /** A check's promises as lines of a report. */
 export function promiseLines(check: CheckResult): PromiseLine[] {
-  return check.promises.map((promise) => ({
-    promise: promise.title,
-    limit: `${promise.sense === 'at-least' ? '≥' : '≤'} ${shortNumber(promise.limit)}${unitText(promise.unit)}`,
-    worst: promise.worst === null ? null : `${shortNumber(promise.worst)}${unitText(promise.unit)}`,
-    where: promise.where,
-    held: promise.held,
+  return check.promises.map(({ id, title, sense, limit, worst, unit, where, held, checked, note }) => ({
+    id,
+    promise: title,
+    sense,
+    limit,
+    // JSON has no word for what is not finite.
+    worst: worst !== null && Number.isFinite(worst) ? worst : null,
+    unit,
+    where,
+    held,
+    checked,
+    note,
   }));
-}
-
-function shortNumber(value: number): string {
-  return String(Number(value.toPrecision(4)));
-}
-
-function unitText(unit: string): string {
-  return unit === '1' ? '' : ` ${unit}`;
 }

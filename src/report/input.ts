@@ -1,17 +1,27 @@
 import type { TreeRecord } from '../tree/forest.ts';
 
-/** A promise as recomputed from the result. */
+/** A promise as recomputed from the result, in numbers that a machine reads. */
 export interface PromiseLine {
+  /** Short machine word, e.g. `containment`. */
+  readonly id: string;
   /** What was promised, a short sentence. */
   readonly promise: string;
-  /** The bound, as text with its unit or as a number. */
-  readonly limit: string | number;
-  /** The worst value found; null where nothing was measured. */
-  readonly worst: string | number | null;
+  /** `at-least`: values below the limit break the promise; `at-most`: values above it. */
+  readonly sense: 'at-least' | 'at-most';
+  /** In `unit`, all digits. */
+  readonly limit: number;
+  /** The worst value found, in `unit`, all digits; null where nothing was measured, or it is not finite. */
+  readonly worst: number | null;
+  /** SI, `1` for a plain number. */
+  readonly unit: string;
   /** Vessel or place of the worst value. */
   readonly where: string | null;
   /** Null: could not be looked at, e.g. no flow solution in the file. */
   readonly held: boolean | null;
+  /** How many things were looked at. */
+  readonly checked: number;
+  /** Slack, or why the promise could not be looked at; may be empty. */
+  readonly note: string;
 }
 
 /** The cost at a moment of growth or refinement. */

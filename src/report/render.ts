@@ -82,16 +82,17 @@ function keyFigures(report: Report): string {
 
 function promises(report: Report): string {
   if (report.promises.length === 0) return '';
-  const text = (value: string | number | null): string =>
-    typeof value === 'string' ? escapeHtml(value) : formatNumber(value);
+  const amount = (value: number | null, unit: string): string =>
+    value === null || unit === '1' ? formatNumber(value) : `${formatNumber(value)} ${escapeHtml(unit)}`;
   const rows = report.promises.map((line) => [
     escapeHtml(line.promise),
     line.held === null ? 'not looked at' : line.held ? 'held' : '<strong class="no">NOT HELD</strong>',
-    text(line.worst),
-    text(line.limit),
+    amount(line.worst, line.unit),
+    `${line.sense === 'at-least' ? '≥' : '≤'} ${amount(line.limit, line.unit)}`,
     escapeHtml(line.where ?? '–'),
+    escapeHtml(line.note),
   ]);
-  return `<section><h2>Promises</h2>${table('Recomputed from the result.', ['promise', 'verdict', 'worst', 'limit', 'where'], rows, [0, 1, 4])}</section>`;
+  return `<section><h2>Promises</h2>${table('Recomputed from the result.', ['promise', 'verdict', 'worst', 'limit', 'where', 'note'], rows, [0, 1, 4, 5])}</section>`;
 }
 
 function trees(report: Report): string {

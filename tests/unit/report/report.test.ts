@@ -1,11 +1,13 @@
 import { describe, expect, it } from 'vitest';
+import type { PromiseResult } from '../../../src/check/result.ts';
 import { measurePower } from '../../../src/flow/power.ts';
 import { solveFlow } from '../../../src/flow/solve.ts';
 import { buildReport } from '../../../src/report/build.ts';
 import { CAUTION } from '../../../src/report/caution.ts';
 import { formatNumber, powerUnit } from '../../../src/report/html.ts';
-import type { ReportInput } from '../../../src/report/input.ts';
+import type { PromiseLine, ReportInput } from '../../../src/report/input.ts';
 import { renderReport } from '../../../src/report/render.ts';
+import { promiseLines } from '../../../src/run-report.ts';
 import type { Forest, TreeRecord } from '../../../src/tree/forest.ts';
 import { strahlerOrders } from '../../../src/tree/strahler.ts';
 import { caterpillarShape, completeShape, forestOf, forestOfShape, randomForest } from '../../support/small-trees.ts';
@@ -121,14 +123,45 @@ describe('buildReport', () => {
   });
 });
 
+const line = (more: Partial<PromiseLine>): PromiseLine => ({
+  ...{ id: 'x', promise: 'x', sense: 'at-most', limit: 1, worst: 0, unit: '1', where: null, held: true },
+  ...{ checked: 1, note: '' },
+  ...more,
+});
+
+describe('promiseLines', () => {
+  const third: PromiseResult = {
+    ...{ id: 'gap', title: 'gaps are wide', sense: 'at-least', limit: 1 / 3e5, unit: 'm', worst: 1 / 7e5 },
+    ...{ where: 't0:3', held: false, checked: 12, failures: 2, note: 'slack 1e-9 m' },
+  };
+
+  it('keeps every digit and the unit apart', () => {
+    const check = {
+      held: false,
+      promises: [third, { ...third, worst: Infinity }],
+      findings: [],
+      warnings: [],
+      recomputed: {},
+    };
+    const [told, endless] = promiseLines(check);
+    expect(endless!.worst).toBeNull();
+    expect(JSON.parse(JSON.stringify(told))).toEqual(told);
+    expect(told).toEqual({
+      ...{ id: 'gap', promise: 'gaps are wide', sense: 'at-least', limit: 1 / 3e5, worst: 1 / 7e5, unit: 'm' },
+      ...{ where: 't0:3', held: false, checked: 12, note: 'slack 1e-9 m' },
+    });
+  });
+});
+
 describe('renderReport', () => {
   const hostile = '<img src=x onerror=alert(1)>&"\'';
   const report = buildReport(
     inputOf(randomForest('page', 60, 2), {
       notes: [hostile],
       promises: [
-        { promise: hostile, limit: hostile, worst: 1.5, where: hostile, held: false },
-        { promise: 'blood is conserved', limit: 1e-10, worst: 3e-16, where: 't0:3', held: true },
+        line({ promise: hostile, unit: hostile, worst: 1.5, where: hostile, held: false, note: hostile }),
+        line({ promise: 'blood is conserved', limit: 1e-10, worst: 1 / 3e15, where: 't0:3' }),
+        line({ promise: 'gaps are wide', sense: 'at-least', limit: 2e-5, unit: 'm', worst: null, held: null }),
       ],
       resources: {
         wallTime: 3,
@@ -156,7 +189,12 @@ describe('renderReport', () => {
     expect(CAUTION).toMatch(/research and engineering, not for diagnosis or treatment/);
     expect(page).toContain('1 promise not held');
     expect(page.match(/NOT HELD/g)?.length).toBe(1);
-    expect(page.match(/&lt;img/g)!.length).toBeGreaterThanOrEqual(7);
+    expect(page.match(/&lt;img/g)!.length).toBeGreaterThanOrEqual(8);
+  });
+
+  it('writes promises for reading: sense, four digits, unit', () => {
+    expect(page).toContain('<td>3.333·10<sup>−16</sup></td><td>≤ 1·10<sup>−10</sup></td>');
+    expect(page).toContain('<td>–</td><td>≥ 2·10<sup>−5</sup> m</td>');
   });
 
   it('has every tag closed and no number that is none', () => {
