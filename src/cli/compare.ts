@@ -1,14 +1,6 @@
 import { readFileSync } from 'node:fs';
 import type { Command } from 'commander';
-import {
-  compareJson,
-  compareJUnit,
-  compareTable,
-  compareTrees,
-  DEFAULT_TOLERANCE,
-  parseTolerance,
-  type Tolerance,
-} from '../index.ts';
+import { compareJson, compareJUnit, compareTable, compareTrees, DEFAULT_TOLERANCE, parseTolerance } from '../index.ts';
 import { placeForFile, readTree, type TreeFiles, withFiles, writeFiles } from '../node/index.ts';
 import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
@@ -25,8 +17,8 @@ export function addCompare(program: Command, context: Context): void {
     .summary('tell whether two trees are the same, and where they first differ')
     .description(
       'Compares two trees vessel by vessel: the same bytes, the same tree within tolerances, or different, with the\n' +
-        'first difference named. Exit code 0 for the first two, 1 for the last. Folders of many runs are not compared by\n' +
-        'this version.',
+        'first difference named. What only one of them has is a difference, unless the other’s format cannot hold it. Exit\n' +
+        'code 0 for the first two, 1 for the last. Folders of many runs are not compared by this version.',
     )
     .argument('<A>', 'run folder or tree file')
     .argument('<B>', 'run folder or tree file')
@@ -51,8 +43,9 @@ function compare(pathA: string, pathB: string, options: CompareArguments, talk: 
         );
   const [a, b] = [readTree(pathA), readTree(pathB)];
   for (const note of new Set([...a.notes, ...b.notes])) talk.note(note);
-  const result = compareTrees(a.record, b.record, withoutFlows(tolerance, [a, b], talk), {
+  const result = compareTrees(a.record, b.record, tolerance, {
     sameBytes: sameBytes(a, b),
+    files: [a, b].map(({ format }) => ({ name: format.extensions[0]!, drops: format.drops })),
   });
   if (junit !== undefined) {
     const content = compareJUnit(result, { name: `${pathA} ${pathB}` });
@@ -63,14 +56,6 @@ function compare(pathA: string, pathB: string, options: CompareArguments, talk: 
     () => compareJson(result),
   );
   return result.verdict === 'different' ? EXIT.broken : EXIT.held;
-}
-
-/** Flows that had to be supplied, because the format holds none, are not held against the other tree. */
-function withoutFlows(tolerance: Tolerance, trees: readonly TreeFiles[], talk: Talk): Tolerance {
-  const without = trees.find((tree) => tree.format.drops.includes('flows'));
-  if (without === undefined) return tolerance;
-  talk.note(`flow is not compared: ${without.format.extensions[0]} holds none`);
-  return { ...tolerance, flow_rel: Number.POSITIVE_INFINITY };
 }
 
 /** Whether two trees were read from the same bytes; not known of files of two formats. */

@@ -1,6 +1,6 @@
 import type { TreeRecord } from '../tree/forest.ts';
 import { tubeLength, vesselName } from '../tree/vessels.ts';
-import type { Difference, QuantitySummary, TreeComparison, TreeCounts } from './comparison.ts';
+import type { Difference, FileLimits, QuantitySummary, TreeComparison, TreeCounts } from './comparison.ts';
 import { type Match, matchTrees } from './match.ts';
 import { QUANTITIES, type Quantity } from './quantities.ts';
 import { DEFAULT_TOLERANCE, type Tolerance } from './tolerance.ts';
@@ -8,10 +8,13 @@ import { DEFAULT_TOLERANCE, type Tolerance } from './tolerance.ts';
 export interface CompareOptions {
   /** Were the two files the same bytes? Left out where there are no bytes to ask. */
   readonly sameBytes?: boolean | undefined;
+  /** Files whose formats cannot hold everything: what they drop is not compared, whatever was supplied for it. */
+  readonly files?: readonly FileLimits[] | undefined;
 }
 
 /**
- * Compares two trees vessel by vessel: matches them by shape, then measures every quantity both have.
+ * Compares two trees vessel by vessel: matches them by shape, then measures every quantity. One that only one side has
+ * is a difference, unless the other's file cannot hold it.
  *
  * Cost: O(n); 10⁵ vessels take about 0.2 s.
  */
@@ -25,10 +28,15 @@ export function compareTrees(
   const notes: string[] = [];
   const quantities: QuantitySummary[] = [];
   let firstValue: (Difference & { rowA: number }) | null = null;
+  let firstLack: Difference | null = null;
   for (const quantity of QUANTITIES) {
     const allowed = tolerance[quantity.key] ?? quantity.tolerance;
-    const { summary, first } = measureQuantity(a, b, match, quantity, allowed, notes);
+    const holder = options.files?.find((file) => file.drops.includes(quantity.part));
+    const skipped = holder === undefined ? null : `not held by ${holder.name}`;
+    const { summary, first } = measureQuantity(a, b, match, quantity, allowed, skipped);
     quantities.push(summary);
+    if (skipped !== null) notes.push(`${quantity.title} is not compared: ${skipped}`);
+    if (summary.lacking !== null) firstLack ??= describeLack(summary.title, summary.lacking);
     if (first !== null && (firstValue === null || first.rowA < firstValue.rowA)) firstValue = first;
   }
   const firstShape = describeShape(a, b, match);
@@ -39,7 +47,7 @@ export function compareTrees(
     if (other !== name) notes.push(`tree ${t} is called ${name} in A and ${other} in B`);
   });
   const same = options.sameBytes ?? equalRecords(a, b);
-  const reason = firstShape !== null ? 'topology' : firstValue !== null ? 'values' : null;
+  const reason = firstShape !== null ? 'topology' : firstValue !== null || firstLack !== null ? 'values' : null;
   // In one row the shape below it matters less than the vessel itself.
   const first =
     firstShape === null || (firstValue !== null && firstShape.rowA >= 0 && firstValue.rowA <= firstShape.rowA)
@@ -48,8 +56,9 @@ export function compareTrees(
   return {
     level: 'tree',
     verdict: same ? 'identical' : reason === null ? 'equivalent' : 'different',
+    identity: options.sameBytes === undefined ? 'values' : 'bytes',
     reason: same ? null : reason,
-    first: same ? null : first,
+    first: same ? null : (first ?? firstLack),
     firstShape: same ? null : firstShape,
     countsA: countRows(a),
     countsB: countRows(b),
@@ -72,11 +81,11 @@ function measureQuantity(
   match: Match,
   quantity: Quantity,
   allowed: number,
-  notes: string[],
+  skipped: string | null,
 ): { summary: QuantitySummary; first: Difference | null } {
   const { key, title, unit, relative } = quantity;
-  const columnA = quantity.column(a);
-  const columnB = quantity.column(b);
+  const columnA = skipped === null ? quantity.column(a) : null;
+  const columnB = skipped === null ? quantity.column(b) : null;
   let compared = 0;
   let exceeded = 0;
   let maxAbsolute = 0;
@@ -117,9 +126,9 @@ function measureQuantity(
       firstRow = i;
       firstSize = deviation;
     }
-  } else if (columnA !== null || columnB !== null) {
-    notes.push(`${title} is not compared: ${columnA === null ? 'A' : 'B'} has none`);
   }
+  const neither = columnA === null && columnB === null;
+  const lacking = neither || (columnA !== null && columnB !== null) ? null : columnA === null ? 'A' : 'B';
   const summary: QuantitySummary = {
     key,
     title,
@@ -127,6 +136,8 @@ function measureQuantity(
     relative,
     tolerance: allowed,
     compared,
+    lacking,
+    skipped: skipped ?? (neither ? 'in neither' : null),
     exceeded,
     maxAbsolute,
     maxRelative: key === 'position_um' ? Number.NaN : maxRelative,
@@ -142,6 +153,12 @@ function measureQuantity(
   const size = `${Number(firstSize.toPrecision(4))}${relative ? ' relative' : unit === '1' ? '' : ` ${unit}`}`;
   const message = `${title} of ${vesselA} is ${valueA}, of ${vesselB} ${valueB}: differs by ${size}, allowed ${allowed}`;
   return { summary, first: { what: title, vesselA, vesselB, rowA: firstRow, rowB, valueA, valueB, message } };
+}
+
+function describeLack(title: string, lacking: 'A' | 'B'): Difference {
+  const [valueA, valueB] = lacking === 'A' ? ['none', 'there'] : ['there', 'none'];
+  const message = `${title} is only in ${lacking === 'A' ? 'B' : 'A'}: ${lacking} has none`;
+  return { what: title, vesselA: '–', vesselB: '–', rowA: -1, rowB: -1, valueA, valueB, message };
 }
 
 function formatValue(quantity: Quantity, column: ArrayLike<number>, row: number): string {

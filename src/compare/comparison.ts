@@ -8,7 +8,7 @@ export type Verdict = 'identical' | 'equivalent' | 'different';
 
 /** Where two trees first disagree. */
 export interface Difference {
-  /** `topology` or the title of a quantity. */
+  /** `topology` or the title of a quantity; of a quantity that only one side has, rows are −1 and vessels `–`. */
   readonly what: string;
   /** Vessels `<tree>:<vessel number>` in A and in B. */
   readonly vesselA: string;
@@ -32,6 +32,10 @@ export interface QuantitySummary {
   readonly tolerance: number;
   /** Vessels or nodes compared; 0 where A or B lacks the quantity. */
   readonly compared: number;
+  /** Side that lacks what the other has, which is a difference; null where both or neither have it, or it is skipped. */
+  readonly lacking: 'A' | 'B' | null;
+  /** Why it is not compared and that is no difference, e.g. `not held by .swc`; null where it is compared or lacking. */
+  readonly skipped: string | null;
   /** How many differ by more than the tolerance. */
   readonly exceeded: number;
   /** Greatest difference in `unit`, and relative to the larger value. */
@@ -40,6 +44,14 @@ export interface QuantitySummary {
   /** Vessels of the greatest difference (relative or absolute, as the tolerance is); null where there is none. */
   readonly vesselA: string | null;
   readonly vesselB: string | null;
+}
+
+/** What the file that one side was read from cannot hold. */
+export interface FileLimits {
+  /** The file's kind, as notes call it, e.g. `.swc`. */
+  readonly name: string;
+  /** Parts of a tree, as in `Quantity`. */
+  readonly drops: readonly string[];
 }
 
 /** Plain figures of one side. */
@@ -58,6 +70,8 @@ export interface TreeCounts {
 export interface TreeComparison {
   readonly level: 'tree';
   readonly verdict: Verdict;
+  /** What `identical` was asked of: the bytes of two files, or every value. */
+  readonly identity: 'bytes' | 'values';
   /** Of what kind the difference is; null where there is none. Trees of other shape are `topology` whatever else differs. */
   readonly reason: 'topology' | 'values' | null;
   /** The first place, in A's order, where anything differs by more than its tolerance. */

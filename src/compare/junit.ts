@@ -21,8 +21,12 @@ export function compareJUnit(result: Comparison, options: JUnitOptions = {}): st
       : { name: 'topology', body: failure('topology', shape.message, compareTable(result)), kind: 'failed' },
   );
   for (const summary of result.quantities) {
-    if (summary.compared === 0 && !same) {
-      cases.push({ name: summary.key, body: '<skipped message="not compared"/>', kind: 'skipped' });
+    if (summary.lacking !== null && !same) {
+      const message = `${summary.title}: ${summary.lacking} has none`;
+      cases.push({ name: summary.key, body: failure('values', message, message), kind: 'failed' });
+    } else if (summary.compared === 0 && !same) {
+      const why = escapeXml(summary.skipped ?? 'not compared');
+      cases.push({ name: summary.key, body: `<skipped message="${why}"/>`, kind: 'skipped' });
     } else if (summary.exceeded > 0 && !same) {
       const where = `greatest at ${summary.vesselA} in A, ${summary.vesselB} in B`;
       const size = summary.relative ? `${summary.maxRelative} relative` : `${summary.maxAbsolute} ${summary.unit}`;

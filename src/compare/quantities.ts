@@ -11,6 +11,8 @@ export interface Quantity {
   readonly relative: boolean;
   /** Default tolerance: above what a text format with nine digits loses, below anything that matters. */
   readonly tolerance: number;
+  /** What a file must hold to hold it. */
+  readonly part: 'positions' | 'radii' | 'flows' | 'orders' | 'flow solution';
   /** Does it belong to nodes (and so to roots too), or to tubes? */
   readonly at: 'node' | 'tube';
   /** Column of a record, or null where the record has none. */
@@ -21,6 +23,7 @@ export interface Quantity {
 export const QUANTITIES: readonly Quantity[] = [
   {
     key: 'position_um',
+    part: 'positions',
     title: 'position',
     unit: 'µm',
     relative: false,
@@ -30,6 +33,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'radius_rel',
+    part: 'radii',
     title: 'radius',
     unit: 'm',
     relative: true,
@@ -39,6 +43,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'flow_rel',
+    part: 'flows',
     title: 'flow',
     unit: 'm³/s',
     relative: true,
@@ -48,6 +53,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'order',
+    part: 'orders',
     title: 'Strahler order',
     unit: '1',
     relative: false,
@@ -57,6 +63,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'pressure_Pa',
+    part: 'flow solution',
     title: 'pressure',
     unit: 'Pa',
     relative: false,
@@ -66,6 +73,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'transit_rel',
+    part: 'flow solution',
     title: 'transit time',
     unit: 's',
     relative: true,
@@ -75,6 +83,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'viscosity_rel',
+    part: 'flow solution',
     title: 'viscosity',
     unit: 'Pa·s',
     relative: true,
@@ -84,6 +93,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'velocity_rel',
+    part: 'flow solution',
     title: 'velocity',
     unit: 'm/s',
     relative: true,
@@ -93,6 +103,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'wall_shear_rel',
+    part: 'flow solution',
     title: 'wall shear',
     unit: 'Pa',
     relative: true,
@@ -102,6 +113,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'reynolds_rel',
+    part: 'flow solution',
     title: 'Reynolds number',
     unit: '1',
     relative: true,
@@ -111,6 +123,7 @@ export const QUANTITIES: readonly Quantity[] = [
   },
   {
     key: 'haematocrit',
+    part: 'flow solution',
     title: 'haematocrit',
     unit: '1',
     relative: false,

@@ -39,15 +39,19 @@ export function compareTable(result: Comparison): string {
 
 /** The verdict in a few words. */
 export function describeVerdict(result: Comparison): string {
-  if (result.verdict === 'identical') return 'identical: the same in every bit';
+  if (result.verdict === 'identical') {
+    return result.identity === 'bytes' ? 'identical: the same in every bit' : 'identical: the same in every value';
+  }
   if (result.verdict === 'equivalent') return 'equivalent: the same tree within the tolerances';
-  return result.reason === 'topology'
-    ? 'different: the trees have different shapes'
-    : 'different: the same shape, but values differ by more than the tolerances';
+  if (result.reason === 'topology') return 'different: the trees have different shapes';
+  return result.quantities.some((summary) => summary.exceeded > 0)
+    ? 'different: the same shape, but values differ by more than the tolerances'
+    : 'different: the same shape, but one lacks what the other has';
 }
 
 function summaryCells(summary: QuantitySummary): string[] {
-  if (summary.compared === 0) return [summary.title, '', 'not compared', '', '', '', '', ''];
+  if (summary.lacking !== null) return [summary.title, '', `${summary.lacking} has none`, '', '', '', '', ''];
+  if (summary.compared === 0) return [summary.title, '', summary.skipped ?? 'not compared', '', '', '', '', ''];
   return [
     summary.title,
     `${shorten(summary.tolerance)}${summary.relative ? ' relative' : withUnit(summary.unit)}`,

@@ -121,10 +121,35 @@ describe('values', () => {
     expect(compareTrees(spoil(), spoil()).verdict).toBe('identical');
   });
 
-  test('what one side lacks is said, and no difference', () => {
-    const result = compareTrees(RECORD, { ...RECORD, field: null });
+  test('what one side lacks is a difference', () => {
+    const bare = { ...RECORD, field: null };
+    const result = compareTrees(RECORD, bare);
+    expect([result.verdict, result.reason]).toEqual(['different', 'values']);
+    expect(result.first).toMatchObject({ what: 'pressure', message: 'pressure is only in A: B has none', rowA: -1 });
+    expect(compareTrees(bare, RECORD).first!.message).toBe('pressure is only in B: A has none');
+    expect(result.quantities.filter(({ lacking }) => lacking === 'B')).toHaveLength(7);
+    expect(compareTable(result)).toMatch(/^different: the same shape, but one lacks what the other has\n/);
+    expect(compareJUnit(result)).toContain('<failure type="values" message="pressure: B has none">');
+    // Values that differ have a place, and are named first.
+    const both = compareTrees({ ...changed((tree) => (tree.radius[40]! *= 1.001)), field: null }, RECORD);
+    expect(both.first!.what).toBe('radius');
+    const neither = compareTrees(bare, bare, DEFAULT_TOLERANCE, { sameBytes: false });
+    expect(neither.verdict).toBe('equivalent');
+    expect(neither.quantities.find(({ key }) => key === 'pressure_Pa')).toMatchObject({ skipped: 'in neither' });
+  });
+
+  test('what the file of one side cannot hold is skipped', () => {
+    const files = [{ name: '.swc', drops: ['flows', 'flow solution'] }];
+    const other = changed((tree) => (tree.flow[40]! += 1));
+    expect(compareTrees(RECORD, other).verdict).toBe('different');
+    const result = compareTrees(RECORD, { ...other, field: null }, DEFAULT_TOLERANCE, { files });
     expect(result.verdict).toBe('equivalent');
-    expect(result.notes).toContain('pressure is not compared: B has none');
+    expect(result.quantities.filter(({ skipped }) => skipped === 'not held by .swc')).toHaveLength(8);
+    expect(result.quantities.find(({ key }) => key === 'flow_rel')).toMatchObject({ compared: 0, lacking: null });
+    expect(result.notes).toContain('flow is not compared: not held by .swc');
+    expect(compareTable(result)).not.toMatch(/Infinity/);
+    expect(compareJson(result)).not.toMatch(/"tolerance": null/);
+    expect(compareJUnit(result)).toContain('name="flow_rel"><skipped message="not held by .swc"/>');
   });
 });
 
@@ -186,7 +211,9 @@ describe('renderings', () => {
   );
 
   test('table', () => {
-    expect(compareTable(same)).toMatch(/^identical: the same in every bit\n/);
+    expect(compareTable(same)).toMatch(/^identical: the same in every value\n/);
+    const bytes = compareTrees(RECORD, RECORD, DEFAULT_TOLERANCE, { sameBytes: true });
+    expect(compareTable(bytes)).toMatch(/^identical: the same in every bit\n/);
     const text = compareTable(other);
     expect(text).toMatch(/^different: the same shape/);
     expect(text).toContain(other.first!.message);
