@@ -1,5 +1,6 @@
 import type { Command } from 'commander';
 import { TREE_FORMATS } from '../index.ts';
+import { EXIT } from './exit-codes.ts';
 import { type CommonOptions, type Io, Talk } from './io.ts';
 
 const endings = (formats: readonly { readonly extensions: readonly string[] }[]): string =>
@@ -18,6 +19,18 @@ export interface Context {
 export function addCommonOptions(command: Command, json: string | null): Command {
   command.option('--quiet', 'say nothing but faults');
   return json === null ? command : command.option('--json', json);
+}
+
+/**
+ * Adds an option that must be given. Asked for only once all that was given is known to be right: of a misspelt option the
+ * spelling is the fault to tell, not that the right one is missing.
+ */
+export function addRequired(command: Command, flags: string, description: string): Command {
+  const option = command.createOption(flags, description);
+  return command.addOption(option).hook('preAction', () => {
+    if (command.getOptionValue(option.attributeName()) !== undefined) return;
+    command.error(`error: required option '${flags}' not specified`, { exitCode: EXIT.input });
+  });
 }
 
 /** Adds the example that every help ends with. */

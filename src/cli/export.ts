@@ -1,9 +1,9 @@
-import { existsSync, realpathSync } from 'node:fs';
-import { join } from 'node:path';
+import { existsSync, readFileSync, realpathSync } from 'node:fs';
+import { basename, dirname, join, resolve } from 'node:path';
 import type { Command } from 'commander';
-import { inputError, splitTreePath, TREE_FORMATS } from '../index.ts';
-import { placeForFile, readTree, writeFiles } from '../node/index.ts';
-import { addCommonOptions, addExample, type Context, runWork, TREE_ENDINGS } from './command.ts';
+import { InputError, inputError, splitTreePath, TREE_FORMATS, type TreeFormat } from '../index.ts';
+import { placeForFile, RUN_FOLDER, readTree, withFiles, writeFiles } from '../node/index.ts';
+import { addCommonOptions, addExample, addRequired, type Context, runWork, TREE_ENDINGS } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
 
@@ -16,8 +16,12 @@ export function addExport(program: Command, context: Context): void {
     .command('export')
     .summary('write a tree in another format')
     .description('Writes a tree in the format that the file’s extension names.')
-    .argument('<tree>', `run folder or tree file (${TREE_ENDINGS})`)
-    .requiredOption('--to <file>', `file to write: ${TREE_FORMATS.flatMap((format) => format.extensions).join(', ')}`);
+    .argument('<tree>', `run folder or tree file (${TREE_ENDINGS})`);
+  addRequired(
+    command,
+    '--to <file>',
+    `file to write: ${TREE_FORMATS.flatMap((format) => format.extensions).join(', ')}`,
+  );
   addCommonOptions(command, null);
   command.addHelpText('after', `\nFormats:\n${describeFormats()}`);
   addExample(command, 'export runs/gel --to gel.csv', 'export runs/gel --to gel.swc');
@@ -45,6 +49,8 @@ function exportTree(path: string, options: ExportArguments, talk: Talk): number 
   if (taken !== undefined) {
     throw inputError('file', '--to', `got ${taken}, the file that is read, expected another`);
   }
+  for (const file of files) refuseRunFile(file);
+  if (files.some((file) => existsSync(file))) refuseOther(format, files);
   const encoded = format.encode(tree.record).map(({ suffix, bytes }, k) => ({
     path: files[k] ?? stem + suffix,
     content: bytes,
@@ -53,4 +59,30 @@ function exportTree(path: string, options: ExportArguments, talk: Talk): number 
   talk.say(`written: ${encoded.map((file) => file.path).join(', ')}`);
   if (format.drops.length > 0) talk.note(`${format.extensions[0]} holds no ${format.drops.join(', no ')}`);
   return EXIT.held;
+}
+
+/** A run's own files say one thing together; none of them is replaced alone. */
+function refuseRunFile(file: string): void {
+  const own = [...RUN_FOLDER.marks, ...RUN_FOLDER.others];
+  const place = existsSync(file) ? realpathSync(file) : resolve(file);
+  const isRun = RUN_FOLDER.marks.every((mark) => existsSync(join(dirname(place), mark)));
+  if (!isRun || !own.includes(basename(place))) return;
+  throw inputError('file', '--to', `got ${file}, which belongs to a run, expected another name or folder`);
+}
+
+/** Files that lie there are replaced only where they are a tree of the format that is written. */
+function refuseOther(format: TreeFormat, files: readonly string[]): void {
+  try {
+    format.decode(
+      files.map((file) => ({
+        name: basename(file),
+        bytes: withFiles('--to', file, 'a file to replace', () => new Uint8Array(readFileSync(file))),
+      })),
+    );
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error;
+    const there = files.filter((file) => existsSync(file)).join(' and ');
+    const wanted = `expected a new file, or a tree in ${format.extensions[0]} to replace`;
+    throw inputError('file', '--to', `got ${there}, which is there and holds something else, ${wanted}`);
+  }
 }

@@ -12,7 +12,7 @@ import {
   vesselName,
 } from '../index.ts';
 import { Meter, placeForFolder, RUN_FOLDER, readTree, specOfTree, surfacesOfTree, writeRun } from '../node/index.ts';
-import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
+import { addCommonOptions, addExample, addRequired, type Context, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
 import { narrowOf, quantityOf, withOptionNames } from './option-values.ts';
@@ -35,8 +35,9 @@ export function addFlow(program: Command, context: Context): void {
         '(nothing is written then). Promises of the spec that the change necessarily breaks are said to be unchecked, here and\n' +
         'by `check`. spec.json stays the spec as grown, with the change told under solved_again.',
     )
-    .argument('<tree>', 'run folder or tree file that carries its spec')
-    .requiredOption('--out <run>', 'folder to write; an earlier run there is replaced')
+    .argument('<tree>', 'run folder or tree file that carries its spec');
+  addRequired(command, '--out <run>', 'folder to write; an earlier run there is replaced');
+  command
     .option('--viscosity <value>', 'constant viscosity with its unit, such as 3.5mPa_s or 0.0035Pa_s')
     .option(
       '--narrow <tree:vessel:fraction>',

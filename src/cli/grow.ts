@@ -2,12 +2,15 @@ import { join } from 'node:path';
 import type { Command } from 'commander';
 import { CAUTION, inputError, parseSpec, type Spec, specToJson } from '../index.ts';
 import { type GrownFolder, growToFolder, placeForFolder, RUN_FOLDER, readSpec } from '../node/index.ts';
-import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
+import { addCommonOptions, addExample, addRequired, type Context, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
 import { type RefineOption, refineOf, wholeNumber } from './option-values.ts';
 import { specPath } from './preset-files.ts';
 import { formatPower, formatShare } from './printed.ts';
+
+/** Most terminals of a tree that a spec may ask for. */
+const MOST_TERMINALS = 2e7;
 
 interface GrowArguments extends CommonOptions {
   readonly out: string;
@@ -25,8 +28,9 @@ export function addGrow(program: Command, context: Context): void {
       'Grows the trees of a spec, refines and solves them, checks every promise, and writes a run folder:\n' +
         'tree.vtp, spec.json (the spec as used), report.json, report.html, and a copy of each surface file.',
     )
-    .argument('<spec>', 'path of a spec (JSON), or the name of a preset')
-    .requiredOption('--out <run>', 'folder to write; an earlier run there is replaced')
+    .argument('<spec>', 'path of a spec (JSON), or the name of a preset');
+  addRequired(command, '--out <run>', 'folder to write; an earlier run there is replaced');
+  command
     .option('--seed <seed>', 'seed in place of the spec’s')
     .option('--terminals <count>', 'number of terminals a tree, in place of the spec’s count')
     .option('--workers <count>', 'accepted; this version grows on one thread, and the result never depends on it')
@@ -70,7 +74,7 @@ function grow(given: string, options: GrowArguments, talk: Talk): number {
 function overrideSpec(spec: Spec, options: GrowArguments, refine: RefineOption | null): Spec {
   let trees = spec.trees;
   if (options.terminals !== undefined) {
-    const count = wholeNumber(options.terminals, '--terminals', 1, 1e9);
+    const count = wholeNumber(options.terminals, '--terminals', 1, MOST_TERMINALS);
     trees = trees.map((tree) => {
       const { terminals, name } = tree;
       if (terminals.by === 'count') return { ...tree, terminals: { ...terminals, count } };

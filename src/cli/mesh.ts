@@ -13,7 +13,7 @@ import {
   toSi,
 } from '../index.ts';
 import { MESH_FOLDER, placeForFolder, readTree, specOfTree, writeFolder } from '../node/index.ts';
-import { addCommonOptions, addExample, type Context, runWork } from './command.ts';
+import { addCommonOptions, addExample, addRequired, type Context, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
 import { positiveNumber, wholeNumber, withOptionNames } from './option-values.ts';
@@ -39,8 +39,9 @@ export function addMesh(program: Command, context: Context): void {
         'network.csv, mesh.json. The files are checked before they are written; where the check finds something they are\n' +
         'written all the same, the findings are listed, and the exit code is 1.',
     )
-    .argument('<tree>', 'run folder or tree file')
-    .requiredOption('--out <folder>', 'folder to write; an earlier mesh there is replaced')
+    .argument('<tree>', 'run folder or tree file');
+  addRequired(command, '--out <folder>', 'folder to write; an earlier mesh there is replaced');
+  command
     .option('--around <count>', `segments round a vessel, 8 to 256; ${LUMEN_DEFAULTS.around} where not given`)
     .option('--keep-above <radius_um>', 'leave out vessels thinner than this radius in µm, with a cap in their place')
     .option('--keep-order <order>', 'leave out vessels below this Strahler order; terminals have order 1')

@@ -24,12 +24,20 @@ const COMMANDS = [addGrow, addFlow, addMesh, addExport, addCheck, addCompare, ad
 export async function main(argv: readonly string[], io: Io): Promise<number> {
   const context: Context = { io, code: EXIT.held };
   try {
-    await buildProgram(context).parseAsync(argv, { from: 'user' });
+    const program = buildProgram(context);
+    await program.parseAsync(knownCommand(program, argv) ? argv : argv.slice(0, 1), { from: 'user' });
     return context.code;
   } catch (error) {
     if (error instanceof CommanderError) return error.exitCode === 0 ? EXIT.held : EXIT.input;
     return tellFailure(error, io);
   }
+}
+
+/** False where the first word is no command: it is then parsed alone, so that `--help` after it does not hide that. */
+function knownCommand(program: Command, argv: readonly string[]): boolean {
+  const [first] = argv;
+  if (first === undefined || first.startsWith('-') || first === 'help') return true;
+  return program.commands.some((command) => command.name() === first);
 }
 
 function buildProgram(context: Context): Command {

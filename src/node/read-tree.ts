@@ -2,6 +2,7 @@ import { existsSync, readFileSync, statSync } from 'node:fs';
 import { basename, dirname, join, resolve } from 'node:path';
 import {
   type ClaimedCost,
+  InputError,
   inputError,
   parseSpec,
   type Spec,
@@ -44,13 +45,23 @@ export function readTree(path: string): TreeFiles {
     const held = mesh ? 'a mesh folder, which holds no tree' : 'a folder without a tree.vtp';
     throw inputError('file', path, `got ${held}, expected ${wanted}`);
   }
-  const { format, files } = splitTreePath(file, path);
+  const { format, files } = existsSync(file) ? splitTreePath(file, path) : splitMissing(file, path, wanted);
   const parts = files.map((part) => ({
     name: basename(part),
     bytes: readBytes(path, part, wanted),
   }));
   const { record, notes } = format.decode(parts);
   return { path, run, folder: dirname(resolve(file)), files: parts, format, record, notes };
+}
+
+/** Takes apart a path where nothing lies; only a format of several files may have them beside it. */
+function splitMissing(file: string, path: string, wanted: string): ReturnType<typeof splitTreePath> {
+  try {
+    return splitTreePath(file, path);
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error;
+    throw inputError('file', path, `got ${path}, which does not exist, expected ${wanted}`);
+  }
 }
 
 /**

@@ -92,8 +92,16 @@ describe('mesh', () => {
     ['--around', '3', /^--around: got "3", expected a whole number from 8 to 256/],
     ['--unit', 'inch', /^--unit: got "inch", expected one of m, mm, um/],
     ['--keep-above', '-1', /^--keep-above: got "-1", expected a number > 0/],
-    ['--keep-above', '1e9', /^--keep-above: .*expected at least/],
-    ['--keep-order', '9', /^--keep-order: .*expected at least/],
+    [
+      '--keep-above',
+      '1e9',
+      /^--keep-above: got 1000000000 µm, but tree \w+ begins .* radius [\d.]{1,6} µm, expected at most/,
+    ],
+    [
+      '--keep-order',
+      '9',
+      /^--keep-order: got 9, but tree supply begins with a vessel of order 3, expected at most 3\n$/,
+    ],
   ])('refuses %s %s', async (option, value, says) => {
     const { code, out, err } = await runCli(['mesh', run, option, value, '--out', scratch.path('refused')]);
     expect({ code, out }).toEqual({ code: 2, out: '' });

@@ -126,6 +126,28 @@ describe('compare', () => {
     expect(readFileSync(junit, 'utf8')).toMatch(/<failure type="(topology|values)"/);
   });
 
+  test('another format: the same in every value, and what it cannot hold is skipped', async () => {
+    const json = scratch.path('same.json');
+    await runCli(['export', run, '--to', json]);
+    expect((await runCli(['compare', run, json])).out).toMatch(/^identical: the same in every value\n/);
+    const swc = scratch.path('same.swc');
+    await runCli(['export', run, '--to', swc]);
+    const { code, out } = await runCli(['compare', run, swc]);
+    expect(code).toBe(0);
+    expect(out).toMatch(/^pressure +not held by \.swc$/m);
+    expect(out).not.toMatch(/Infinity/);
+  });
+
+  test('a flow solution that only one has: exit 1', async () => {
+    const copy = copyWith('unsolved', 'tree.vtp', (content) => {
+      const { record } = VTP.decode([{ name: 'tree.vtp', bytes: new Uint8Array(content) }]);
+      return Buffer.from(VTP.encode({ ...record, field: null })[0]!.bytes);
+    });
+    const { code, out } = await runCli(['compare', run, copy]);
+    expect(code).toBe(1);
+    expect(out).toMatch(/first difference: pressure is only in A: B has none/);
+  });
+
   test('a tolerance that is none, or a file that is not there: exit 2', async () => {
     writeFileSync(scratch.path('odd.json'), '{"radius": 1, "flow_rel": -1}');
     const { code, err } = await runCli(['compare', run, other, '--tolerance', scratch.path('odd.json')]);
@@ -171,10 +193,17 @@ describe('export', () => {
 
   test('refuses a folder, the file that is read, and an ending it does not know; leaves them as they were', async () => {
     mkdirSync(scratch.path('folder.swc'));
+    writeFileSync(scratch.path('notes.json'), '{"mine": 1}');
+    writeFileSync(scratch.path('half.nodes.csv'), 'mine\n');
     const before = readFileSync(scratch.path('run', 'tree.vtp'));
     for (const [to, says] of [
       [scratch.path('folder.swc'), /^--to: got .*which is a folder/],
       [scratch.path('run', 'tree.vtp'), /^--to: got .*the file that is read/],
+      [scratch.path('other', 'tree.vtp'), /^--to: got .*which belongs to a run/],
+      [scratch.path('other', 'spec.json'), /^--to: got .*which belongs to a run/],
+      [scratch.path('other', 'report.json'), /^--to: got .*which belongs to a run/],
+      [scratch.path('notes.json'), /^--to: got .*which is there and holds something else/],
+      [scratch.path('half.csv'), /^--to: got .*half\.nodes\.csv, which is there and holds something else/],
       [scratch.path('a.dwg'), /^--to: got .*expected a name that ends in/],
       ['', /^--to: got/],
     ] as const) {
@@ -183,5 +212,15 @@ describe('export', () => {
       expect(err).toMatch(says);
     }
     expect(readFileSync(scratch.path('run', 'tree.vtp')).equals(before)).toBe(true);
+    expect(readFileSync(scratch.path('notes.json'), 'utf8')).toBe('{"mine": 1}');
+    expect((await runCli(['check', scratch.path('other')])).code).toBe(0);
+  });
+
+  test('replaces a tree of the same format', async () => {
+    for (const name of ['again.json', 'again.csv']) {
+      expect((await runCli(['export', other, '--to', scratch.path(name)])).code).toBe(0);
+      expect((await runCli(['export', run, '--to', scratch.path(name)])).code).toBe(0);
+      expect((await runCli(['compare', run, scratch.path(name)])).code).toBe(0);
+    }
   });
 });
