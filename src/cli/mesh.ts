@@ -99,6 +99,9 @@ function checkFiles(made: MeshResult): CheckResult {
     boundary: bytesOf('boundary.csv')!,
     network: bytesOf('network.csv'),
     notes: bytesOf('mesh.json'),
+    vtp: bytesOf('lumen.vtp'),
+    msh: bytesOf('lumen.msh'),
+    oneSolid: bytesOf('lumen_one_solid.stl'),
   });
 }
 

@@ -63,7 +63,7 @@ const WRONG_IN_TISSUE: readonly BrokenSpec[] = [
   bent('all of it forbidden', /^tissue/, (spec) => {
     spec.tissue.forbidden = [{ shape: 'box', min_mm: [-1, -1, -1], max_mm: [13, 13, 13] }];
   }),
-  bent('no point inside', /^trees\[0\]: got no terminal/, (spec) => {
+  bent('no point inside', /^trees\[0\]\.terminals\.points\[0\]: got a point/, (spec) => {
     spec.trees[0].terminals = { points_mm: [[6, 6, 30]], pressure_mmHg: 20 };
   }),
 ];
