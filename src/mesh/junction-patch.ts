@@ -52,6 +52,8 @@ export class PatchBuilder {
   private global: number[] = [];
   /** Axial place of each rim, in units of the shape. */
   private rim: number[] = [];
+  /** Angle from each axis within which there are no spread points. */
+  private circles: number[] = [];
 
   constructor(forest: Forest, children: Children, layout: TubeLayout, shape: JunctionShape, around: number) {
     this.forest = forest;
@@ -76,7 +78,8 @@ export class PatchBuilder {
     let best = -Infinity;
     let bestAttempt = 0;
     let last = 0;
-    for (let attempt = 0; attempt < ATTEMPTS && best < ENOUGH; attempt++) {
+    const tight = layout.tight[row] === 1;
+    for (let attempt = 0; attempt < (tight ? 1 : ATTEMPTS) && best < ENOUGH; attempt++) {
       const score = this.tryPatch(out, rings, row, unit, attempt);
       last = attempt;
       if (score > best) {
@@ -97,29 +100,45 @@ export class PatchBuilder {
     const { mesh, shape, around, thin, remesher } = this;
     mesh.reset();
     this.addRims(out, rings, row, unit);
+    const most = this.mostVertices();
     const swollen = thin.swell(this.rim, attempt >> 1);
     if (swollen) thin.takeRims(mesh, around);
-    this.addSpread(attempt);
-    this.overlapping =
-      !triangulateDirections(mesh, this.directions(attempt)) || this.markCaps() !== shape.count * around;
+    this.circles.length = 0;
+    for (let tube = 0; tube < shape.count; tube++)
+      this.circles.push(Math.atan2(shape.radius[tube]!, this.rim[tube]!) + 0.35);
+    this.addSpread(shape.axis, attempt);
+    this.overlapping = !triangulateDirections(mesh, this.directions(attempt)) || !this.markCaps();
     if (this.overlapping) {
       // Join the rims as if they were small enough to be apart. Closed, if not simple.
       thin.restore();
       mesh.reset();
       this.addRims(out, rings, row, unit);
-      this.addSpread(attempt);
-      if (!triangulateDirections(mesh, this.shrunkDirections()) || this.markCaps() !== shape.count * around)
+      if (!triangulateDirections(mesh, this.shrunkDirections()) || !this.markCaps())
         throw new InvariantError(`addPatch: no triangulation of the rims of node ${row}`);
     }
-    remesher.start(160 * around * shape.count + 8000, attempt);
+    const strained = this.overlapping || this.layout.tight[row] === 1;
+    remesher.start(strained ? Math.min(most, 24 * around * shape.count) : most, attempt);
     if (swollen && !this.overlapping) {
       for (let more = true; more; ) {
         more = thin.shrink(mesh, SHRINK[attempt % SHRINK.length]!);
         remesher.follow(around);
       }
     }
-    const worst = remesher.finish();
+    const worst = remesher.finish(around);
     return this.overlapping ? Math.min(worst, -1) : worst;
+  }
+
+  /** Far more vertices than a sound patch comes to: its wall over the area of a vertex, three times. */
+  private mostVertices(): number {
+    const { shape, rim } = this;
+    let most = 400;
+    for (let tube = 0; tube < shape.count; tube++) {
+      const a = shape.radius[tube]!;
+      const edge = shape.edge[tube]!;
+      const seen = Math.max(0, rim[tube]! - shape.leaves(tube)) + 4 * a;
+      most += (3 * (2 * Math.PI * a * seen)) / (0.6 * edge * edge);
+    }
+    return most;
   }
 
   /** Row of the vessel that a tube of the shape stands for. */
@@ -159,8 +178,8 @@ export class PatchBuilder {
   }
 
   /** Adds a few points of the wall well away from the rims, so that the hull of the directions holds the node. */
-  private addSpread(attempt: number): void {
-    const { shape, mesh } = this;
+  private addSpread(axes: Float64Array, attempt: number): void {
+    const { shape, mesh, circles } = this;
     const mirror = (attempt & 1) === 0 ? 1 : -1;
     for (let i = 0; i < SPREAD.length; i += 3) {
       const x = mirror * SPREAD[i]!;
@@ -168,9 +187,8 @@ export class PatchBuilder {
       const z = SPREAD[i + 2]!;
       let free = true;
       for (let tube = 0; tube < shape.count && free; tube++) {
-        const dot = x * shape.axis[3 * tube]! + y * shape.axis[3 * tube + 1]! + z * shape.axis[3 * tube + 2]!;
-        const angle = Math.acos(Math.max(-1, Math.min(1, dot)));
-        if (angle < Math.atan2(shape.radius[tube]!, this.rim[tube]!) + 0.35) free = false;
+        const dot = x * axes[3 * tube]! + y * axes[3 * tube + 1]! + z * axes[3 * tube + 2]!;
+        if (Math.acos(Math.max(-1, Math.min(1, dot))) < circles[tube]!) free = false;
       }
       if (!free) continue;
       shape.lookAt(x, y, z);
@@ -198,44 +216,66 @@ export class PatchBuilder {
     return out;
   }
 
-  /** Directions on circles round the axes, so small that they are apart. */
+  /**
+   * Directions on circles round the axes, so small that they are apart; round other axes where two nearly coincide.
+   * Adds the spread points that lie outside them.
+   */
   private shrunkDirections(): Float64Array {
-    const { mesh, shape } = this;
+    const { shape, around } = this;
+    const { count } = shape;
+    let axes: Float64Array = shape.axis;
+    if (leastAngles(axes, count).some((angle) => angle < 0.05)) axes = evenDirections(count);
+    const least = leastAngles(axes, count);
+    const rims = count * (around + 1);
+    this.circles.length = 0;
+    for (let tube = 0; tube < count; tube++) this.circles.push(0.6 * Math.min(1, least[tube]!));
+    this.addSpread(axes, 0);
     const out = this.directions(0);
-    let v = 0;
-    for (let tube = 0; tube < shape.count; tube++) {
-      let least = 1;
-      for (let j = 0; j < shape.count; j++) {
-        if (j === tube) continue;
-        let dot = 0;
-        for (let k = 0; k < 3; k++) dot += shape.axis[3 * tube + k]! * shape.axis[3 * j + k]!;
-        least = Math.min(least, Math.acos(Math.max(-1, Math.min(1, dot))));
-      }
-      const c = Math.cos(0.4 * least);
-      const s = Math.sin(0.4 * least);
-      const apex = v++;
-      for (; v < mesh.vertices && mesh.kind[v] === RIM; v++) {
-        let square = 0;
-        const side = [0, 0, 0];
-        for (let k = 0; k < 3; k++) {
-          side[k] = mesh.position[3 * v + k]! - mesh.position[3 * apex + k]!;
-          square += side[k]! * side[k]!;
-        }
-        for (let k = 0; k < 3; k++) out[3 * v + k] = c * shape.axis[3 * tube + k]! + (s * side[k]!) / Math.sqrt(square);
+    for (let tube = 0, v = 0; tube < count; tube++) {
+      const c = Math.cos(0.4 * Math.min(1, least[tube]!));
+      const s = Math.sin(0.4 * Math.min(1, least[tube]!));
+      const [ux, uy, uz] = [axes[3 * tube]!, axes[3 * tube + 1]!, axes[3 * tube + 2]!];
+      const [ex, ey, ez] = squareTo(ux, uy, uz);
+      // Rings run counter-clockwise about the way from the root, which enters the node in its own tube.
+      const turn = tube === 0 ? -1 : 1;
+      out[3 * v] = ux;
+      out[3 * v + 1] = uy;
+      out[3 * v + 2] = uz;
+      v++;
+      for (let j = 0; j < around; j++, v++) {
+        const p = s * Math.cos((2 * Math.PI * j) / around);
+        const q = s * turn * Math.sin((2 * Math.PI * j) / around);
+        out[3 * v] = c * ux + p * ex + q * (uy * ez - uz * ey);
+        out[3 * v + 1] = c * uy + p * ey + q * (uz * ex - ux * ez);
+        out[3 * v + 2] = c * uz + p * ez + q * (ux * ey - uy * ex);
       }
     }
+    // Shaken like the others.
+    const shaken = this.directions(1);
+    for (let i = 0; i < 3 * rims; i++) out[i]! += 1e-7 * (shaken[i]! - 0.5);
     return out;
   }
 
-  private markCaps(): number {
-    const { mesh } = this;
+  /** Marks the triangles round the apexes; whether they are the fans over the rims and nothing else. */
+  private markCaps(): boolean {
+    const { mesh, around } = this;
     let caps = 0;
     for (let t = 0; t < mesh.triangles; t++) {
       if (mesh.from[3 * t]! < 0) continue;
-      for (let h = 3 * t; h < 3 * t + 3; h++) if (mesh.kind[mesh.from[h]!] === APEX) mesh.cap[t] = 1;
-      caps += mesh.cap[t]!;
+      for (let h = 3 * t; h < 3 * t + 3; h++) {
+        const apex = mesh.from[h]!;
+        if (mesh.kind[apex] !== APEX) continue;
+        // Rim corners follow their apex in mesh order.
+        const i = mesh.from[mesh.next(h)]! - apex - 1;
+        const j = mesh.from[mesh.previous(h)]! - apex - 1;
+        if (i < 0 || j < 0 || i >= around || j >= around) return false;
+        const step = (j - i + around) % around;
+        if (step !== 1 && step !== around - 1) return false;
+        mesh.cap[t] = 1;
+        caps++;
+      }
     }
-    return caps;
+    return caps === this.shape.count * around;
   }
 
   private emit(out: GrowingSurface, numbers: Int32Array, row: number, unit: number): void {
@@ -269,4 +309,40 @@ export class PatchBuilder {
       out.addTriangle(global[a]!, global[b]!, global[c]!, 0, numbers[this.vessel(row, tube)]!);
     }
   }
+}
+
+/** Angle from each of some unit vectors to the nearest other. */
+function leastAngles(axes: Float64Array, count: number): number[] {
+  return Array.from({ length: count }, (_, i) => {
+    let least = Math.PI;
+    for (let j = 0; j < count; j++) {
+      if (j === i) continue;
+      let dot = 0;
+      for (let k = 0; k < 3; k++) dot += axes[3 * i + k]! * axes[3 * j + k]!;
+      least = Math.min(least, Math.acos(Math.max(-1, Math.min(1, dot))));
+    }
+    return least;
+  });
+}
+
+/** Directions spread evenly by the golden angle. */
+function evenDirections(count: number): Float64Array {
+  const out = new Float64Array(3 * count);
+  for (let i = 0; i < count; i++) {
+    const z = 1 - (2 * i + 1) / count;
+    const r = Math.sqrt(1 - z * z);
+    const angle = i * Math.PI * (3 - Math.sqrt(5));
+    out[3 * i] = r * Math.cos(angle);
+    out[3 * i + 1] = r * Math.sin(angle);
+    out[3 * i + 2] = z;
+  }
+  return out;
+}
+
+/** A unit vector square to another. */
+function squareTo(x: number, y: number, z: number): [number, number, number] {
+  const [ax, ay] = Math.abs(x) < 0.6 ? [1 - x * x, -x * y] : [-x * y, 1 - y * y];
+  const az = Math.abs(x) < 0.6 ? -x * z : -y * z;
+  const scale = 1 / Math.sqrt(ax * ax + ay * ay + az * az);
+  return [ax * scale, ay * scale, az * scale];
 }

@@ -182,6 +182,17 @@ export class JunctionShape {
     this.gz = gz;
   }
 
+  /** Where the axis of a tube leaves the tubes that are wider; 0 for the widest. */
+  leaves(tube: number): number {
+    this.lookAt(this.axis[3 * tube]!, this.axis[3 * tube + 1]!, this.axis[3 * tube + 2]!);
+    let s = 0;
+    for (let j = 0; j < this.count; j++) {
+      if (j === tube || this.radius[j]! <= this.radius[tube]!) continue;
+      s = Math.max(s, this.radius[j]! / Math.max(this.distance(j), 1e-9));
+    }
+    return s;
+  }
+
   /**
    * Moves the point to the wall and leaves the gradient there in gx, gy, gz.
    *

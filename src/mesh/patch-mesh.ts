@@ -46,6 +46,11 @@ export class PatchMesh {
     this.freeCount = 0;
   }
 
+  /** Triangles that are there: about twice the vertices. */
+  get living(): number {
+    return this.triangles - this.freeCount;
+  }
+
   next(h: number): number {
     return h % 3 === 2 ? h - 2 : h + 1;
   }

@@ -85,17 +85,39 @@ export class Remesher {
     this.cycle();
   }
 
-  /** Ends the work; returns the worst score of the patch. */
-  finish(): number {
+  /**
+   * Ends the work; returns the worst score of the patch.
+   *
+   * @param around corners of a rim; rims and their apexes come first among the vertices
+   */
+  finish(around: number): number {
     const { mesh } = this;
     this.flipAll();
     for (let pass = 0; pass < 3 && this.splitLong() > 0; pass++) this.flipAll();
-    for (let pass = 0; pass < 8; pass++) if (this.mendPoor() === 0) break;
+    if (this.countPoor() < 50 + 0.1 * mesh.living) {
+      for (let pass = 0; pass < 8; pass++) if (this.mendPoor() === 0) break;
+    }
+    this.splitChords(around);
     let worst = 1;
     for (let t = 0; t < mesh.triangles; t++) {
       if (mesh.from[3 * t]! >= 0 && mesh.cap[t] === 0 && mesh.score[t]! < worst) worst = mesh.score[t]!;
     }
     return worst;
+  }
+
+  /**
+   * Splits edges that join two corners of one rim across the wall. In a good patch there are none; in a bad one the
+   * patch beyond the rim might have the same, and the surface would have an edge of four triangles.
+   */
+  private splitChords(around: number): void {
+    const { mesh } = this;
+    const end = 3 * mesh.triangles;
+    for (let h = 0; h < end; h++) {
+      const a = mesh.from[h]!;
+      if (a < 0 || mesh.kind[a] !== RIM || mesh.twin[h]! < h || mesh.locked(h)) continue;
+      const b = mesh.from[mesh.twin[h]!]!;
+      if (mesh.kind[b] === RIM && Math.floor(a / (around + 1)) === Math.floor(b / (around + 1))) this.splitAt(h);
+    }
   }
 
   private cycle(): void {
@@ -109,11 +131,11 @@ export class Remesher {
   }
 
   private splitLong(): number {
-    const { mesh, shape } = this;
+    const { mesh } = this;
     let splits = 0;
     const long = this.patch.star ? this.coarse : LONG;
     const end = 3 * mesh.triangles;
-    for (let h = 0; h < end && mesh.vertices < this.most; h++) {
+    for (let h = 0; h < end && mesh.living < 2 * this.most && mesh.vertices < 6 * this.most; h++) {
       const a = mesh.from[h]!;
       if (a < 0) continue;
       const t = mesh.twin[h]!;
@@ -122,13 +144,18 @@ export class Remesher {
       const size = 0.5 * (mesh.size[a]! + mesh.size[b]!);
       const square = mesh.squaredLength(a, b);
       if (square < long * long * size * size) continue;
-      this.patch.project(a, b);
-      const m = mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeHere(), FREE);
-      mesh.split(h, m);
-      this.patch.rescoreStar(m);
+      this.splitAt(h);
       splits++;
     }
     return splits;
+  }
+
+  private splitAt(h: number): void {
+    const { mesh, shape } = this;
+    this.patch.project(mesh.from[h]!, mesh.from[mesh.twin[h]!]!);
+    const m = mesh.addVertex(shape.x, shape.y, shape.z, shape.edgeHere(), FREE);
+    mesh.split(h, m);
+    this.patch.rescoreStar(m);
   }
 
   /** Flips edges until none gains, looking only where a triangle has changed since it was last looked at. */
@@ -221,6 +248,15 @@ export class Remesher {
     this.shape.z = z + 0.9 * dz;
     this.patch.limit = Math.min(worst, GOOD);
     return this.patch.move(v);
+  }
+
+  /** Triangles of small angle. A sound patch has a few; where a tenth are, nothing helps. */
+  private countPoor(): number {
+    const { mesh } = this;
+    let poor = 0;
+    for (let t = 0; t < mesh.triangles; t++)
+      if (mesh.from[3 * t]! >= 0 && mesh.cap[t] === 0 && mesh.score[t]! < POOR) poor++;
+    return poor;
   }
 
   /** Works on the triangles of small angle: flips, collapses, then small moves that raise the worst angle of a star. */

@@ -97,7 +97,7 @@ export class ThinTubes {
       const ux = shape.axis[3 * i]!;
       const uy = shape.axis[3 * i + 1]!;
       const uz = shape.axis[3 * i + 2]!;
-      const s = this.leaves(i);
+      const s = shape.leaves(i);
       for (let v = 0; v < mesh.vertices; v++) {
         if (mesh.kind[v] !== FREE) continue;
         shape.lookAt(p[3 * v]!, p[3 * v + 1]!, p[3 * v + 2]!);
@@ -121,18 +121,6 @@ export class ThinTubes {
       shape.radius[i] = r;
       shape.edge[i] = (this.edge[i]! * r) / this.radius[i]!;
     }
-  }
-
-  /** Where the axis of a tube leaves the tubes that are wider. */
-  private leaves(tube: number): number {
-    const { shape } = this;
-    shape.lookAt(shape.axis[3 * tube]!, shape.axis[3 * tube + 1]!, shape.axis[3 * tube + 2]!);
-    let s = 0;
-    for (let j = 0; j < shape.count; j++) {
-      if (j === tube || shape.radius[j]! <= shape.radius[tube]!) continue;
-      s = Math.max(s, shape.radius[j]! / Math.max(shape.distance(j), 1e-9));
-    }
-    return s;
   }
 
   private placeRims(mesh: PatchMesh): void {

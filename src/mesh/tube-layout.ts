@@ -1,6 +1,8 @@
+import { inputError } from '../core/errors.ts';
 import type { Children } from '../tree/children.ts';
 import type { Forest } from '../tree/forest.ts';
-import { tubeLength } from '../tree/vessels.ts';
+import { tubeLength, vesselOfRow } from '../tree/vessels.ts';
+
 import type { JunctionShape } from './junction-shape.ts';
 import type { LumenProblem } from './lumen.ts';
 
@@ -20,6 +22,8 @@ export interface TubeLayout {
   readonly side: Float64Array;
   /** (n) m, radius of the rings' corners: their polygons have the area of the vessel's circle. */
   readonly corner: Float64Array;
+  /** (n) 1 at nodes one of whose vessels is too short for its junctions. */
+  readonly tight: Uint8Array;
   /** Edge length wanted in junction patches over the corner radius of the tube it lies on. */
   readonly edge: number;
 }
@@ -66,6 +70,7 @@ export function loadShape(
  * patch; the patch takes what it needs, and a little more where there is room.
  *
  * @param spacing axial distance of rings over the corner radius
+ * @throws InputError for a vessel of no length
  */
 export function layOutTubes(
   forest: Forest,
@@ -86,6 +91,12 @@ export function layOutTubes(
   const corner = new Float64Array(n);
   for (let i = 0; i < n; i++) {
     length[i] = tubeLength(forest, i);
+    if (forest.parent[i]! >= 0 && !(length[i]! > 0))
+      throw inputError(
+        'no-length',
+        `vessel ${vesselOfRow(forest, i)}`,
+        'got a vessel of no length, expected two places apart',
+      );
     corner[i] = ratio * forest.radius[i]!;
     const parent = forest.parent[i]!;
     if (parent < 0) continue;
@@ -104,16 +115,19 @@ export function layOutTubes(
     for (let tube = 0; tube < shape.count; tube++) {
       const vessel = tube === 0 ? row : children.list[children.start[row]! + tube - 1]!;
       const end = tube === 0 ? 1 : 0;
-      const clear = shape.clearAlong(tube, false);
+      // Parallel tubes are never clear of each other: more than any length.
+      const most = (2 * length[vessel]!) / unit;
+      const clear = Math.min(most, shape.clearAlong(tube, false));
       const strip = 0.6 * shape.edge[tube]!;
       need[end][vessel] = unit * clear;
       nice[end][vessel] = unit * (clear + strip);
-      want[end][vessel] = unit * (shape.clearAlong(tube, true) + strip);
+      want[end][vessel] = unit * (Math.min(most, shape.clearAlong(tube, true)) + strip);
     }
   }
   const first = new Float64Array(n);
   const last = new Float64Array(n);
   const strips = new Int32Array(n);
+  const tight = new Uint8Array(n);
   for (let i = 0; i < n; i++) {
     if (forest.parent[i]! < 0) continue;
     const chordHere = chord * corner[i]!;
@@ -129,8 +143,12 @@ export function layOutTubes(
       near = from[0][i]! + share * (near - from[0][i]!);
       far = from[1][i]! + share * (far - from[1][i]!);
       if (!(least < total)) {
-        near *= total / least;
-        far = total - near;
+        near = total * (need[1][i]! > 0 ? need[0][i]! / least : 0.9);
+        far = need[0][i]! > 0 ? total - near : 0.9 * total;
+        if (need[1][i] === 0) far = 0;
+        if (need[0][i] === 0) near = 0;
+        tight[i] = 1;
+        tight[forest.parent[i]!] = 1;
         problems.push({
           row: i,
           why: `length ${total} m, but the junctions at its ends need ${least} m: they run into each other`,
@@ -140,8 +158,8 @@ export function layOutTubes(
     const rootEnd = forest.parent[forest.parent[i]!]! < 0;
     const openEnd = children.start[i] === children.start[i + 1];
     // A cap needs a strip of its own, not too low.
-    if (openEnd) near = Math.max(need[0][i]!, Math.min(near, total - 0.7 * chordHere));
-    if (rootEnd) far = Math.max(need[1][i]!, Math.min(far, total - near - 0.7 * chordHere));
+    if (openEnd && least < total) near = Math.max(need[0][i]!, Math.min(near, total - 0.7 * chordHere));
+    if (rootEnd && least < total) far = Math.max(need[1][i]!, Math.min(far, total - near - 0.7 * chordHere));
     const rest = total - near - far;
     let count = Math.ceil(rest / (spacing * corner[i]!) - 1e-9);
     // A strip lower than half an edge would have flat triangles: the two patches then share a ring.
@@ -153,14 +171,18 @@ export function layOutTubes(
     first[i] = near;
     last[i] = total - far;
     strips[i] = count;
-    if ((rootEnd || openEnd) && total - need[0][i]! - need[1][i]! < 2 * forest.radius[i]! * (1 - 1e-9)) {
+    if (
+      (rootEnd || openEnd) &&
+      least < total &&
+      total - need[0][i]! - need[1][i]! < 2 * forest.radius[i]! * (1 - 1e-9)
+    ) {
       problems.push({
         row: i,
         why: `straight run before its cap is ${total - need[0][i]! - need[1][i]!} m, wanted two radii, ${2 * forest.radius[i]!} m`,
       });
     }
   }
-  return { first, last, strips, length, axis, side, corner, edge };
+  return { first, last, strips, tight, length, axis, side, corner, edge };
 }
 
 /** Sets a unit vector square to an axis: the coordinate direction that leans on it least, straightened. */

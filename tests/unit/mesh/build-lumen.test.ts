@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { InputError } from '../../../src/core/errors.ts';
+import { randomStream } from '../../../src/core/random.ts';
 import { buildLumen, type LumenOptions } from '../../../src/mesh/build-lumen.ts';
 import type { LumenMesh } from '../../../src/mesh/lumen.ts';
 import type { Forest } from '../../../src/tree/forest.ts';
@@ -252,6 +253,44 @@ describe('buildLumen', () => {
       [1, 8e-3, 2.5e-3, 0, 1e-3],
     ]);
     expect(mesh.problems.some((problem) => problem.why.startsWith('straight run before its cap'))).toBe(true);
+  });
+
+  it('closes the surface of any tree, however its vessels run into each other, and says so', () => {
+    let strained = 0;
+    for (let seed = 0; seed < 24; seed++) {
+      const random = randomStream(`tangle ${seed}`, 'lumen');
+      const sketch: (readonly [number, number, number, number, number])[] = [[-1, 0, 0, 0, 0.1]];
+      for (let k = 1; k < 9; k++) {
+        const at = (): number => 3 * random.next();
+        const parent = k === 1 ? 0 : 1 + Math.floor(random.next() * (k - 1));
+        sketch.push([parent, at(), at(), at(), 0.02 + 0.3 * random.next()]);
+      }
+      const mesh = buildLumen(sketchForest(sketch), { around: 8 });
+      expect(judgeTopology(mesh)).toMatchObject({ openEdges: 0, misoriented: 0, components: 1, euler: 2 });
+      if (mesh.problems.length > 0) strained++;
+      else expect(judgeAngle(mesh)).toBeGreaterThanOrEqual(15);
+    }
+    expect(strained).toBeGreaterThan(3);
+  });
+
+  it('joins two daughters that leave along one line as well as can be', () => {
+    const { mesh } = build([
+      [-1, 0, 0, 0, 1e-3],
+      [0, 6e-3, 0, 0, 1e-3],
+      [1, 12e-3, 0, 0, 0.5e-3],
+      [1, 14e-3, 0, 0, 0.5e-3],
+    ]);
+    expect(mesh.problems.length).toBeGreaterThan(0);
+    expect(judgeTopology(mesh)).toMatchObject({ openEdges: 0, misoriented: 0, components: 1, euler: 2 });
+  });
+
+  it('refuses a vessel of no length', () => {
+    const sketch: Sketch = [
+      [-1, 0, 0, 0, 1e-3],
+      [0, 6e-3, 0, 0, 1e-3],
+      [1, 6e-3, 0, 0, 1e-3],
+    ];
+    expect(() => build(sketch)).toThrow('vessel 1: got a vessel of no length, expected two places apart');
   });
 
   it('refuses options out of range', () => {
