@@ -153,6 +153,8 @@ export class Grower {
    * until a sizing breaks nothing; in the last round what does not fit is dropped for good.
    */
   finish(): Stopped {
+    // What is still out of reach after two calm rounds stays so, for all that a third might find one more.
+    let patience = 2;
     for (let round = 0; ; round++) {
       if (this.watch.signal?.aborted) return 'cancelled';
       if (this.cramped) return 'no-room';
@@ -162,7 +164,7 @@ export class Grower {
       const evicted = this.settleAll(again);
       // A node that was moved has changed lengths, and with them radii: only a sizing that changes nothing is the last.
       const calm = evicted === 0 && this.mended === moved;
-      if ((calm && (this.served === this.wanted || !again)) || round >= MOST_ROUNDS) break;
+      if ((calm && (this.served === this.wanted || !again || patience === 0)) || round >= MOST_ROUNDS) break;
       if (!again) continue;
       const before = this.served;
       if (round < ROUNDS / 2) {
@@ -174,6 +176,7 @@ export class Grower {
       }
       if (this.grow('proof') === 'cancelled') return 'cancelled';
       if (calm && this.served === before) break;
+      if (calm) patience--;
     }
     return this.served === this.wanted ? 'complete' : 'no-room';
   }

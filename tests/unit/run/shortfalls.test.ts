@@ -52,12 +52,12 @@ describe('what cannot be served', () => {
   });
 
   it('tells how many of a count found no room', () => {
-    const result = growRun(box({ count: 400 }, { clearance: { gap_um: 1500 } }), new Map());
+    const result = growRun(box({ count: 60 }, { clearance: { gap_um: 3000 } }), new Map());
     expect(result.stopped).toBe('no-room');
     expect(result.check.held).toBe(false);
     expect(result.check.promises.filter((promise) => promise.held === false).map((promise) => promise.id)).toEqual([
       'terminals',
     ]);
-    expect(result.shortfalls[0]).toMatch(/serves \d+ of the 400 terminals/);
+    expect(result.shortfalls[0]).toMatch(/serves \d+ of the 60 terminals/);
   });
 });
