@@ -1,14 +1,10 @@
 import type { Watch } from '../core/progress.ts';
-import { randomStream } from '../core/random.ts';
-import { rootOf } from '../physics/junction.ts';
-import { fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
+import { fixedInletRadius } from '../sizing/size-tree.ts';
 import type { Spec, TreeSpec } from '../spec/types.ts';
-import { createSites } from '../tissue/sites.ts';
-import { spacedSites } from '../tissue/spaced-sites.ts';
 import type { Tissue } from '../tissue/tissue.ts';
-import { Demand } from './demand.ts';
+import type { Demand } from './demand.ts';
+import { demandOf } from './demand-of.ts';
 import { firstGuess, Grower, SPARE, type Stopped } from './grower.ts';
-import { farthestFirst } from './point-order.ts';
 
 /** Terminals of the small tree that is grown first where radii depend on the tree's lengths; a twentieth if that is more. */
 const REHEARSAL = 200;
@@ -70,44 +66,4 @@ function rehearse(spec: Spec, tissue: Tissue, unknown: readonly boolean[], salt:
 
 function wantedBy(tree: TreeSpec, demand: Demand): number {
   return tree.terminals.by === 'count' ? tree.terminals.count : Math.max(demand.siteCount, demand.wanted);
-}
-
-/**
- * What one tree has to serve.
- *
- * @param most for a rehearsal: at most so many terminals
- */
-function demandOf(
-  spec: Spec,
-  tree: TreeSpec,
-  index: number,
-  tissue: Tissue,
-  guess: readonly number[] | null,
-  salt: number,
-  first: readonly number[],
-  most: number,
-): Demand {
-  const { terminals } = tree;
-  const random = randomStream(spec.seed, `sites ${index}`);
-  const exponent = junctionExponent(spec);
-  const radiusOf = (count: number) => {
-    const fixed = fixedInletRadius(spec, tree, count);
-    return (Number.isNaN(fixed) ? guess![index]! : fixed) / rootOf(count, exponent);
-  };
-  if (terminals.by === 'count') {
-    const wanted = Math.min(terminals.count, most);
-    return new Demand('count', wanted, createSites(tissue, random), null, null, 1.05 * radiusOf(terminals.count));
-  }
-  if (terminals.by === 'spacing') {
-    const count = Math.max(1, tissue.volume / (terminals.spacing * terminals.spacing * terminals.spacing));
-    const sites = spacedSites(tissue, random, terminals.spacing, 1.05 * radiusOf(count));
-    return new Demand('spacing', Math.min(sites.length / 3, most), null, sites, null, 0);
-  }
-  const order = farthestFirst(tree, salt === 0 ? null : randomStream(spec.seed, `points ${index} ${salt}`), first);
-  const list = new Float64Array(3 * order.length);
-  const share = order.map((k) => terminals.share[k]!);
-  order.forEach((k, i) => {
-    list.set(terminals.points[k]!, 3 * i);
-  });
-  return new Demand('points', Math.min(order.length, most), null, list, share, 0);
 }
