@@ -1,5 +1,5 @@
+import { straighten } from '../moves/straighten.ts';
 import type { Room } from '../room/room.ts';
-import { straighten } from '../room/straighten.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 
 /**

@@ -1,12 +1,12 @@
 import { inputError } from '../core/errors.ts';
 import type { Watch } from '../core/progress.ts';
+import { Attacher } from '../moves/attach.ts';
+import { straighten } from '../moves/straighten.ts';
 import { Room } from '../room/room.ts';
-import { straighten } from '../room/straighten.ts';
 import { askedDrop, fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
 import type { Spec } from '../spec/types.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { ForestBuilder } from '../tree/builder.ts';
-import { Attacher } from './attach.ts';
 import type { Demand } from './demand.ts';
 import { evict } from './evict.ts';
 import { mendByMoving } from './mend.ts';

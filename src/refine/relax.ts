@@ -1,7 +1,7 @@
 import type { Watch } from '../core/progress.ts';
+import { straighten } from '../moves/straighten.ts';
 import { fermatPoint } from '../physics/fermat.ts';
 import type { Room } from '../room/room.ts';
-import { straighten } from '../room/straighten.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 
 export interface RelaxOptions extends Watch {

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { randomStream } from '../../../src/core/random.ts';
-import { Attacher } from '../../../src/growth/attach.ts';
+import { Attacher } from '../../../src/moves/attach.ts';
 import { Room } from '../../../src/room/room.ts';
 import { buildTissue } from '../../../src/tissue/build-tissue.ts';
 import { createSites } from '../../../src/tissue/sites.ts';

@@ -1,5 +1,5 @@
+import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
-import type { Room } from './room.ts';
 
 /** Takes a bend out where the straight vessel fits; true if it is gone. */
 export function straighten(builder: ForestBuilder, room: Room, node: number): boolean {
