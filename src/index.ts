@@ -13,7 +13,7 @@ export type { Progress, Watch } from './core/progress.ts';
 export type { TriangleSurface } from './core/surface.ts';
 export { fromSi, toSi, UNITS, type Unit } from './core/units.ts';
 export { decodeTree } from './formats/decode-tree.ts';
-export type { DecodedTree, NamedBytes, TreeFormat } from './formats/format.ts';
+export type { ByteSource, DecodedTree, NamedBytes, TreeFormat } from './formats/format.ts';
 export { MESH_UNITS, type MeshUnit } from './formats/mesh/length-unit.ts';
 export { decodeSurface } from './formats/surface/surface-formats.ts';
 export { splitTreePath, TREE_FORMATS } from './formats/tree-formats.ts';

@@ -6,10 +6,22 @@ export interface NamedBytes {
   readonly bytes: Uint8Array;
 }
 
+/** A file that is read where it lies, part by part, because it may be larger than one wants to hold. */
+export interface ByteSource {
+  readonly name: string;
+  /** Bytes. */
+  readonly size: number;
+  /** Fills `out` with the bytes from a place on; there are as many left. `out` is the caller's to keep. */
+  readInto(from: number, out: Uint8Array): void;
+}
+
 /** One file that an encoder made: what its name ends in, and content. */
 export interface EncodedFile {
   readonly suffix: string;
+  /** The whole file. */
   readonly bytes: Uint8Array;
+  /** The file piece by piece where it may be large: `bytes` is then put together when it is asked for. */
+  readonly pieces?: Iterable<Uint8Array> | undefined;
 }
 
 /** A tree read from elsewhere, and what had to be supplied or left out. */
@@ -51,4 +63,10 @@ export interface TreeFormat {
    * @throws InputError naming every place that is broken
    */
   decode(files: readonly NamedBytes[]): DecodedTree;
+  /**
+   * The same of a file that is read part by part; formats of one file that may be large have it.
+   *
+   * @throws InputError naming every place that is broken
+   */
+  readonly decodeSource?: ((source: ByteSource) => DecodedTree) | undefined;
 }

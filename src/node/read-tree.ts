@@ -11,6 +11,7 @@ import {
   type TreeFormat,
   type TreeRecord,
 } from '../index.ts';
+import { withSource } from './large-files.ts';
 import { readSurfaces, type SpecFiles } from './read-spec.ts';
 import { readBytes, withFiles } from './system-faults.ts';
 
@@ -22,7 +23,7 @@ export interface TreeFiles {
   readonly run: boolean;
   /** Folder of the tree file. */
   readonly folder: string;
-  /** Names and bytes of the files read. */
+  /** Names of the files read; their bytes are read again where they were not kept. */
   readonly files: readonly { readonly name: string; readonly bytes: Uint8Array }[];
   readonly format: TreeFormat;
   readonly record: TreeRecord;
@@ -46,12 +47,26 @@ export function readTree(path: string): TreeFiles {
     throw inputError('file', path, `got ${held}, expected ${wanted}`);
   }
   const { format, files } = existsSync(file) ? splitTreePath(file, path) : splitMissing(file, path, wanted);
+  const folder = dirname(resolve(file));
+  const only = files.length === 1 ? files[0]! : null;
+  const { decodeSource } = format;
+  if (only !== null && decodeSource !== undefined && existsSync(only) && statSync(only).isFile()) {
+    const name = basename(only);
+    const { record, notes } = withFiles(path, only, wanted, () => withSource(only, name, decodeSource));
+    const again = {
+      name,
+      get bytes() {
+        return readBytes(path, only, wanted);
+      },
+    };
+    return { path, run, folder, files: [again], format, record, notes };
+  }
   const parts = files.map((part) => ({
     name: basename(part),
     bytes: readBytes(path, part, wanted),
   }));
   const { record, notes } = format.decode(parts);
-  return { path, run, folder: dirname(resolve(file)), files: parts, format, record, notes };
+  return { path, run, folder, files: parts, format, record, notes };
 }
 
 /** Takes apart a path where nothing lies; only a format of several files may have them beside it. */

@@ -64,8 +64,9 @@ export function writeRun(
 
 function runFiles(record: TreeRecord, report: Report, surfaces: ReadonlyMap<string, Uint8Array>): OutFile[] {
   const { format } = splitTreePath('tree.vtp', 'tree.vtp');
+  const tree = format.encode(record)[0]!;
   return [
-    { name: 'tree.vtp', content: format.encode(record)[0]!.bytes },
+    { name: 'tree.vtp', content: tree.pieces ?? tree.bytes },
     { name: 'spec.json', content: record.provenance ?? '' },
     { name: 'report.json', content: `${JSON.stringify(report, null, 2)}\n` },
     { name: 'report.html', content: renderReport(report) },

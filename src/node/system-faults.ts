@@ -1,5 +1,6 @@
-import { readFileSync } from 'node:fs';
+import { readFileSync, statSync } from 'node:fs';
 import { type InputError, inputError } from '../index.ts';
+import { readAll } from './large-files.ts';
 
 /** What the system said, in words that tell the user what to do. */
 const WORDS: Readonly<Record<string, string>> = {
@@ -54,6 +55,9 @@ function systemFault(error: NodeJS.ErrnoException, where: string, path: string, 
  * @throws InputError where the system refuses
  */
 export function readBytes(where: string, path: string, wanted: string, at = path): Uint8Array {
-  const buffer = withFiles(where, path, wanted, () => readFileSync(at));
-  return new Uint8Array(buffer.buffer, buffer.byteOffset, buffer.length);
+  return withFiles(where, path, wanted, () => {
+    if (statSync(at).isFile()) return readAll(at);
+    const buffer = readFileSync(at);
+    return new Uint8Array(buffer.buffer, buffer.byteOffset, buffer.length);
+  });
 }

@@ -1,13 +1,14 @@
-import { existsSync, renameSync, rmSync, statSync, writeFileSync } from 'node:fs';
+import { existsSync, renameSync, rmSync, statSync } from 'node:fs';
 import { resolve } from 'node:path';
 import { inputError } from '../index.ts';
+import { type Content, writeContent } from './large-files.ts';
 import { withFiles } from './system-faults.ts';
 import { clearStale, temporaryBeside, type WriteOptions, withParents } from './temporary.ts';
 
 /** A file and where it goes. */
 export interface PlacedFile {
   readonly path: string;
-  readonly content: Uint8Array | string;
+  readonly content: Content;
 }
 
 /**
@@ -38,7 +39,7 @@ export function writeFiles(files: readonly PlacedFile[], options: WriteOptions):
         options.temporary?.(temporary);
         made.push(temporary);
         try {
-          writeFileSync(temporary, file.content, { flush: true });
+          writeContent(temporary, file.content);
           writeFrom(k + 1);
         } finally {
           rmSync(temporary, { force: true });

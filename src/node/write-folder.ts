@@ -1,5 +1,6 @@
-import { existsSync, mkdirSync, renameSync, rmSync, writeFileSync } from 'node:fs';
+import { existsSync, mkdirSync, renameSync, rmSync } from 'node:fs';
 import { join, resolve } from 'node:path';
+import { type Content, writeContent } from './large-files.ts';
 import { type FolderKind, placeForFolder } from './out-folder.ts';
 import { withFiles } from './system-faults.ts';
 import { clearStale, temporaryBeside, type WriteOptions, withParents } from './temporary.ts';
@@ -8,7 +9,7 @@ import { clearStale, temporaryBeside, type WriteOptions, withParents } from './t
 export interface OutFile {
   /** Without folders. */
   readonly name: string;
-  readonly content: Uint8Array | string;
+  readonly content: Content;
 }
 
 /**
@@ -28,7 +29,7 @@ export function writeFolder(out: string, kind: FolderKind, files: readonly OutFi
       options.temporary?.(temporary);
       try {
         mkdirSync(temporary);
-        for (const { name, content } of files) writeFileSync(join(temporary, name), content, { flush: true });
+        for (const { name, content } of files) writeContent(join(temporary, name), content);
         putInPlace(temporary, place, options);
       } finally {
         rmSync(temporary, { recursive: true, force: true });

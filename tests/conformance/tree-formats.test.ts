@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { InputError } from '../../src/core/errors.ts';
 import { randomStream } from '../../src/core/random.ts';
-import type { NamedBytes, TreeFormat } from '../../src/formats/format.ts';
+import type { ByteSource, DecodedTree, NamedBytes, TreeFormat } from '../../src/formats/format.ts';
 import { splitTreePath, TREE_FORMATS } from '../../src/formats/tree-formats.ts';
 import type { TreeRecord } from '../../src/tree/forest.ts';
 import { ZOO } from '../support/tree-zoo.ts';
@@ -105,6 +105,19 @@ for (const format of TREE_FORMATS as readonly TreeFormat[]) {
       expect(refused).toBeGreaterThan(100);
     });
 
+    it('reads a file part by part as it reads it whole, faults and all', () => {
+      if (format.decodeSource === undefined) return;
+      const [file] = filesOf(format, ZOO['two trees, three children']!);
+      const { name, bytes } = file!;
+      const random = randomStream('sources', format.id);
+      for (let round = 0; round < 300; round++) {
+        const broken = bytes.slice(0, round % 3 === 0 ? Math.floor(random.next() * bytes.length) : bytes.length);
+        if (round > 0) broken[Math.floor(random.next() * broken.length)] = 256 * random.next();
+        const inParts = answerOf(() => format.decodeSource!(sourceOf(name, broken)));
+        expect(inParts).toEqual(answerOf(() => format.decode([{ name, bytes: broken }])));
+      }
+    });
+
     it('answers bytes changed at random with a tree or with faults that name the file', () => {
       const random = randomStream('formats', format.id);
       const files = filesOf(format, ZOO['one junction']!);
@@ -144,6 +157,21 @@ for (const format of TREE_FORMATS as readonly TreeFormat[]) {
       }
     });
   });
+}
+
+/** Bytes as a file that is read part by part. */
+function sourceOf(name: string, bytes: Uint8Array): ByteSource {
+  return { name, size: bytes.length, readInto: (from, out) => out.set(bytes.subarray(from, from + out.length)) };
+}
+
+/** What decoding gave, or the faults it found. */
+function answerOf(decode: () => DecodedTree): unknown {
+  try {
+    return decode();
+  } catch (error) {
+    if (!(error instanceof InputError)) throw error;
+    return error.faults;
+  }
 }
 
 /** 1 where the files were refused as they should be; fails on any other error. */

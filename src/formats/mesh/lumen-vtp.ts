@@ -1,6 +1,7 @@
 import { InvariantError } from '../../core/errors.ts';
 import type { LumenMesh } from '../../mesh/lumen.ts';
 import type { FlowField, Forest } from '../../tree/forest.ts';
+import { joinPieces } from '../vtk/data-set-writer.ts';
 import { encodePolyData, type NamedArray } from '../vtk/poly-data-writer.ts';
 import { type MeshUnit, positionsIn } from './length-unit.ts';
 
@@ -34,7 +35,7 @@ export function encodeLumenVtp(mesh: LumenMesh, forest: Forest, field: FlowField
     }
     pointData.push({ name: 'pressure_Pa', values: pressure }, { name: 'wall_shear_Pa', values: shear });
   }
-  return encodePolyData({
+  const encoded = encodePolyData({
     points: positionsIn(mesh.position, unit),
     polys: { connectivity: mesh.triangle, ends },
     pointData,
@@ -48,4 +49,5 @@ export function encodeLumenVtp(mesh: LumenMesh, forest: Forest, field: FlowField
       { name: 'patch_names', texts: names },
     ],
   });
+  return joinPieces(encoded);
 }

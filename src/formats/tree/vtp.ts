@@ -1,7 +1,7 @@
 import type { TreeFormat } from '../format.ts';
 import { openPolyData } from '../vtk/poly-data-reader.ts';
 import { encodePolyData } from '../vtk/poly-data-writer.ts';
-import { treeAsLines, treeOfLines } from './vtk-tree.ts';
+import { inPieces, treeAsLines, treeOfLines } from './vtk-tree.ts';
 
 export const VTP: TreeFormat = {
   id: 'vtp',
@@ -12,6 +12,7 @@ export const VTP: TreeFormat = {
   precision: 0,
   keeps: ['positions', 'radii', 'flows', 'tree index', 'tree names and kinds', 'orders', 'flow solution', 'provenance'],
   drops: [],
-  encode: (record) => [{ suffix: '.vtp', bytes: encodePolyData(treeAsLines(record)) }],
-  decode: (files) => treeOfLines(files[0]!, openPolyData),
+  encode: (record) => [inPieces('.vtp', encodePolyData(treeAsLines(record)))],
+  decode: (files) => treeOfLines(files[0]!.name, files[0]!.bytes, openPolyData),
+  decodeSource: (source) => treeOfLines(source.name, source, openPolyData),
 };

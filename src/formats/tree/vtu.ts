@@ -1,7 +1,7 @@
 import type { TreeFormat } from '../format.ts';
 import { openLineGrid } from '../vtk/unstructured-grid-reader.ts';
 import { encodeLineGrid } from '../vtk/unstructured-grid-writer.ts';
-import { treeAsLines, treeOfLines } from './vtk-tree.ts';
+import { inPieces, treeAsLines, treeOfLines } from './vtk-tree.ts';
 
 export const VTU: TreeFormat = {
   id: 'vtu',
@@ -12,6 +12,7 @@ export const VTU: TreeFormat = {
   precision: 0,
   keeps: ['positions', 'radii', 'flows', 'tree index', 'tree names and kinds', 'orders', 'flow solution', 'provenance'],
   drops: [],
-  encode: (record) => [{ suffix: '.vtu', bytes: encodeLineGrid(treeAsLines(record)) }],
-  decode: (files) => treeOfLines(files[0]!, openLineGrid),
+  encode: (record) => [inPieces('.vtu', encodeLineGrid(treeAsLines(record)))],
+  decode: (files) => treeOfLines(files[0]!.name, files[0]!.bytes, openLineGrid),
+  decodeSource: (source) => treeOfLines(source.name, source, openLineGrid),
 };

@@ -1,7 +1,8 @@
 import { decodeText } from '../../core/text.ts';
 import type { FaultList } from '../faults.ts';
+import type { ByteSource } from '../format.ts';
 import { parseReal } from '../text/numbers.ts';
-import { type BlockCoding, type Fail, readBase64Block, readBlock } from './blocks.ts';
+import { type BlockCoding, type Fail, type Pool, poolOf, readBase64Block, readBlock } from './blocks.ts';
 import { type Element, scanXml } from './xml.ts';
 
 const SIZES: Readonly<Record<string, number>> = {
@@ -38,7 +39,8 @@ export interface VtkFile {
  * @returns null after a fault
  * Source: VTK XML formats as documented by Kitware; offsets count from the byte after `_`.
  */
-export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): VtkFile | null {
+export function openVtk(content: Uint8Array | ByteSource, name: string, faults: FaultList): VtkFile | null {
+  const bytes = content instanceof Uint8Array ? content : readText(content);
   const root = scanXml(bytes, name, faults);
   if (root === null) return null;
   const attributes = root.attributes;
@@ -59,15 +61,15 @@ export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): Vtk
     faults.add('header-type', name, `got header_type ${header}, expected UInt32 or UInt64`);
   }
   const appended = root.children.find((child) => child.name === 'AppendedData');
-  let pool: Uint8Array | null = null;
+  let pool: Pool | null = null;
   if (appended !== undefined) {
     const encoding = appended.attributes.encoding ?? 'base64';
     const mark = bytes.indexOf(0x5f, appended.from);
     if (mark < 0) faults.add('appended', name, 'got appended data without the mark _ before it');
-    else if (encoding === 'raw') pool = bytes.subarray(mark + 1);
+    else if (encoding === 'raw') pool = poolOf(content, mark + 1);
     else if (encoding === 'base64') {
       const end = bytes.indexOf(0x3c, mark);
-      pool = bytes.subarray(mark + 1, end < 0 ? bytes.length : end);
+      pool = poolOf(bytes.subarray(0, end < 0 ? bytes.length : end), mark + 1);
     } else faults.add('appended', name, `got appended data encoded as ${encoding}, expected raw or base64`);
   }
   if (faults.count > 0) return null;
@@ -93,7 +95,7 @@ export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): Vtk
     }
     if (!base64) return readBlock(pool, offset, coding, fail);
     if (offset > pool.length) return fail('truncated', `starts at byte ${offset} of ${pool.length}`);
-    return readBase64Block(pool.subarray(offset), true, coding, fail);
+    return readBase64Block(pool.take(offset, pool.length - offset), true, coding, fail);
   };
   const isText = (array: Element): boolean => (array.attributes.format ?? 'ascii') === 'ascii';
   const numbers = (array: Element): Float64Array | null => {
@@ -106,10 +108,12 @@ export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): Vtk
     if (data === null) return null;
     if (data.length % size !== 0)
       return fault(array, 'length', `got ${data.length} bytes, expected a multiple of ${size}`);
-    // A copy puts the bytes where a typed array may look at them, and in this machine’s order; slice() of a Node Buffer is none.
-    const copy = new Uint8Array(data);
-    if (big !== IS_BIG) swapBytes(copy, size);
-    return widen(type, copy.buffer);
+    // A copy puts the bytes where a typed array may look at them, and in this machine’s order; slice() of a Node Buffer is
+    // none. Bytes that fill a buffer were read for this array alone: in a file its length stands before them.
+    const alone = data.byteOffset === 0 && data.length === data.buffer.byteLength;
+    const own = alone ? (data as Uint8Array<ArrayBuffer>) : new Uint8Array(data);
+    if (big !== IS_BIG) swapBytes(own, size);
+    return widen(type, own.buffer);
   };
   const texts = (array: Element): string[] | null => {
     let data: Uint8Array | null;
@@ -128,6 +132,19 @@ export function openVtk(bytes: Uint8Array, name: string, faults: FaultList): Vtk
     return list;
   };
   return { name, root, type: attributes.type ?? '', numbers, texts };
+}
+
+/** Most bytes of a file's start that are looked through for the mark of raw data. */
+const HEAD = 1 << 20;
+
+/** What stands before the raw data of a file, and a little of that; the whole file where its data is text. */
+function readText(source: ByteSource): Uint8Array {
+  const head = new Uint8Array(Math.min(source.size, HEAD));
+  source.readInto(0, head);
+  if (/<AppendedData[^>]*encoding\s*=\s*["']raw["'][^>]*>\s*_/.test(decodeText(head))) return head;
+  const whole = new Uint8Array(source.size);
+  source.readInto(0, whole);
+  return whole;
 }
 
 const IS_BIG = new Uint8Array(Uint32Array.of(1).buffer)[0] === 0;

@@ -1,3 +1,4 @@
+import type { ByteSource } from '../format.ts';
 import { decodeBase64 } from './base64.ts';
 import { unpackZlib } from './zlib.ts';
 
@@ -8,6 +9,31 @@ export interface BlockCoding {
   readonly headerSize: number;
   /** Whether data is packed by zlib. */
   readonly packed: boolean;
+}
+
+/** Bytes that hold the data of several arrays. */
+export interface Pool {
+  readonly length: number;
+  /** A view, or a buffer of its own; the bytes must be there. */
+  take(from: number, length: number): Uint8Array;
+}
+
+/** The bytes of a file from one on. */
+export function poolOf(content: Uint8Array | ByteSource, start: number): Pool {
+  if (content instanceof Uint8Array) {
+    return {
+      length: content.length - start,
+      take: (from, length) => content.subarray(start + from, start + from + length),
+    };
+  }
+  return {
+    length: content.size - start,
+    take: (from, length) => {
+      const out = new Uint8Array(length);
+      content.readInto(start + from, out);
+      return out;
+    },
+  };
 }
 
 /** Notes a fault of the array being read. */
@@ -21,7 +47,7 @@ export type Fail = (code: string, message: string) => null;
  * Source: VTK XML formats as documented by Kitware. Plain: `[bytes][data]`. Packed: `[blocks][bytes of a block][bytes of
  *         the last, 0: it is full][packed bytes of each block][blocks]`.
  */
-export function readBlock(bytes: Uint8Array, from: number, coding: BlockCoding, fail: Fail): Uint8Array | null {
+export function readBlock(bytes: Pool, from: number, coding: BlockCoding, fail: Fail): Uint8Array | null {
   if (coding.packed) return unpack(bytes, from, coding, fail);
   if (from + coding.headerSize > bytes.length) return cutShort(bytes, from, fail);
   const size = readWord(bytes, from, coding);
@@ -30,7 +56,7 @@ export function readBlock(bytes: Uint8Array, from: number, coding: BlockCoding, 
   if (size > left) {
     return fail('truncated', `should be ${size} bytes long, ${left} are left: the file is cut short`);
   }
-  return bytes.subarray(start, start + size);
+  return bytes.take(start, size);
 }
 
 /**
@@ -43,7 +69,9 @@ export function readBase64Block(text: Uint8Array, shared: boolean, coding: Block
   const own = shared ? ownText(text, coding, fail) : text;
   if (own === null) return null;
   const decoded = decodeBase64(own);
-  return decoded === null ? fail('base64', 'got text that is not base64') : readBlock(decoded, 0, coding, fail);
+  return decoded === null
+    ? fail('base64', 'got text that is not base64')
+    : readBlock(poolOf(decoded, 0), 0, coding, fail);
 }
 
 const inGroups = (count: number): number => 4 * Math.ceil(count / 3);
@@ -57,13 +85,13 @@ function ownText(text: Uint8Array, coding: BlockCoding, fail: Fail): Uint8Array 
   let headerBytes = coding.headerSize;
   const head = start(headerBytes);
   if (head === null) return null;
-  let size = readWord(head, 0, coding);
+  let size = readWord(poolOf(head, 0), 0, coding);
   if (coding.packed && size === 0) return text.subarray(0, inGroups(headerBytes));
   if (coding.packed) {
     headerBytes = (3 + size) * coding.headerSize;
-    if (inGroups(headerBytes) > text.length) return cutShort(text, 0, fail);
+    if (inGroups(headerBytes) > text.length) return cutShort(poolOf(text, 0), 0, fail);
     const whole = start(headerBytes);
-    const header = whole === null ? null : readPackedHeader(whole, 0, coding, fail);
+    const header = whole === null ? null : readPackedHeader(poolOf(whole, 0), 0, coding, fail);
     if (header === null) return null;
     size = header.packedSize;
   }
@@ -85,7 +113,7 @@ interface PackedHeader {
   readonly packedSize: number;
 }
 
-function readPackedHeader(bytes: Uint8Array, from: number, coding: BlockCoding, fail: Fail): PackedHeader | null {
+function readPackedHeader(bytes: Pool, from: number, coding: BlockCoding, fail: Fail): PackedHeader | null {
   const { headerSize } = coding;
   if (from + headerSize > bytes.length) return cutShort(bytes, from, fail);
   const blocks = readWord(bytes, from, coding);
@@ -112,7 +140,7 @@ function readPackedHeader(bytes: Uint8Array, from: number, coding: BlockCoding, 
 /** Deflate makes at most 258 bytes of 2 bits; a header that promises more is broken, and no reason to take memory. */
 const LARGEST_RATIO = 1032;
 
-function unpack(bytes: Uint8Array, from: number, coding: BlockCoding, fail: Fail): Uint8Array | null {
+function unpack(bytes: Pool, from: number, coding: BlockCoding, fail: Fail): Uint8Array | null {
   const header = readPackedHeader(bytes, from, coding, fail);
   if (header === null) return null;
   const { full, last, sizes, packedSize } = header;
@@ -134,7 +162,7 @@ function unpack(bytes: Uint8Array, from: number, coding: BlockCoding, fail: Fail
   const out = new Uint8Array(total);
   for (let k = 0, to = 0; k < blocks; k++) {
     const size = k === blocks - 1 ? last : full;
-    const problem = unpackZlib(bytes.subarray(at, at + sizes[k]!), out, to, size);
+    const problem = unpackZlib(bytes.take(at, sizes[k]!), out, to, size);
     if (problem !== null) return fail('packed', `block ${k} of ${blocks} ${problem}`);
     at += sizes[k]!;
     to += size;
@@ -142,11 +170,12 @@ function unpack(bytes: Uint8Array, from: number, coding: BlockCoding, fail: Fail
   return out;
 }
 
-function readWord(bytes: Uint8Array, at: number, coding: BlockCoding): number {
-  const view = new DataView(bytes.buffer, bytes.byteOffset + at, coding.headerSize);
+function readWord(bytes: Pool, at: number, coding: BlockCoding): number {
+  const word = bytes.take(at, coding.headerSize);
+  const view = new DataView(word.buffer, word.byteOffset, coding.headerSize);
   return coding.headerSize === 8 ? Number(view.getBigUint64(0, !coding.big)) : view.getUint32(0, !coding.big);
 }
 
-function cutShort(bytes: Uint8Array, from: number, fail: Fail): null {
+function cutShort(bytes: Pool, from: number, fail: Fail): null {
   return fail('truncated', `starts at byte ${from} of ${bytes.length}: the file is cut short`);
 }

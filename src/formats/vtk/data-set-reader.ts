@@ -1,4 +1,5 @@
 import type { FaultList } from '../faults.ts';
+import type { ByteSource } from '../format.ts';
 import { parseReal } from '../text/numbers.ts';
 import { openVtk, type VtkFile } from './array-reader.ts';
 import { childOf, type Element } from './xml.ts';
@@ -45,12 +46,12 @@ export interface LineData {
  * Source: VTK XML formats as documented by Kitware.
  */
 export function openPiece(
-  bytes: Uint8Array,
+  content: Uint8Array | ByteSource,
   name: string,
   type: 'PolyData' | 'UnstructuredGrid',
   faults: FaultList,
 ): Piece | null {
-  const file = openVtk(bytes, name, faults);
+  const file = openVtk(content, name, faults);
   if (file === null) return null;
   if (file.type !== type) {
     faults.add('type', name, `got VTK data of type ${file.type || '(none)'}, expected ${type}`);

@@ -1,11 +1,15 @@
 import { InvariantError } from '../../core/errors.ts';
 import { encodeText } from '../../core/text.ts';
 
+/** Numbers as they stand in a file. */
+export type Numbers = Float64Array | Float32Array | Int32Array | Uint8Array;
+
 /** A named array of numbers or of texts. */
 export type NamedArray =
   | {
       readonly name: string;
-      readonly values: Float64Array | Float32Array | Int32Array | Uint8Array;
+      /** All of it, or runs of one type that follow one another: what stands apart in memory need not be copied. */
+      readonly values: Numbers | readonly Numbers[];
       /** Numbers a tuple; 1 where left out. */
       readonly components?: number;
     }
@@ -20,7 +24,7 @@ export interface Cells {
 /** What every kind of data set has. */
 export interface DataSetParts {
   /** (3 points) */
-  readonly points: Float64Array;
+  readonly points: Numbers;
   readonly pointData: readonly NamedArray[];
   readonly cellData: readonly NamedArray[];
   readonly fieldData: readonly NamedArray[];
@@ -53,9 +57,9 @@ const TYPES = [
  * by 13 letters was enough for it to mistake arrays.
  *
  * Source: VTK XML formats as documented by Kitware.
- * Cost: O(bytes), one buffer of the final size.
+ * Cost: O(arrays); nothing is copied, so the parts must not change until the pieces are taken.
  */
-export function encodeDataSet(kind: DataSetKind, parts: DataSetParts): Uint8Array {
+export function encodeDataSet(kind: DataSetKind, parts: DataSetParts): EncodedDataSet {
   const cells = Object.entries(kind.cells);
   const points: NamedArray = { name: 'Points', values: parts.points, components: 3 };
   const arrays = [
@@ -65,16 +69,19 @@ export function encodeDataSet(kind: DataSetKind, parts: DataSetParts): Uint8Arra
     points,
     ...cells.flatMap(([, section]) => section),
   ];
-  const blocks = new Map<NamedArray, { readonly data: Uint8Array; readonly offset: number }>();
+  const blocks: { readonly length: number; readonly runs: readonly Uint8Array[] }[] = [];
+  const offsets = new Map<NamedArray, number>();
   let size = 0;
   for (const array of arrays.toReversed()) {
-    const data = 'texts' in array ? joinTexts(array.texts) : littleEndian(array.values);
-    blocks.set(array, { data, offset: size });
-    size += 8 + data.length;
+    const runs = 'texts' in array ? [joinTexts(array.texts)] : runsOf(array.values).map(littleEndian);
+    const length = runs.reduce((sum, run) => sum + run.length, 0);
+    blocks.push({ length, runs });
+    offsets.set(array, size);
+    size += 8 + length;
   }
   const section = (tag: string, list: readonly NamedArray[], indent: string): string => {
     if (list.length === 0) return '';
-    const lines = list.map((array) => `${indent}  ${declare(array, blocks.get(array)!.offset)}\n`);
+    const lines = list.map((array) => `${indent}  ${declare(array, offsets.get(array)!)}\n`);
     return `${indent}<${tag}>\n${lines.join('')}${indent}</${tag}>\n`;
   };
   const counts = Object.entries({ NumberOfPoints: parts.points.length / 3, ...kind.counts });
@@ -89,16 +96,33 @@ export function encodeDataSet(kind: DataSetKind, parts: DataSetParts): Uint8Arra
     section('Points', [points], '      ') +
     cells.map(([tag, list]) => section(tag, list, '      ')).join('') +
     `    </Piece>\n  </${kind.type}>\n  <AppendedData encoding="raw">\n   _`;
-  const tail = encodeText('\n  </AppendedData>\n</VTKFile>\n');
   const start = encodeText(head);
-  const bytes = new Uint8Array(start.length + size + tail.length);
-  const view = new DataView(bytes.buffer);
-  bytes.set(start);
-  for (const { data, offset } of blocks.values()) {
-    view.setBigUint64(start.length + offset, BigInt(data.length), true);
-    bytes.set(data, start.length + offset + 8);
+  const tail = encodeText('\n  </AppendedData>\n</VTKFile>\n');
+  const pieces: Uint8Array[] = [start];
+  for (const { length, runs } of blocks) {
+    const header = new Uint8Array(8);
+    new DataView(header.buffer).setBigUint64(0, BigInt(length), true);
+    pieces.push(header, ...runs);
   }
-  bytes.set(tail, start.length + size);
+  pieces.push(tail);
+  return { size: start.length + size + tail.length, pieces };
+}
+
+/** A file piece by piece; its arrays are looked at where they stand. */
+export interface EncodedDataSet {
+  /** Bytes of the whole. */
+  readonly size: number;
+  readonly pieces: readonly Uint8Array[];
+}
+
+/** The whole file. Cost: O(bytes), one buffer of the final size. */
+export function joinPieces({ size, pieces }: EncodedDataSet): Uint8Array {
+  const bytes = new Uint8Array(size);
+  let at = 0;
+  for (const piece of pieces) {
+    bytes.set(piece, at);
+    at += piece.length;
+  }
   return bytes;
 }
 
@@ -109,25 +133,31 @@ export function joinTexts(texts: readonly string[]): Uint8Array {
 
 function declare(array: NamedArray, offset: number): string {
   const text = 'texts' in array;
-  let attributes = `type="${text ? 'String' : typeOf(array.values)}" Name="${escapeText(array.name)}"`;
+  const runs = text ? [] : runsOf(array.values);
+  let attributes = `type="${text ? 'String' : typeOf(runs)}" Name="${escapeText(array.name)}"`;
   const components = text ? 1 : (array.components ?? 1);
   if (components > 1) attributes += ` NumberOfComponents="${components}"`;
   // Field arrays have no length but what they state; elsewhere the attribute does no harm.
-  attributes += ` NumberOfTuples="${(text ? array.texts.length : array.values.length) / components}"`;
+  attributes += ` NumberOfTuples="${(text ? array.texts.length : runs.reduce((sum, run) => sum + run.length, 0)) / components}"`;
   return `<${text ? 'Array' : 'DataArray'} ${attributes} format="appended" offset="${offset}"/>`;
 }
 
 const IS_LITTLE = new Uint8Array(Uint32Array.of(1).buffer)[0] === 1;
 
 /** The bytes of an array without a copy, which is what every machine that runs this has. */
-function littleEndian(values: Float64Array | Float32Array | Int32Array | Uint8Array): Uint8Array {
+function littleEndian(values: Numbers): Uint8Array {
   if (!IS_LITTLE) throw new InvariantError('encodeDataSet: this machine stores numbers with the high byte first');
   return new Uint8Array(values.buffer, values.byteOffset, values.byteLength);
 }
 
-function typeOf(values: Float64Array | Float32Array | Int32Array | Uint8Array): string {
-  for (const [type, name] of TYPES) if (values instanceof type) return name;
-  throw new InvariantError('encodeDataSet: got an array of another type');
+function runsOf(values: Numbers | readonly Numbers[]): readonly Numbers[] {
+  return ArrayBuffer.isView(values) ? [values] : values;
+}
+
+/** Type of the runs of an array, of which there is at least one. */
+function typeOf(runs: readonly Numbers[]): string {
+  for (const [type, name] of TYPES) if (runs[0] instanceof type) return name;
+  throw new InvariantError('encodeDataSet: got an array of another type, or of no runs');
 }
 
 function escapeText(text: string): string {

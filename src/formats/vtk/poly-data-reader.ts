@@ -1,4 +1,5 @@
 import type { FaultList } from '../faults.ts';
+import type { ByteSource } from '../format.ts';
 import { type LineData, openPiece } from './data-set-reader.ts';
 
 /**
@@ -7,8 +8,8 @@ import { type LineData, openPiece } from './data-set-reader.ts';
  * @returns null after a fault
  * Source: VTK XML formats as documented by Kitware; cells in the order verts, lines, strips or polys, and cell data along.
  */
-export function openPolyData(bytes: Uint8Array, name: string, faults: FaultList): LineData | null {
-  const piece = openPiece(bytes, name, 'PolyData', faults);
+export function openPolyData(content: Uint8Array | ByteSource, name: string, faults: FaultList): LineData | null {
+  const piece = openPiece(content, name, 'PolyData', faults);
   if (piece === null) return null;
   const lines = piece.count('NumberOfLines');
   const before = piece.count('NumberOfVerts');

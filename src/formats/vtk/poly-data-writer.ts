@@ -1,4 +1,10 @@
-import { type Cells, type DataSetParts, encodeDataSet, type NamedArray } from './data-set-writer.ts';
+import {
+  type Cells,
+  type DataSetParts,
+  type EncodedDataSet,
+  encodeDataSet,
+  type NamedArray,
+} from './data-set-writer.ts';
 
 export type { NamedArray } from './data-set-writer.ts';
 
@@ -8,7 +14,7 @@ export interface PolyDataParts extends DataSetParts {
 }
 
 /** A VTK XML PolyData file of lines and polygons. */
-export function encodePolyData(parts: PolyDataParts): Uint8Array {
+export function encodePolyData(parts: PolyDataParts): EncodedDataSet {
   return encodeDataSet(
     {
       type: 'PolyData',

@@ -1,4 +1,5 @@
 import type { FaultList } from '../faults.ts';
+import type { ByteSource } from '../format.ts';
 import { LINE, POLY_LINE } from './cell-types.ts';
 import { type LineData, openPiece } from './data-set-reader.ts';
 
@@ -8,8 +9,8 @@ import { type LineData, openPiece } from './data-set-reader.ts';
  * @returns null after a fault
  * Source: VTK XML formats as documented by Kitware.
  */
-export function openLineGrid(bytes: Uint8Array, name: string, faults: FaultList): LineData | null {
-  const piece = openPiece(bytes, name, 'UnstructuredGrid', faults);
+export function openLineGrid(content: Uint8Array | ByteSource, name: string, faults: FaultList): LineData | null {
+  const piece = openPiece(content, name, 'UnstructuredGrid', faults);
   if (piece === null) return null;
   const cells = piece.count('NumberOfCells');
   const allEnds = piece.read('Cells', 'offsets');

@@ -1,5 +1,12 @@
 import { LINE } from './cell-types.ts';
-import { type Cells, type DataSetParts, encodeDataSet, joinTexts, type NamedArray } from './data-set-writer.ts';
+import {
+  type Cells,
+  type DataSetParts,
+  type EncodedDataSet,
+  encodeDataSet,
+  joinTexts,
+  type NamedArray,
+} from './data-set-writer.ts';
 
 export interface LineGridParts extends DataSetParts {
   /** Lines of two points. */
@@ -12,7 +19,7 @@ export interface LineGridParts extends DataSetParts {
  * Texts are written as UInt8 codes, each text ended by a 0: not every reader of these files knows arrays of text, and
  * meshio 5 refuses a whole file for one.
  */
-export function encodeLineGrid(parts: LineGridParts): Uint8Array {
+export function encodeLineGrid(parts: LineGridParts): EncodedDataSet {
   const { connectivity, ends } = parts.lines;
   return encodeDataSet(
     {
