@@ -1,9 +1,10 @@
-import type { FlowField, Forest, TreeKind, TreeRecord } from '../tree/forest.ts';
+import type { FlowField, TreeKind } from '../tree/forest.ts';
 import { freezeForest } from '../tree/freeze.ts';
 import { strahlerOrders } from '../tree/strahler.ts';
 import type { FaultList } from './faults.ts';
 import type { DecodedTree } from './format.ts';
 import { columnName, NODE_COLUMNS, type NodeKey, VESSEL_COLUMNS, type VesselKey } from './quantities.ts';
+import { keepRows, type Placed } from './row-order.ts';
 
 /** Nodes and vessels as some file listed them: in any order, unchecked but for the length of columns. */
 export interface LooseTree {
@@ -25,8 +26,9 @@ export interface LooseTree {
   readonly tree: Int32Array | null;
   /** (vessels) Strahler order. */
   readonly order: Int32Array | null;
-  readonly vesselField: Readonly<Partial<Record<VesselKey, Float64Array>>>;
-  readonly nodeField: Readonly<Partial<Record<NodeKey, Float64Array>>>;
+  /** Taken over: columns are dropped once they stand in the record. */
+  readonly vesselField: Partial<Record<VesselKey, Float64Array>>;
+  readonly nodeField: Partial<Record<NodeKey, Float64Array>>;
   readonly names: readonly string[] | null;
   readonly kinds: readonly string[] | null;
   readonly provenance: string | null;
@@ -44,11 +46,24 @@ export interface LooseTree {
  *
  * @throws InputError with every fault found: ends that do not exist, a node with two vessels into it, a ring, a value that
  *         is not finite or not positive, a vessel without length
- * Cost: O(nodes + vessels)
+ * @param loose its columns become the record's where they can, and must not be used again
+ * Cost: O(nodes + vessels); nodes and vessels that stand in the order of a forest's rows, as we write them, are not moved.
  */
 export function assembleTree(loose: LooseTree, faults: FaultList, notes: string[]): DecodedTree {
   checkValues(loose, faults);
   faults.throwIfAny();
+  const placed = keepRows(loose) ?? placeRows(loose, faults, notes);
+  const { forest } = placed;
+  const { names, kinds } = nameTrees(loose, forest.treeStart.length - 1, faults, notes);
+  faults.throwIfAny();
+  const order =
+    loose.order === null ? strahlerOrders(forest) : placed.ofVessels(loose.order, new Int32Array(forest.count));
+  const field = buildField(loose, placed, notes);
+  return { record: { forest, names, kinds, field, order, provenance: loose.provenance }, notes };
+}
+
+/** The forest of nodes and vessels in any order. */
+function placeRows(loose: LooseTree, faults: FaultList, notes: string[]): Placed {
   const into = vesselInto(loose, faults);
   faults.throwIfAny();
   const { rootNode, rootVessel } = listTrees(loose, into, faults, notes);
@@ -94,22 +109,16 @@ export function assembleTree(loose: LooseTree, faults: FaultList, notes: string[
     const root = forest.parent[i]! < 0;
     vesselOfRow[i] = root ? rootVessel[forest.tree[i]!]! : into[node]!;
   }
-  let order: Int32Array;
-  if (loose.order === null) order = strahlerOrders(forest);
-  else {
-    order = new Int32Array(forest.count);
-    for (let i = 0; i < forest.count; i++) order[i] = loose.order[vesselOfRow[i]!]!;
-  }
-  const named = nameTrees(loose, trees, faults, notes);
-  faults.throwIfAny();
-  const record: TreeRecord = {
+  return {
     forest,
-    ...named,
-    field: buildField(loose, forest, vesselOfRow, nodeOfRow, notes),
-    order,
-    provenance: loose.provenance,
+    ofVessels: (values, out) => gather(values, vesselOfRow, out),
+    ofNodes: (values) => gather(values, nodeOfRow, new Float64Array(forest.count)),
   };
-  return { record, notes };
+}
+
+function gather<Column extends Float64Array | Int32Array>(values: Column, at: Int32Array, out: Column): Column {
+  for (let i = 0; i < at.length; i++) out[i] = values[at[i]!]!;
+  return out;
 }
 
 function checkValues(loose: LooseTree, faults: FaultList): void {
@@ -282,16 +291,11 @@ function nameTrees(
   return { names, kinds };
 }
 
-function buildField(
-  loose: LooseTree,
-  forest: Forest,
-  vesselOfRow: Int32Array,
-  nodeOfRow: Int32Array,
-  notes: string[],
-): FlowField | null {
+function buildField(loose: LooseTree, placed: Placed, notes: string[]): FlowField | null {
+  const { vesselField, nodeField } = loose;
   const missing = [
-    ...VESSEL_COLUMNS.filter((column) => loose.vesselField[column.key] === undefined),
-    ...NODE_COLUMNS.filter((column) => loose.nodeField[column.key] === undefined),
+    ...VESSEL_COLUMNS.filter((column) => vesselField[column.key] === undefined),
+    ...NODE_COLUMNS.filter((column) => nodeField[column.key] === undefined),
   ];
   const all = VESSEL_COLUMNS.length + NODE_COLUMNS.length;
   if (missing.length > 0) {
@@ -301,13 +305,17 @@ function buildField(
     }
     return null;
   }
-  const gather = (values: Float64Array, at: Int32Array): Float64Array => {
-    const column = new Float64Array(forest.count);
-    for (let i = 0; i < forest.count; i++) column[i] = values[at[i]!]!;
-    return column;
+  const { forest } = placed;
+  const vessel = (key: VesselKey) => {
+    const values = vesselField[key]!;
+    delete vesselField[key];
+    return placed.ofVessels(values, new Float64Array(forest.count));
   };
-  const vessel = (key: VesselKey) => gather(loose.vesselField[key]!, vesselOfRow);
-  const node = (key: NodeKey) => gather(loose.nodeField[key]!, nodeOfRow);
+  const node = (key: NodeKey) => {
+    const values = nodeField[key]!;
+    delete nodeField[key];
+    return placed.ofNodes(values);
+  };
   return {
     forest,
     pressure: node('pressure'),

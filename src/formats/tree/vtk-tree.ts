@@ -115,8 +115,10 @@ export function treeOfLines(
   const plain = isCounting(cell, data.cells);
   const spread = (values: Float64Array | null): Float64Array | null =>
     values === null || plain ? values : gather(values, cell, new Float64Array(vessels));
-  const whole = (values: Float64Array | null): Int32Array | null =>
-    values === null ? null : gather(values, cell, new Int32Array(vessels));
+  const whole = (values: Float64Array | Int32Array | null): Int32Array | null => {
+    if (values === null || (plain && values instanceof Int32Array)) return values as Int32Array | null;
+    return gather(values, cell, new Int32Array(vessels));
+  };
   let radius = spread(arrays.cell('radius', 'length'));
   if (radius === null) {
     const ofPoint = arrays.point('radius', 'length');
@@ -137,8 +139,8 @@ export function treeOfLines(
     if (values !== null) nodeField[column.key] = values;
   }
   const flow = spread(arrays.cell('flow', 'flow'));
-  const tree = whole(arrays.cell('tree', null));
-  const order = whole(arrays.cell('order', null));
+  const tree = whole(arrays.cellIndices('tree'));
+  const order = whole(arrays.cellIndices('order'));
   const texts = (of: string): string[] | null => {
     const array = data.fieldData.find((element) => element.attributes.Name === of);
     return array === undefined ? null : data.file.texts(array);
@@ -179,7 +181,11 @@ function isCounting(at: Int32Array, count: number): boolean {
   return true;
 }
 
-function gather<Column extends Float64Array | Int32Array>(values: Float64Array, at: Int32Array, out: Column): Column {
+function gather<Column extends Float64Array | Int32Array>(
+  values: ArrayLike<number>,
+  at: Int32Array,
+  out: Column,
+): Column {
   for (let i = 0; i < at.length; i++) out[i] = values[at[i]!]!;
   return out;
 }
@@ -244,6 +250,13 @@ class ArrayFinder {
     return this.#find(this.#data.cellData, this.#data.cells, base, quantity);
   }
 
+  /** (cells) or null, of an array that has no unit. */
+  cellIndices(name: string): Float64Array | Int32Array | null {
+    const { cellData, cells, file } = this.#data;
+    const array = cellData.find((element) => element.attributes.Name === name);
+    return array === undefined ? null : this.#counted(file.indices(array), cells, name);
+  }
+
   /** (points) or null. */
   point(base: string, quantity: Quantity | null): Float64Array | null {
     return this.#find(this.#data.pointData, this.#data.points, base, quantity);
@@ -255,18 +268,26 @@ class ArrayFinder {
       const name = array.attributes.Name ?? '';
       const unit = quantity === null ? null : unitOfName(name, base, quantity);
       if (name !== base && unit === null) continue;
-      const values = file.numbers(array);
+      const values = this.#counted(file.numbers(array), count, name);
       if (values === null) return null;
-      if (values.length !== count) {
-        this.#faults.add('length', `${file.name} ${name}`, `got ${values.length} numbers, expected ${count}`);
-        return null;
-      }
       if (unit !== null) columnToSi(values, unit);
       else if (quantity !== null) {
         this.#notes.push(`${file.name}: array ${name} states no unit and was taken in SI`);
       }
       return values;
     }
+    return null;
+  }
+
+  /** The values, or null and a fault where there are not as many as there should be. */
+  #counted<Column extends Float64Array | Int32Array>(
+    values: Column | null,
+    count: number,
+    name: string,
+  ): Column | null {
+    if (values === null || values.length === count) return values;
+    const { file } = this.#data;
+    this.#faults.add('length', `${file.name} ${name}`, `got ${values.length} numbers, expected ${count}`);
     return null;
   }
 }

@@ -15,8 +15,8 @@ export interface Piece {
   readonly fieldData: readonly Element[];
   /** A whole number ≥ 0 that the piece states; 0 where it does not, and after a fault. */
   count(attribute: string): number;
-  /** Numbers of the array of a name in a section; null after a fault. */
-  read(section: string, name: string): Float64Array | null;
+  /** Whole numbers, unchecked, of the array of a name in a section; null after a fault. */
+  read(section: string, name: string): Float64Array | Int32Array | null;
 }
 
 /** A data set's lines, and its other arrays to be read by name. */
@@ -27,9 +27,9 @@ export interface LineData {
   readonly position: Float64Array;
   readonly lines: number;
   /** Point indices of all lines, one line after another, unchecked. */
-  readonly connectivity: Float64Array;
+  readonly connectivity: Float64Array | Int32Array;
   /** (lines) one past the last index of each line. */
-  readonly ends: Float64Array;
+  readonly ends: Float64Array | Int32Array;
   /** (lines) which of the cells each line is. */
   readonly cell: Int32Array;
   /** All cells, the length of a cell array. */
@@ -71,14 +71,19 @@ export function openPiece(
     faults.add('count', `${name} ${attribute}`, `got "${text}", expected a whole number`);
     return 0;
   };
-  const find = (section: string, of: string | null): Float64Array | null => {
+  const find = (section: string, of: string | null): Element | null => {
     const element = childOf(piece, section)?.children.find((child) => of === null || child.attributes.Name === of);
-    if (element !== undefined) return file.numbers(element);
+    if (element !== undefined) return element;
     faults.add('missing', `${name} ${section}`, `got no array${of === null ? '' : ` ${of}`}, expected one`);
     return null;
   };
+  const read = (section: string, of: string): Float64Array | Int32Array | null => {
+    const array = find(section, of);
+    return array === null ? null : file.indices(array);
+  };
   const points = count('NumberOfPoints');
-  const position = find('Points', null);
+  const coordinates = find('Points', null);
+  const position = coordinates === null ? null : file.numbers(coordinates);
   if (position === null) return null;
   if (position.length !== 3 * points) {
     faults.add('length', `${name} Points`, `got ${position.length} numbers, expected ${3 * points}`);
@@ -93,6 +98,6 @@ export function openPiece(
     cellData: children(childOf(piece, 'CellData')),
     fieldData: [...children(childOf(data, 'FieldData')), ...children(childOf(piece, 'FieldData'))],
     count,
-    read: find,
+    read,
   };
 }
