@@ -69,7 +69,7 @@ export function solveAgain(record: TreeRecord, spec: Spec, change: FlowChange): 
   const solvedAgain = changes.viscosity === null && changes.narrowed.length === 0 ? null : changes;
   const used = specAsSolved(spec, solvedAgain);
   const provenance = specToJson(spec, { version: VERSION, solvedAgain });
-  const solved = solveRecord(record.forest, used);
+  const solved = solveRecord(record.forest, used, record.territory ?? null);
   if (narrow.length === 0) return { spec: used, record: { ...solved, provenance }, solvedAgain, reversed: [] };
   let forest = record.forest;
   for (const { row, fraction } of narrow) forest = narrowTube(forest, row, 1 - fraction);
@@ -80,7 +80,7 @@ export function solveAgain(record: TreeRecord, spec: Spec, change: FlowChange): 
     if (!(flow[i]! * flow[forest.treeStart[forest.tree[i]!]!]! > 0)) reversed.push(i);
   }
   if (reversed.length > 0) return { spec: used, record: null, solvedAgain, reversed };
-  const after = solveRecord(withFlow(forest, flow), used);
+  const after = solveRecord(withFlow(forest, flow), used, record.territory ?? null);
   return { spec: used, record: { ...after, provenance }, solvedAgain, reversed };
 }
 
@@ -133,7 +133,7 @@ export function checkRun(
 function lapsedPromises(spec: Spec, { viscosity, narrowed }: SolvedAgain): ReadonlySet<string> {
   const lapsed: string[] = [];
   // Ends keep their pressures where a vessel is narrowed, but radii leave the law, and flows those asked for.
-  if (narrowed.length > 0) lapsed.push('junction-law', 'sizing', 'inlet-flow', 'terminal-flow');
+  if (narrowed.length > 0) lapsed.push('junction-law', 'sizing', 'inlet-flow', 'terminal-flow', 'territory');
   if (viscosity !== null) {
     const { sizing } = spec;
     lapsed.push('terminal-pressure');

@@ -2,9 +2,10 @@ import { checkTree } from './check/check-tree.ts';
 import type { CheckResult } from './check/result.ts';
 import { type Fault, InputError } from './core/errors.ts';
 import type { Watch } from './core/progress.ts';
+import type { Reals } from './core/reals.ts';
 import type { TriangleSurface } from './core/surface.ts';
 import { solveFlow } from './flow/solve.ts';
-import { freezeGrowth } from './growth/freeze.ts';
+import { freezeWithTerritories } from './growth/freeze.ts';
 import { type Growth, growForest } from './growth/grow.ts';
 import type { Stopped } from './growth/grower.ts';
 import { tubeWeights } from './refine/cost.ts';
@@ -62,7 +63,7 @@ export function growRun(
   surfaces: ReadonlyMap<string, TriangleSurface>,
   options: GrowOptions = {},
 ): GrowResult {
-  const tissue = buildTissue(spec.tissue, surfaces, spec.forbidden);
+  const tissue = buildTissue(spec.tissue, surfaces, spec.forbidden, spec.demand);
   refusePointsOutside(spec, tissue);
   const best = growBest(spec, tissue, options);
   const { grower } = best.growth;
@@ -74,8 +75,8 @@ export function growRun(
   }
   if (stopped !== 'cancelled') stopped = grower.finish();
   const used: Spec = options.refineEnough !== undefined && refine !== null ? { ...spec, refine: refine.sweeps } : spec;
-  const forest = freezeGrowth(grower, spec);
-  const record = solveRecord(forest, used);
+  const { forest, territory } = freezeWithTerritories(grower, spec);
+  const record = solveRecord(forest, used, territory);
   const check = checkTree(record, used, surfaces);
   const shortfalls = spec.trees.flatMap((tree, t) => tellUnserved(tree, t, grower));
   return { spec: used, record, tissue, check, stopped, shortfalls };
@@ -119,8 +120,12 @@ function refusePointsOutside(spec: Spec, tissue: Tissue): void {
   if (faults.length > 0) throw new InputError(faults);
 }
 
-/** The solved record of a forest under a spec's pressures and blood. */
-export function solveRecord(forest: Forest, spec: Spec): TreeRecord {
+/**
+ * The solved record of a forest under a spec's pressures and blood.
+ *
+ * @param territory (n) m³, of terminals whose territory was measured; see `TreeRecord`
+ */
+export function solveRecord(forest: Forest, spec: Spec, territory: Reals | null = null): TreeRecord {
   const kinds = spec.trees.map((tree) => tree.kind);
   const field = solveFlow(forest, kinds, {
     rootPressures: spec.trees.map((tree) => tree.inlet.pressure),
@@ -133,6 +138,7 @@ export function solveRecord(forest: Forest, spec: Spec): TreeRecord {
     names: spec.trees.map((tree) => tree.name),
     field,
     order: strahlerOrders(forest),
+    ...(territory === null ? {} : { territory }),
     provenance: specToJson(spec, { version: VERSION }),
   };
 }

@@ -29,8 +29,10 @@ export interface ServiceTallies {
  * Looks whether one tree carries the flow asked for and serves the terminals asked for.
  *
  * Shares are taken over the terminals that are there: a missing terminal is one finding, not a wrong share in all others.
+ * Where territories share the flow, shares are those of the territories told; whether these are right is another promise.
  *
  * @param size m, of the tissue; explicit points must be hit within 1e-9 of it
+ * @returns    rows of the tree's terminals
  */
 export function measureService(
   record: TreeRecord,
@@ -39,7 +41,7 @@ export function measureService(
   asked: TreeSpec,
   size: number,
   tallies: ServiceTallies,
-): void {
+): readonly number[] {
   const { flow, treeStart } = record.forest;
   const root = treeStart[t]!;
   const name = record.names[t] ?? String(t);
@@ -48,14 +50,16 @@ export function measureService(
   for (let i = root + 1; i < treeStart[t + 1]!; i++) if (children.count[i] === 0) terminals.push(i);
 
   if (asked.terminals.by !== 'points') {
-    for (const i of terminals) tallies.shares.see(Math.abs((flow[i]! * terminals.length) / flow[root + 1]! - 1), i);
+    if (asked.terminals.byTerritory) measureToldShares(record, root, terminals, tallies.shares);
+    else
+      for (const i of terminals) tallies.shares.see(Math.abs((flow[i]! * terminals.length) / flow[root + 1]! - 1), i);
     tallies.terminals.checked += terminals.length;
     if (asked.terminals.by === 'count' && terminals.length !== asked.terminals.count) {
       const { count } = asked.terminals;
       const message = `${terminals.length} terminals, asked ${count}`;
       tallies.terminals.fail(name, -1, Math.abs(terminals.length - count), 0, message);
     }
-    return;
+    return terminals;
   }
 
   const { points, share } = asked.terminals;
@@ -75,15 +79,28 @@ export function measureService(
     served += share[point]!;
     servedFlow += flow[row]!;
   });
+  if (asked.terminals.byTerritory) measureToldShares(record, root, terminals, tallies.shares);
   points.forEach((point, k) => {
     const row = terminalOf[k]!;
     if (row >= 0) {
+      if (asked.terminals.byTerritory) return;
       tallies.shares.see(Math.abs(flow[row]! / ((share[k]! / served) * servedFlow) - 1), row);
       return;
     }
     const place = point.map((x) => (1000 * x).toPrecision(6)).join(', ');
     tallies.terminals.fail(name, -1, 1, 0, `point ${k} (${place}) mm is not reached`);
   });
+  return terminals;
+}
+
+/** Flows against the territories that the record tells, where it does. */
+function measureToldShares(record: TreeRecord, root: number, terminals: readonly number[], tally: Tally): void {
+  const { forest, territory } = record;
+  if (!territory) return;
+  let whole = 0;
+  for (const i of terminals) whole += territory[i]!;
+  for (const i of terminals)
+    tally.see(Math.abs((forest.flow[i]! * whole) / (forest.flow[root + 1]! * territory[i]!) - 1), i);
 }
 
 /** Point that each terminal ends at, or −1; every point is taken once. */

@@ -4,7 +4,7 @@ import type { TreeRecord } from '../tree/forest.ts';
 import { measureConservation, measureService } from './blood.ts';
 import { measureClearance } from './clearance.ts';
 import { measureContainment } from './containment.ts';
-import { measureTissue, missingSurfaces } from './depth.ts';
+import { measureShape, measureTissue, missingSurfaces, type Region } from './depth.ts';
 import { measureField } from './field.ts';
 import { measureJunctions } from './junctions.ts';
 import { askedExponent, describeSizing, measureJunctionLaw, measureSizing, measureTerminalPressure } from './law.ts';
@@ -12,6 +12,7 @@ import { type Recomputed, recomputeFlow } from './recompute.ts';
 import { type CheckResult, gatherResult, type PromiseResult, type Tally } from './result.ts';
 import { type ChildLists, linkChildren, measureExtent, measureLengths } from './rows.ts';
 import { inspectStructure, measureOrders } from './structure.ts';
+import { measureTerritories } from './territories.ts';
 import { createTreeTallies, type TreeTallies } from './tree-tallies.ts';
 
 /** Figures that a report claims, as in `report.json`. */
@@ -53,7 +54,8 @@ export function checkTree(
       : Math.hypot(tissue.max[0] - tissue.min[0], tissue.max[1] - tissue.min[1], tissue.max[2] - tissue.min[2]);
   const tallies = createTreeTallies(record, spec, size, cap);
   const promises: PromiseResult[] = [];
-  const all = Object.values(tallies) as Tally[];
+  const sharing = spec?.trees.some((tree) => tree.terminals.byTerritory) ?? false;
+  const all = (Object.values(tallies) as Tally[]).filter((tally) => sharing || tally !== tallies.territory);
 
   const length = measureLengths(forest);
   const sound = inspectStructure(record, spec, length, tallies.structure);
@@ -92,7 +94,9 @@ export function checkTree(
 
   const recomputed = recomputeFlow(record, spec, length);
   checkLaw(record, spec, children, recomputed, tallies, promises);
-  checkBlood(record, spec, children, size, tallies, promises);
+  const terminals = checkBlood(record, spec, children, size, tallies, promises);
+  if (spec !== null && sharing)
+    checkTerritories(record, spec, terminals, tissue, surfaces, tallies.territory, promises);
 
   const warnings = recomputed === null ? [] : measureField(record, spec, recomputed, tallies, cap);
   const fieldTallies = [tallies.pressure, tallies.viscosity, tallies.velocity, tallies.wallShear, tallies.transit];
@@ -184,17 +188,71 @@ function checkBlood(
   size: number,
   tallies: TreeTallies,
   promises: PromiseResult[],
-): void {
+): readonly (readonly number[])[] {
   measureConservation(record, children, tallies.conservation);
   promises.push(tallies.conservation.close());
   const service = [tallies.inlet, tallies.shares, tallies.terminals];
   if (spec === null) {
     promises.push(...service.map((tally) => tally.skip('no spec')));
-    return;
+    return [];
   }
   const trees = Math.min(record.forest.treeStart.length - 1, spec.trees.length);
-  for (let t = 0; t < trees; t++) measureService(record, children, t, spec.trees[t]!, size, tallies);
-  promises.push(...service.map((tally) => tally.close()));
+  const terminals: (readonly number[])[] = [];
+  for (let t = 0; t < trees; t++) terminals.push(measureService(record, children, t, spec.trees[t]!, size, tallies));
+  const untold = spec.trees.some((tree) => tree.terminals.byTerritory) && !record.territory;
+  const note = 'the file tells no territories, so flows are held only to those measured again';
+  promises.push(
+    tallies.inlet.close(),
+    untold && tallies.shares.checked === 0 ? tallies.shares.skip(note) : tallies.shares.close(untold ? note : ''),
+    tallies.terminals.close(),
+  );
+  return terminals;
+}
+
+/** Trees whose flow is shared by territory, against territories measured again. */
+function checkTerritories(
+  record: TreeRecord,
+  spec: Spec,
+  terminals: readonly (readonly number[])[],
+  tissue: Region | null,
+  surfaces: ReadonlyMap<string, TriangleSurface>,
+  tally: Tally,
+  promises: PromiseResult[],
+): void {
+  const demand = spec.demand ?? [];
+  const lacking = [spec.tissue, ...spec.forbidden, ...demand.map((part) => part.shape)].flatMap((shape) =>
+    missingSurfaces(shape, surfaces),
+  );
+  if (tissue === null || lacking.length > 0) {
+    promises.push(tally.skip(`no surface given for ${lacking.join(', ')}`));
+    return;
+  }
+  const parts = demand.map(({ shape, weight }) => ({ region: measureShape(shape, surfaces), weight }));
+  const notes: string[] = [];
+  terminals.forEach((rows, t) => {
+    const shared = spec.trees[t]!.terminals.byTerritory === true;
+    if (shared) notes.push(`${record.names[t]}: ${measureTerritories(record, rows, tissue, parts, tally)}`);
+    if (record.territory) judgeOthers(record, t, shared ? rows : [], tally);
+  });
+  promises.push(tally.close(notes.join('; ')));
+}
+
+/** Territories belong to terminals of trees that are asked for them, and to nothing else. */
+function judgeOthers(record: TreeRecord, t: number, terminals: readonly number[], tally: Tally): void {
+  const { treeStart } = record.forest;
+  let next = 0;
+  for (let i = treeStart[t]!; i < treeStart[t + 1]!; i++) {
+    if (i === terminals[next]) next++;
+    else if (record.territory![i] !== 0) {
+      tally.fail(
+        tally.head.nameOf(i),
+        i,
+        Number.POSITIVE_INFINITY,
+        1,
+        'has a territory, but is no terminal that shares by it',
+      );
+    }
+  }
 }
 
 function checkCost(

@@ -17,6 +17,7 @@ export interface TreeTallies {
   readonly conservation: Tally;
   readonly inlet: Tally;
   readonly shares: Tally;
+  readonly territory: Tally;
   readonly terminals: Tally;
   readonly pressure: Tally;
   readonly viscosity: Tally;
@@ -109,6 +110,13 @@ export function createTreeTallies(record: TreeRecord, spec: Spec | null, size: n
     ),
     inlet: relative('inlet-flow', 'each tree carries the asked flow', 1e-9, 'flow of the tree is off'),
     shares: relative('terminal-flow', 'terminals have their share of the flow', 1e-9, 'flow of the terminal is off'),
+    territory: tally(
+      'territory',
+      'terminals have the flow that the tissue nearest to them demands',
+      { sense: 'at-most', limit: 1, unit: '1' },
+      (value) =>
+        `${value.toPrecision(3)} times the error allowed lies between its territory and the one measured again`,
+    ),
     terminals: tally(
       'terminals',
       'all terminals asked for are there',

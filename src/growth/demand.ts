@@ -31,6 +31,10 @@ export class Demand {
   served = 0;
   /** Site in hand after `next`. */
   site = -1;
+  /** True where each terminal's share follows the demand of its territory. */
+  readonly byTerritory: boolean;
+  /** m³ at demand 1; the territory that a share of 1 stands for, NaN until territories were measured. */
+  territory = Number.NaN;
   private readonly by: TerminalsSpec['by'];
   private readonly stream: SiteStream | null;
   private readonly minDepth: number;
@@ -45,12 +49,15 @@ export class Demand {
   private fresh = 0;
   private places = 0;
   private failures = 0;
+  /** Sites served when territories were last measured, in the tree's order. */
+  private measured: Int32Array | null = null;
 
   /**
    * @param stream   for `count`: where sites come from; the others have their list
    * @param list     (3k) m, for `spacing` and `points`, in the order to be tried
    * @param share    (k) flow share of each listed site; 1 where null
    * @param minDepth m, asked of streamed sites
+   * @param byTerritory see the field; shares given are then those to begin with
    */
   constructor(
     by: TerminalsSpec['by'],
@@ -59,11 +66,13 @@ export class Demand {
     list: ArrayLike<number> | null,
     share: readonly number[] | null,
     minDepth: number,
+    byTerritory = false,
   ) {
     this.by = by;
     this.wanted = wanted;
     this.stream = stream;
     this.minDepth = minDepth;
+    this.byTerritory = byTerritory;
     if (list !== null) {
       for (let k = 0; k < list.length / 3; k++) {
         this.addSite(list[3 * k]!, list[3 * k + 1]!, list[3 * k + 2]!, share === null ? 1 : share[k]!);
@@ -140,6 +149,19 @@ export class Demand {
 
   siteShare(site: number): number {
     return this.shares[site]!;
+  }
+
+  /** True if territories were not yet measured for just these sites in this order. */
+  isNewService(sites: Int32Array): boolean {
+    const { measured } = this;
+    return measured === null || measured.length !== sites.length || sites.some((site, i) => site !== measured[i]);
+  }
+
+  /** Sets the shares of sites to their territories (m³) over a unit (m³). */
+  setTerritories(sites: Int32Array, territory: Float64Array, unit: number): void {
+    this.territory = unit;
+    this.measured = sites;
+    for (let i = 0; i < sites.length; i++) this.shares[sites[i]!] = territory[i]! / unit;
   }
 
   get siteCount(): number {

@@ -12,6 +12,7 @@ import { evict } from './evict.ts';
 import { mendByMoving } from './mend.ts';
 import { Resizer } from './resize.ts';
 import { hangFirst, plant, type Seedling } from './seedling.ts';
+import { shareByTerritory } from './territories.ts';
 
 /** Growth of the whole forest between two refreshes of potentials and sizes. */
 const REFRESH = 1.05;
@@ -158,6 +159,7 @@ export class Grower {
     for (let round = 0; ; round++) {
       if (this.watch.signal?.aborted) return 'cancelled';
       if (this.cramped) return 'no-room';
+      for (let t = 0; t < this.trees.length; t++) this.shareByTerritory(t);
       for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.resized) this.resize(t, true);
       const again = round < ROUNDS;
       const moved = this.mended;
@@ -203,6 +205,11 @@ export class Grower {
   /** Site of a terminal's row in its tree's demand. */
   siteOfRow(row: number): number {
     return this.siteOf[row]!;
+  }
+
+  /** Sets a tree's shares by the territories of its terminals, where that is asked. */
+  shareByTerritory(t: number): void {
+    shareByTerritory(this.builder, t, this.tissue, this.trees[t]!.demand, (row) => this.siteOf[row]!);
   }
 
   /** Index of the tree that has served the least part of its demand, or −1 when all are full or served. */

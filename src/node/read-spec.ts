@@ -85,6 +85,9 @@ export function useBaseNames(read: SpecFiles): SpecFiles {
       ...spec,
       tissue: renameFiles(spec.tissue, nameOf),
       forbidden: spec.forbidden.map((part) => renameFiles(part, nameOf)),
+      ...(spec.demand === undefined
+        ? {}
+        : { demand: spec.demand.map((part) => ({ ...part, shape: renameFiles(part.shape, nameOf) })) }),
     },
     surfaces: rename(read.surfaces),
     bytes: rename(read.bytes),
@@ -110,6 +113,9 @@ function surfaceShapes(spec: Spec): NamedFile[] {
   visit(spec.tissue, 'tissue');
   spec.forbidden.forEach((part, i) => {
     visit(part, `tissue.forbidden[${i}]`);
+  });
+  spec.demand?.forEach((part, i) => {
+    visit(part.shape, `tissue.demand[${i}]`);
   });
   return found;
 }

@@ -1,7 +1,7 @@
 import { equalShares, normaliseDirection, normaliseShares } from './normalise.ts';
 import { DRAIN_PRESSURE, defaultTreeName, SUPPLY_PRESSURE, TERMINAL_PRESSURE } from './rules.ts';
 import type { Judged } from './schema.ts';
-import type { InletSpec, Shape, SizingSpec, Spec, TerminalsSpec, TreeSpec } from './types.ts';
+import type { DemandPart, InletSpec, Shape, SizingSpec, Spec, TerminalsSpec, TreeSpec } from './types.ts';
 
 /** The resolved spec of a value the schema found faultless. */
 export function resolveSpec(judged: Judged): Spec {
@@ -12,6 +12,7 @@ export function resolveSpec(judged: Judged): Spec {
     seed: String(judged.seed),
     tissue: plainShape(judged.tissue),
     forbidden: judged.tissue.forbidden.map(plainShape),
+    ...(judged.tissue.demand.length === 0 ? {} : { demand: judged.tissue.demand.map(plainDemand) }),
     trees: judged.trees.map((tree, row) => resolveTree(tree, row, sizing.rule === 'least-power')),
     blood: {
       viscosity: { law: 'constant', value: blood.viscosity.value },
@@ -44,10 +45,12 @@ function resolveTree(tree: Judged['trees'][number], row: number, leastPower: boo
 function resolveTerminals(terminals: Judged['trees'][number]['terminals'], leastPower: boolean): TerminalsSpec {
   const { count, spacing, points, flow_share: share } = terminals;
   const pressure = terminals.pressure ?? (leastPower ? null : TERMINAL_PRESSURE);
-  if (count !== undefined) return { by: 'count', count, pressure };
-  if (spacing !== undefined) return { by: 'spacing', spacing, pressure };
+  const shared = share === 'territory' ? ({ byTerritory: true } as const) : {};
+  if (count !== undefined) return { by: 'count', count, pressure, ...shared };
+  if (spacing !== undefined) return { by: 'spacing', spacing, pressure, ...shared };
   const all = points ?? [];
-  return { by: 'points', points: all, share: share ? normaliseShares(share) : equalShares(all.length), pressure };
+  const shares = typeof share === 'object' ? normaliseShares(share) : equalShares(all.length);
+  return { by: 'points', points: all, share: shares, pressure, ...shared };
 }
 
 function resolveSizing(sizing: Judged['sizing']): SizingSpec {
@@ -58,6 +61,10 @@ function resolveSizing(sizing: Judged['sizing']): SizingSpec {
   if (terminal !== undefined) return { rule, exponent, scale: { by: 'terminal-radius', radius: terminal } };
   if (inlet !== undefined) return { rule, exponent, scale: { by: 'inlet-radius', radius: inlet } };
   return { rule, exponent, scale: { by: 'mean-pressure' } };
+}
+
+function plainDemand(part: Shape & { readonly weight: number }): DemandPart {
+  return { shape: plainShape(part), weight: part.weight };
 }
 
 /** A shape without what only the whole tissue has beside it. */

@@ -3,7 +3,8 @@ import type { Shape, Spec } from './types.ts';
 /** The surface files a spec refers to, each once, in the order of first mention; paths as the spec gives them. */
 export function shapeFiles(spec: Spec): string[] {
   const files = new Set<string>();
-  for (const shape of [spec.tissue, ...spec.forbidden]) collectFiles(shape, files);
+  const demand = (spec.demand ?? []).map((part) => part.shape);
+  for (const shape of [spec.tissue, ...spec.forbidden, ...demand]) collectFiles(shape, files);
   return [...files];
 }
 

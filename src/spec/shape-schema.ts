@@ -1,14 +1,19 @@
 import { z } from 'zod';
-import { amount, later, peekKey, peekTriple, type Raw, triple, type ValueField, value } from './fields.ts';
+import { amount, isObject, peekKey, peekTriple, type Raw, triple, type ValueField, value } from './fields.ts';
 import { describeValue, listWords, NOT_BUILT, nearestWord } from './got.ts';
 import type { Fields } from './keys.ts';
 import { type Report, record } from './record.ts';
+import { plain } from './text-schema.ts';
 import type { Shape } from './types.ts';
 
 /** m; a coordinate, and an extent of a shape or a vessel. */
 export const COORDINATE = { min: -10, max: 10 };
 export const EXTENT = { min: 1e-7, max: 10 };
 const MOST_PARTS = 1000;
+/** Parts of different demand. */
+const MOST_DEMANDS = 100;
+/** Weights beside 0; wider apart, and the spacing of terminals would differ more than a hundredfold. */
+const WEIGHT = { min: 1e-3, max: 1e3 };
 
 export const SHAPE_NAMES = [
   'box',
@@ -86,6 +91,37 @@ export const SHAPE_FIELDS = {
   },
 } as const;
 
+const weightError = (issue: { readonly input?: unknown }) =>
+  `got ${describeValue(issue.input)}, expected 0 or a number from ${WEIGHT.min} to ${WEIGHT.max}`;
+
+/** What a part of the tissue's demand says beside its shape. */
+export const DEMAND_FIELDS = {
+  weight: value(
+    plain(0, WEIGHT.max).refine((weight) => weight === 0 || weight >= WEIGHT.min, {
+      error: weightError,
+      params: { code: 'out-of-range' },
+    }),
+    {
+      doc: 'Relative perfusion in this part of the tissue: that of the last part that holds a point, 1 where none does.',
+      range: `0, or ${WEIGHT.min} to ${WEIGHT.max}`,
+    },
+  ),
+} as const;
+
+/** A part of the tissue's demand as the schema gives it. */
+type Weighted = Shape & { readonly weight: number };
+
+const weighted: z.ZodType<Weighted> = z.lazy(() => WEIGHTED).meta({ id: 'demandPart' });
+
+function demandError(issue: { readonly input?: unknown }): string {
+  const { input } = issue;
+  const wanted = `expected a list of 0 to ${MOST_DEMANDS} shapes with weights`;
+  const image = isObject(input) && (input.shape === 'image' || input.image !== undefined);
+  return image
+    ? `got an image, ${wanted}: demand from an image; ${NOT_BUILT}`
+    : `got ${describeValue(input)}, ${wanted}`;
+}
+
 /** What the whole tissue may say beside its shape. */
 export const TISSUE_FIELDS = {
   forbidden: value(
@@ -95,7 +131,11 @@ export const TISSUE_FIELDS = {
       .default([]),
     { doc: 'Shapes that vessels keep out of.', range: `0 to ${MOST_PARTS} shapes`, fallback: 'none' },
   ),
-  demand: later('perfusion that varies over the tissue'),
+  demand: value(z.array(weighted, { error: demandError }).max(MOST_DEMANDS, { error: demandError }).default([]), {
+    doc: 'Parts with a perfusion of their own, relative to 1 in the rest; terminals stand denser where it is higher.',
+    range: `0 to ${MOST_DEMANDS} shapes, each with a \`weight\``,
+    fallback: 'none: the same everywhere',
+  }),
 } as const;
 
 function judgeBox(raw: Raw, report: Report): void {
@@ -120,7 +160,7 @@ function judgeCylinder(raw: Raw, report: Report): void {
   report([key], 'out-of-range', `got a point ${length} m from the other end, expected at least ${EXTENT.min} m`);
 }
 
-function anyShape<E extends Fields>(extra: E) {
+function anyShape<E extends Fields>(extra: E, use = 'as tissue') {
   const options = [
     record('a box', { ...SHAPE_FIELDS.box, ...extra }, judgeBox),
     record('a sphere', { ...SHAPE_FIELDS.sphere, ...extra }),
@@ -131,24 +171,28 @@ function anyShape<E extends Fields>(extra: E) {
     record('an intersection', { ...SHAPE_FIELDS.intersection, ...extra }),
     record('a difference', { ...SHAPE_FIELDS.difference, ...extra }),
   ] as const;
-  return z.discriminatedUnion('shape', options as unknown as Discriminable, { error: shapeError });
+  return z.discriminatedUnion('shape', options as unknown as Discriminable, { error: shapeErrorOf(use) });
 }
 
 // The library's types cannot see the literal of `shape` through a transform; its code can.
 type Discriminable = Parameters<typeof z.discriminatedUnion>[1];
 
-function shapeError(issue: { readonly code?: string; readonly input?: unknown }): string {
+const shapeErrorOf = (use: string) => (issue: { readonly code?: string; readonly input?: unknown }) => {
   const { input } = issue;
   if (issue.code !== 'invalid_union' || typeof input !== 'object' || input === null) {
     return `got ${describeValue(input)}, expected a shape: an object with the key "shape"`;
   }
   const name = 'shape' in input ? input.shape : undefined;
-  if (name === 'image') return `got "image", expected another shape: a labelled image as tissue; ${NOT_BUILT}`;
+  if (name === 'image') return `got "image", expected another shape: a labelled image ${use}; ${NOT_BUILT}`;
   const near = typeof name === 'string' ? `, the nearest is ${nearestWord(name, SHAPE_NAMES)}` : '';
   return `got ${describeValue(name)}, expected ${listWords(SHAPE_NAMES)}${near}`;
-}
+};
 
 const PART = anyShape({}) as unknown as z.ZodType<Shape>;
 
-/** The tissue: a shape and the parts of it that are forbidden to vessels. */
-export const TISSUE = anyShape(TISSUE_FIELDS) as unknown as z.ZodType<Shape & { readonly forbidden: readonly Shape[] }>;
+const WEIGHTED = anyShape(DEMAND_FIELDS, 'as a part of the demand') as unknown as z.ZodType<Weighted>;
+
+/** The tissue: a shape, the parts of it that are forbidden to vessels, and its demand. */
+export const TISSUE = anyShape(TISSUE_FIELDS) as unknown as z.ZodType<
+  Shape & { readonly forbidden: readonly Shape[]; readonly demand: readonly Weighted[] }
+>;

@@ -8,13 +8,14 @@ import {
   SPEC_FIELDS,
   VISCOSITY_FIELDS,
 } from './schema.ts';
-import { SHAPE_FIELDS, TISSUE_FIELDS } from './shape-schema.ts';
+import { DEMAND_FIELDS, SHAPE_FIELDS, TISSUE_FIELDS } from './shape-schema.ts';
 import { NARROWED_FIELDS, SOLVED_AGAIN_FIELDS } from './solved-again.ts';
 import { INLET_FIELDS, TERMINAL_FIELDS, TREE_FIELDS } from './tree-schema.ts';
 
 const SECTIONS: readonly (readonly [string, Fields])[] = [
   ['', SPEC_FIELDS],
   ['tissue', TISSUE_FIELDS],
+  ['tissue.demand[]', DEMAND_FIELDS],
   ...Object.entries(SHAPE_FIELDS).map(([name, fields]): readonly [string, Fields] => [`${name}:`, fields]),
   ['trees[]', TREE_FIELDS],
   ['trees[].inlet', INLET_FIELDS],

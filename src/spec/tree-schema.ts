@@ -50,23 +50,42 @@ export const INLET_FIELDS = {
 const shareError = (issue: { readonly input?: unknown }) =>
   `got ${describeValue(issue.input)}, expected a number from ${SHARE_KEY.min} to ${SHARE_KEY.max}`;
 const sharesError = (issue: { readonly input?: unknown }) =>
-  `got ${describeValue(issue.input)}, expected a list of numbers, one for each point`;
+  `got ${describeValue(issue.input)}, expected "equal", "territory" or a list of numbers, one for each point`;
 const shares = z.array(
   z.number({ error: shareError }).min(SHARE_KEY.min, { error: shareError }).max(SHARE_KEY.max, { error: shareError }),
   {
     error: sharesError,
   },
 );
+const shareWord = word(['equal', 'territory']);
+
+/** A word or a list; a union of both would lose which number of the list is at fault. */
+const sharing = z
+  .unknown()
+  .meta({
+    anyOf: [
+      { type: 'string', enum: ['equal', 'territory'] },
+      { type: 'array', items: { type: 'number', minimum: SHARE_KEY.min, maximum: SHARE_KEY.max } },
+    ],
+  })
+  .superRefine((input, context) => {
+    const judged = (typeof input === 'string' ? shareWord : shares).safeParse(input, { reportInput: true });
+    for (const issue of judged.error?.issues ?? []) {
+      context.addIssue({ ...issue } as Parameters<typeof context.addIssue>[0]);
+    }
+  })
+  .transform((input) => input as 'equal' | 'territory' | readonly number[])
+  .optional();
 
 export const TERMINAL_FIELDS = {
   count: value(whole(1, MOST_TERMINALS).optional(), {
-    doc: 'This many terminals of equal flow.',
+    doc: 'This many terminals.',
     range: `1 to ${MOST_TERMINALS}`,
     fallback: 'one of `count`, `spacing_*`, `points_*`',
   }),
   spacing: amountOrNone('length', {
     range: EXTENT,
-    doc: 'As many terminals as fit at this least distance.',
+    doc: 'As many terminals as fit at this least distance, which is that where demand is 1 and goes with demand^(-1/3).',
     fallback: 'one of `count`, `spacing_*`, `points_*`',
   }),
   points: triplesOrNone('length', MOST_POINTS, {
@@ -74,10 +93,10 @@ export const TERMINAL_FIELDS = {
     doc: 'One terminal at each of these points.',
     fallback: 'one of `count`, `spacing_*`, `points_*`',
   }),
-  flow_share: value(shares.optional(), {
-    doc: 'Share of the flow of each point, scaled to sum 1; only with `points_*`.',
-    range: '1e-15 to 1 of their sum, one for each point',
-    fallback: 'equal',
+  flow_share: value(sharing, {
+    doc: 'Share of the flow of each terminal: equal, by the demand of the tissue that is nearest to it, or, with `points_*`, a list, scaled to sum 1.',
+    range: '"equal", "territory", or one number for each point, each 1e-15 to 1 of their sum',
+    fallback: '"equal"',
   }),
   pressure: amountOrNone('pressure', {
     range: PRESSURE,
@@ -101,8 +120,8 @@ function judgeTerminals(raw: Raw, report: Report): void {
   }
   const points = peekKey(raw, 'points', 'length');
   const { flow_share: share } = raw;
-  if (share !== undefined && !kinds.has('points')) {
-    report(['flow_share'], 'conflict', 'got flow shares without points, expected them only with points_mm');
+  if (share !== undefined && typeof share !== 'string' && !kinds.has('points')) {
+    report(['flow_share'], 'conflict', 'got flow shares without points, expected a list of them only with points_mm');
   }
   if (!points || !Array.isArray(points.value)) return;
   if (Array.isArray(share) && share.length !== points.value.length) {

@@ -13,6 +13,12 @@ export type Shape =
   | { readonly shape: 'intersection'; readonly parts: readonly Shape[] }
   | { readonly shape: 'difference'; readonly of: Shape; readonly minus: readonly Shape[] };
 
+/** A part of the tissue and its relative perfusion, ≥ 0. */
+export interface DemandPart {
+  readonly shape: Shape;
+  readonly weight: number;
+}
+
 export interface InletSpec {
   /** m; inside the tissue, on its boundary or just outside it. */
   readonly position: Triple;
@@ -25,17 +31,23 @@ export interface InletSpec {
 }
 
 export type TerminalsSpec =
-  /** This many terminals of equal flow, at blue-noise sites. */
-  | { readonly by: 'count'; readonly count: number; readonly pressure: number | null }
-  /** As many as blue-noise sites at this least spacing (m) fit. */
-  | { readonly by: 'spacing'; readonly spacing: number; readonly pressure: number | null }
-  /** One at each point (m), with its share of the flow (normalised to sum 1). */
-  | {
+  /** This many terminals, at blue-noise sites. */
+  | ({ readonly by: 'count'; readonly count: number; readonly pressure: number | null } & ByTerritory)
+  /** As many as blue-noise sites fit whose least spacing is this (m) where demand is 1, and goes with demand^(−1/3). */
+  | ({ readonly by: 'spacing'; readonly spacing: number; readonly pressure: number | null } & ByTerritory)
+  /** One at each point (m), with its share of the flow (normalised to sum 1; equal where territories decide). */
+  | ({
       readonly by: 'points';
       readonly points: readonly Triple[];
       readonly share: readonly number[];
       readonly pressure: number | null;
-    };
+    } & ByTerritory);
+
+/** How a tree's flow is shared among its terminals. */
+export interface ByTerritory {
+  /** There, and true: each gets what the tissue nearer to it than to the tree's other terminals demands. */
+  readonly byTerritory?: true;
+}
 
 export interface TreeSpec {
   /** Letters, digits and `_`, a letter first; unique. */
@@ -72,6 +84,8 @@ export interface Spec {
   readonly tissue: Shape;
   /** Parts that vessels keep out of. */
   readonly forbidden: readonly Shape[];
+  /** Relative perfusion: that of a point is the weight of the last part that holds it, 1 where none does. Left out: 1 everywhere. */
+  readonly demand?: readonly DemandPart[];
   /** At least one. */
   readonly trees: readonly TreeSpec[];
   readonly blood: {

@@ -25,6 +25,9 @@ export function specToJson(spec: Spec, stamp: SpecStamp = {}): string {
   const tissue = {
     ...shapeOut(spec.tissue),
     ...(spec.forbidden.length > 0 ? { forbidden: spec.forbidden.map(shapeOut) } : {}),
+    ...(spec.demand === undefined
+      ? {}
+      : { demand: spec.demand.map(({ shape, weight }) => ({ ...shapeOut(shape), weight })) }),
   };
   const value = {
     format: stamp.format ?? SPEC_FORMAT,
@@ -60,9 +63,10 @@ function inletOut(inlet: InletSpec): object {
 
 function terminalsOut(terminals: TerminalsSpec): object {
   const pressure_Pa = terminals.pressure ?? undefined;
-  if (terminals.by === 'count') return { count: terminals.count, pressure_Pa };
-  if (terminals.by === 'spacing') return { spacing_m: terminals.spacing, pressure_Pa };
-  return { points_m: terminals.points, flow_share: terminals.share, pressure_Pa };
+  const flow_share = terminals.byTerritory ? 'territory' : undefined;
+  if (terminals.by === 'count') return { count: terminals.count, flow_share, pressure_Pa };
+  if (terminals.by === 'spacing') return { spacing_m: terminals.spacing, flow_share, pressure_Pa };
+  return { points_m: terminals.points, flow_share: flow_share ?? terminals.share, pressure_Pa };
 }
 
 function sizingOut(sizing: SizingSpec, maintenance: number): object {

@@ -1,15 +1,16 @@
 import { InputError, inputError } from '../core/errors.ts';
 import type { TriangleSurface } from '../core/surface.ts';
 import { toSi } from '../core/units.ts';
-import type { Shape } from '../spec/types.ts';
+import type { DemandPart, Shape } from '../spec/types.ts';
 import { type CheckedSurface, checkSurface } from './check-surface.ts';
 import { differenceOf, intersectionOf, unionOf } from './combine.ts';
 import { ellipsoidRegion } from './ellipsoid.ts';
+import { coverDemand, evenPerfusion, type Perfusion, type WeightedRegion, weighParts } from './perfusion.ts';
 import { boxRegion, cylinderRegion, sphereRegion } from './primitives.ts';
 import type { Region } from './region.ts';
 import { surfaceRegion } from './surface-region.ts';
 import type { Tissue } from './tissue.ts';
-import { integrateVolume } from './volume.ts';
+import { integrateDemand, integrateVolume } from './volume.ts';
 
 /** Least share of its box that a tissue fills; less than this is taken as nothing. */
 const LEAST_SHARE = 1e-9;
@@ -20,18 +21,24 @@ const LEAST_SHARE = 1e-9;
  * @param shape     in SI
  * @param surfaces  what was read of each surface file the shape and `forbidden` name, in the files' own units
  * @param forbidden parts that vessels keep out of
+ * @param demand    parts whose demand is not 1
  * @throws  InputError naming the path of the shape (`tissue.parts[1]`) and, for surfaces, the file: a surface that is
- *          missing or does not bound a volume, a size that is not > 0, a tissue that is empty
+ *          missing or does not bound a volume, a size that is not > 0, a tissue that is empty or demands nothing
  * Cost:    primitives nothing; a surface about 10 µs a triangle; a volume without closed form 2·10⁵ depths.
  */
 export function buildTissue(
   shape: Shape,
   surfaces: ReadonlyMap<string, TriangleSurface>,
   forbidden: readonly Shape[] = [],
+  demand: readonly DemandPart[] = [],
 ): Tissue {
   const builder = new Builder(surfaces);
   const of = builder.region(shape, 'tissue');
   const minus = forbidden.map((part, i) => builder.region(part, `forbidden[${i}]`));
+  const parts = demand.map(({ shape: part, weight }, i) => ({
+    region: builder.region(part, `tissue.demand[${i}]`),
+    weight,
+  }));
   if (builder.faults.length > 0) throw new InputError(builder.faults.flatMap((fault) => fault.faults));
   const region = differenceOf(of, minus);
   const { volume, error } = region.volume === null ? integrateVolume(region) : { volume: region.volume, error: 0 };
@@ -43,7 +50,21 @@ export function buildTissue(
       'got a tissue with no volume, expected parts that leave room for vessels',
     );
   const { min, max, convex, depth, deeperThan, holdsTube } = region;
-  return { min, max, volume, volumeError: error, convex, depth, deeperThan, holdsTube };
+  const perfusion = parts.length === 0 ? evenPerfusion(volume, error) : perfuse(region, parts);
+  return { min, max, volume, volumeError: error, perfusion, convex, depth, deeperThan, holdsTube };
+}
+
+/** Demand over a region; refused where it is nothing. */
+function perfuse(region: Region, parts: readonly WeightedRegion[]): Perfusion {
+  const weighing = weighParts(parts);
+  const { whole, error } = integrateDemand(region, weighing, coverDemand(region, weighing));
+  if (!(whole > 0))
+    throw inputError(
+      'no-demand',
+      'tissue.demand',
+      'got weights of 0 all over the tissue, expected a part of it that demands blood',
+    );
+  return { uniform: false, whole, error, ...weighing };
 }
 
 /** Builds regions and gathers the faults of all of them. */

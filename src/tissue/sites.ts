@@ -1,7 +1,7 @@
 import type { Random } from '../core/random.ts';
-import { type Cells, coverCells } from './cells.ts';
-import { createPointGrid } from './point-grid.ts';
+import { createDarts, reachFactor } from './darts.ts';
 import { halfDiagonal } from './region.ts';
+import { createSiteGrid } from './site-grid.ts';
 import type { Tissue } from './tissue.ts';
 
 /*
@@ -12,16 +12,16 @@ import type { Tissue } from './tissue.ts';
  * form finds its own level.
  * Reach / (volume/n)^(1/3) in the unit box at 2·10⁴ to 10⁶ sites: 0.67 with 6 refusals, 0.69 with 9 and half as much
  * time again. Points thrown without more ado saturate at 0.90 after endless refusals.
+ * Where demand w differs over the tissue, darts fall as often as w and sites keep w^(−1/3) of the reach apart: any part is
+ * then a scaled copy of any other, and its sites are as many as its volume times w, from the first on.
  */
 
 /** Darts refused for each one taken, in the long run. */
 const REFUSALS = 7;
-/** Cells the box is cut into so that darts fall near the tissue only. */
-export const SITE_CELLS = 32_768;
 /** Darts in a row that may miss the tissue (or be too shallow) before the stream ends. */
 const MOST_MISSES = 200_000;
 
-/** An endless stream of points, every beginning of which is spread evenly over the tissue. */
+/** An endless stream of points, every beginning of which is spread over the tissue as its demand is. */
 export interface Sites {
   /** m; the site that the last `next` found. */
   readonly x: number;
@@ -31,7 +31,10 @@ export interface Sites {
   readonly count: number;
   /** (3·count) m; x, y, z of all sites in order; a copy. */
   positions(): Float64Array;
-  /** m; no two sites so far are nearer than this. Falls with every refusal. */
+  /**
+   * m; where demand is w, no two sites so far are nearer than w^(−1/3) of this (of two demands the greater counts). Falls
+   * with every refusal.
+   */
   readonly reach: number;
   /**
    * Finds one more site.
@@ -52,16 +55,16 @@ export interface Sites {
  */
 export function createSites(tissue: Tissue, random: Random, floor = 0): Sites {
   const { min, max } = tissue;
-  const cells = coverCells(tissue, SITE_CELLS);
-  let reach = 2 * halfDiagonal(max[0] - min[0], max[1] - min[1], max[2] - min[2]);
-  const grid = createPointGrid(reach);
-  const dart = new Float64Array(3);
+  const throwDart = createDarts(tissue, random);
+  const [least, most] = [reachFactor(tissue.perfusion.most), reachFactor(tissue.perfusion.least)];
+  let reach = (2 * halfDiagonal(max[0] - min[0], max[1] - min[1], max[2] - min[2])) / least;
+  const grid = createSiteGrid(reach, least, most);
+  const dart = new Float64Array(4);
 
   /** Throws darts until one is deep enough; its place is left in `dart`. */
   function hit(minDepth: number): boolean {
     for (let miss = 0; miss < MOST_MISSES; miss++) {
-      throwDart(cells, random, dart);
-      if (tissue.deeperThan(dart[0]!, dart[1]!, dart[2]!, minDepth)) return true;
+      if (throwDart(dart) && tissue.deeperThan(dart[0]!, dart[1]!, dart[2]!, minDepth)) return true;
     }
     return false;
   }
@@ -86,29 +89,15 @@ export function createSites(tissue: Tissue, random: Random, floor = 0): Sites {
     next(minDepth) {
       for (;;) {
         if (!hit(minDepth)) return false;
-        if (!grid.crowded(dart[0]!, dart[1]!, dart[2]!, reach)) {
-          grid.add(dart[0]!, dart[1]!, dart[2]!);
+        if (!grid.crowded(dart[0]!, dart[1]!, dart[2]!, dart[3]!, 0)) {
+          grid.add(dart[0]!, dart[1]!, dart[2]!, dart[3]!);
           return true;
         }
         const smaller = reach * (1 - 1 / (3 * grid.count * REFUSALS + 1));
         if (smaller < floor) return false;
         reach = smaller;
-        // Cells three quarters empty of use: sort anew. The count has then more than doubled, so this is O(1) a site.
-        if (reach < 0.7 * grid.edge) grid.refine(reach);
+        grid.shrink(reach);
       }
     },
   };
-}
-
-function throwDart(cells: Cells, random: Random, out: Float64Array): void {
-  const at = cells.row[Math.floor(random.next() * cells.row.length)]!;
-  const nx = cells.across[0];
-  const ny = cells.across[1];
-  const i = at % nx;
-  const layer = (at - i) / nx;
-  const j = layer % ny;
-  const k = (layer - j) / ny;
-  out[0] = cells.origin[0] + (i + random.next()) * cells.edge[0];
-  out[1] = cells.origin[1] + (j + random.next()) * cells.edge[1];
-  out[2] = cells.origin[2] + (k + random.next()) * cells.edge[2];
 }

@@ -1,3 +1,5 @@
+import type { Perfusion } from './perfusion.ts';
+
 /**
  * A region of space that vessels may fill. All shapes, whatever they are made of, answer these questions.
  */
@@ -8,6 +10,8 @@ export interface Tissue {
   /** m³, and its relative standard error (0 where it is exact). */
   readonly volume: number;
   readonly volumeError: number;
+  /** Demand for blood over the tissue. */
+  readonly perfusion: Perfusion;
   /** True where the tissue is known to be convex: the depth along a segment is then least at an end. */
   readonly convex: boolean;
   /**

@@ -63,9 +63,14 @@ const points = fc.uniqueArray(coordinates, {
   maxLength: 9,
   selector: (point) => point.map((one) => one + 0).join(),
 });
+const shareWord = fc.constantFrom({}, { flow_share: 'equal' }, { flow_share: 'territory' });
 const terminals = fc.oneof(
-  fc.record({ count: fc.integer({ min: 1, max: 20_000_000 }) }),
-  quantity('spacing', 'length', 1e-7, 10),
+  merged(fc.record({ count: fc.integer({ min: 1, max: 20_000_000 }) }), shareWord),
+  merged(quantity('spacing', 'length', 1e-7, 10), shareWord),
+  merged(
+    points.map((all) => ({ points_m: all })),
+    shareWord,
+  ),
   points.chain((all) =>
     fc
       .option(fc.array(inside(1e-6, 1e6), { minLength: all.length, maxLength: all.length }), { nil: undefined })
@@ -107,13 +112,19 @@ const sizing = fc.oneof(
   ),
 );
 
+const demandPart = fc
+  .tuple(shape, fc.oneof(fc.constant(0), inside(1e-3, 1e3)))
+  .map(([part, weight]) => ({ ...part, weight }));
+
 const line = fc.string({ minLength: 1, maxLength: 40, unit: 'grapheme' }).filter((text) => /^\P{Cc}*$/u.test(text));
 
 const spec = fc.record({
   name: line,
   purpose: line,
   seed: fc.oneof(line, fc.integer(), inside(-1e30, 1e30)),
-  tissue: fc.tuple(shape, fc.array(shape, { maxLength: 2 })).map(([whole, forbidden]) => ({ ...whole, forbidden })),
+  tissue: fc
+    .tuple(shape, fc.array(shape, { maxLength: 2 }), fc.array(demandPart, { maxLength: 2 }))
+    .map(([whole, forbidden, demand]) => ({ ...whole, forbidden, demand })),
   trees: fc.array(tree, { minLength: 1, maxLength: 3 }),
   blood: merged(
     quantity('density', 'density', 100, 20_000),

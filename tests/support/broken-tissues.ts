@@ -8,6 +8,10 @@ function nested(depth: number): Bendable {
   return shape;
 }
 
+/** A sound spec with this demand. */
+const demanding = (name: string, where: string, demand: unknown, message?: RegExp): BrokenSpec =>
+  bent(name, where, (spec) => Object.assign(spec.tissue, { demand }), message);
+
 /** Tissue shapes. */
 export const WRONG_TISSUE: BrokenSpec[] = [
   withTissue('tissue null', 'tissue', null),
@@ -22,7 +26,44 @@ export const WRONG_TISSUE: BrokenSpec[] = [
     { shape: 'image', file: 'a.nrrd', label: 1 },
     /this version does not have it yet/,
   ),
-  bent('demand', 'tissue.demand', (spec) => Object.assign(spec.tissue, { demand: [] }), /does not have it yet/),
+  demanding(
+    'demand a part',
+    'tissue.demand',
+    { ...SPHERE, weight: 2 },
+    /an object, expected a list of 0 to 100 shapes/,
+  ),
+  demanding('demand an image', 'tissue.demand', { shape: 'image', file: 'a.nrrd' }, /an image.*does not have it yet/),
+  demanding('image of demand', 'tissue.demand', { image: 'a.nrrd' }, /an image.*does not have it yet/),
+  demanding(
+    'image as a part of the demand',
+    'tissue.demand[1].shape',
+    [
+      { ...SPHERE, weight: 2 },
+      { shape: 'image', file: 'a.nrrd', weight: 1 },
+    ],
+    /labelled image as a part of the demand; this version does not have it yet/,
+  ),
+  demanding('demand without weight', 'tissue.demand[0].weight', [SPHERE], /got nothing, expected a number/),
+  demanding('negative demand', 'tissue.demand[0].weight', [{ ...SPHERE, weight: -1 }], /got -1/),
+  demanding(
+    'faint demand',
+    'tissue.demand[0].weight',
+    [{ ...SPHERE, weight: 1e-4 }],
+    /expected 0 or a number from 0.001/,
+  ),
+  demanding('demand beyond sense', 'tissue.demand[0].weight', [{ ...SPHERE, weight: 1001 }], /got 1001/),
+  demanding('demand a word', 'tissue.demand[0].weight', [{ ...SPHERE, weight: 'high' }], /got "high"/),
+  demanding('misspelt weight', 'tissue.demand[0].wieght', [{ ...SPHERE, weight: 2, wieght: 2 }], /nearest is weight/),
+  demanding('fault in a part of the demand', 'tissue.demand[0].radius_mm', [{ ...SPHERE, radius_mm: -1, weight: 2 }]),
+  demanding('weight in a part of a part', 'tissue.demand[0].parts[0].weight', [
+    { shape: 'union', parts: [{ ...SPHERE, weight: 2 }], weight: 2 },
+  ]),
+  demanding(
+    'too many parts',
+    'tissue.demand',
+    Array.from({ length: 101 }, () => ({ ...SPHERE, weight: 2 })),
+    /a list of 101/,
+  ),
   bent('box without max', 'tissue.max', (spec) => delete spec.tissue.max_mm, /max_m, max_mm or max_um/),
   bent('box of two numbers', 'tissue.max_mm', (spec) => Object.assign(spec.tissue, { max_mm: [1, 2] }), /three/),
   bent('box of four numbers', 'tissue.max_mm', (spec) => Object.assign(spec.tissue, { max_mm: [1, 2, 3, 4] }), /three/),

@@ -241,6 +241,24 @@ export const WRONG_TREES: BrokenSpec[] = [
       },
     }),
   ),
+  bent(
+    'sharing by an unknown rule',
+    'trees[0].terminals.flow_share',
+    (spec) => Object.assign(spec.trees[0].terminals, { flow_share: 'teritory' }),
+    /got "teritory", expected "equal" or "territory"/,
+  ),
+  bent(
+    'share a word in a list',
+    'trees[0].terminals.flow_share[0]',
+    (spec) => Object.assign(spec.trees[0], { terminals: { points_mm: [[1, 2, 3]], flow_share: ['territory'] } }),
+    /got "territory", expected a number/,
+  ),
+  bent(
+    'sharing a number',
+    'trees[0].terminals.flow_share',
+    (spec) => Object.assign(spec.trees[0].terminals, { flow_share: 1 }),
+    /got 1, expected "equal", "territory" or a list/,
+  ),
   bent('share of 0', 'trees[0].terminals.flow_share[0]', (spec) =>
     Object.assign(spec.trees[0], { terminals: { points_mm: [[1, 2, 3]], flow_share: [0] } }),
   ),
