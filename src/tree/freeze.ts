@@ -32,70 +32,79 @@ export interface Frozen {
 export function freezeForest(loose: LooseRows): Frozen {
   const n = loose.count;
   const trees = loose.roots.length;
-  const firstChild = new Int32Array(n).fill(-1);
-  const nextSibling = new Int32Array(n).fill(-1);
-  for (let i = n - 1; i >= 0; i--) {
-    const parent = loose.parent[i]!;
-    if (parent < 0) continue;
-    nextSibling[i] = firstChild[parent]!;
-    firstChild[parent] = i;
+  // Last child of row i at 2i, the sibling before row i at 2i + 1: neighbours, because they are asked for together.
+  const link = new Int32Array(2 * n).fill(-1);
+  for (let i = 0; i < n; i++) {
+    const above = loose.parent[i]!;
+    if (above < 0) continue;
+    link[2 * i + 1] = link[2 * above]!;
+    link[2 * above] = i;
   }
   const source = new Int32Array(n);
+  const parent = new Int32Array(n);
   const tree = new Int32Array(n);
   const treeStart = new Int32Array(trees + 1);
-  const stack = new Int32Array(n + 1);
+  // Loose row and its parent's frozen row.
+  let stack = new Int32Array(1024);
   let at = 0;
   for (let t = 0; t < trees; t++) {
     treeStart[t] = at;
     const root = loose.roots[t]!;
-    const child = firstChild[root]!;
-    if (child < 0 || nextSibling[child]! >= 0) {
+    const child = link[2 * root]!;
+    if (child < 0 || link[2 * child + 1]! >= 0) {
       throw new InvariantError(
         `freezeForest: root of tree ${t} has ${child < 0 ? 'no child' : 'two children'}, expected one`,
       );
     }
     let top = 0;
     stack[top++] = root;
+    stack[top++] = -1;
     while (top > 0) {
+      parent[at] = stack[--top]!;
       const i = stack[--top]!;
+      source[at] = i;
       tree[at] = t;
-      source[at++] = i;
-      // A child goes on top of its sibling so that the lower loose row comes first.
-      const mark = top;
-      for (let c = firstChild[i]!; c >= 0; c = nextSibling[c]!) stack[top++] = c;
-      for (let a = mark, b = top - 1; a < b; a++, b--) {
-        const swap = stack[a]!;
-        stack[a] = stack[b]!;
-        stack[b] = swap;
+      // The first child comes to lie on top.
+      for (let c = link[2 * i]!; c >= 0; c = link[2 * c + 1]!) {
+        if (top === stack.length) {
+          const wider = new Int32Array(2 * top);
+          wider.set(stack);
+          stack = wider;
+        }
+        stack[top++] = c;
+        stack[top++] = at;
       }
+      at++;
     }
   }
   treeStart[trees] = at;
-  const rowOf = new Int32Array(n).fill(-1);
-  for (let i = 0; i < at; i++) rowOf[source[i]!] = i;
-  const parent = new Int32Array(at);
   const position = new Float64Array(3 * at);
   const radius = new Float64Array(at);
   const flow = new Float64Array(at);
   for (let i = 0; i < at; i++) {
     const s = source[i]!;
-    const p = loose.parent[s]!;
-    parent[i] = p < 0 ? -1 : rowOf[p]!;
-    for (let k = 0; k < 3; k++) {
-      const x = loose.position[3 * s + k]!;
-      if (!Number.isFinite(x)) throw new InvariantError(`freezeForest: position of row ${s} is ${x}`);
-      position[3 * i + k] = x;
+    const x = loose.position[3 * s]!;
+    const y = loose.position[3 * s + 1]!;
+    const z = loose.position[3 * s + 2]!;
+    // A product with 0 is 0 for numbers that are finite, else NaN.
+    if (!(x * 0 + y * 0 + z * 0 === 0)) {
+      throw new InvariantError(`freezeForest: position of row ${s} is (${x}, ${y}, ${z})`);
     }
-    const own = p < 0 ? firstChild[s]! : s;
-    radius[i] = loose.radius[own]!;
-    flow[i] = loose.flow[own]!;
-    if (!(radius[i]! > 0 && radius[i]! < Infinity))
-      throw new InvariantError(`freezeForest: radius of row ${s} is ${radius[i]} m`);
-    if (!(flow[i]! > 0 && flow[i]! < Infinity))
-      throw new InvariantError(`freezeForest: flow of row ${s} is ${flow[i]} m³/s`);
+    position[3 * i] = x;
+    position[3 * i + 1] = y;
+    position[3 * i + 2] = z;
+    // A root's only child is the row after it.
+    const own = parent[i]! < 0 ? source[i + 1]! : s;
+    const r = loose.radius[own]!;
+    const q = loose.flow[own]!;
+    if (!(r > 0 && r < Infinity)) throw new InvariantError(`freezeForest: radius of row ${s} is ${r} m`);
+    if (!(q > 0 && q < Infinity)) throw new InvariantError(`freezeForest: flow of row ${s} is ${q} m³/s`);
+    radius[i] = r;
+    flow[i] = q;
   }
+  const trimmed = (column: Int32Array) => (at === n ? column : column.slice(0, at));
   return {
-    forest: { count: at, treeStart, tree: tree.slice(0, at), parent, position, radius, flow },
-    source: source.slice(0, at),
+    forest: { count: at, treeStart, tree: trimmed(tree), parent: trimmed(parent), position, radius, flow },
+    source: trimmed(source),
   };
 }
