@@ -241,7 +241,7 @@ function checkTerritories(
 function judgeOthers(record: TreeRecord, t: number, terminals: readonly number[], tally: Tally): void {
   const { treeStart } = record.forest;
   let next = 0;
-  for (let i = treeStart[t]!; i < treeStart[t + 1]!; i++) {
+  for (let i = treeStart[t]! + 1; i < treeStart[t + 1]!; i++) {
     if (i === terminals[next]) next++;
     else if (record.territory![i] !== 0) {
       tally.fail(

@@ -12,7 +12,7 @@ export interface Quantity {
   /** Default tolerance: above what a text format with nine digits loses, below anything that matters. */
   readonly tolerance: number;
   /** What a file must hold to hold it. */
-  readonly part: 'positions' | 'radii' | 'flows' | 'orders' | 'flow solution';
+  readonly part: 'positions' | 'radii' | 'flows' | 'orders' | 'flow solution' | 'territories';
   /** Does it belong to nodes (and so to roots too), or to tubes? */
   readonly at: 'node' | 'tube';
   /** Column of a record, or null where the record has none. */
@@ -130,5 +130,15 @@ export const QUANTITIES: readonly Quantity[] = [
     tolerance: 1e-9,
     at: 'tube',
     column: (record) => record.field?.haematocrit ?? null,
+  },
+  {
+    key: 'territory_rel',
+    part: 'territories',
+    title: 'territory',
+    unit: 'm³',
+    relative: true,
+    tolerance: 1e-6,
+    at: 'tube',
+    column: (record) => record.territory ?? null,
   },
 ];

@@ -3,7 +3,7 @@ import { freezeForest } from '../tree/freeze.ts';
 import { strahlerOrders } from '../tree/strahler.ts';
 import type { FaultList } from './faults.ts';
 import type { DecodedTree } from './format.ts';
-import { columnName, NODE_COLUMNS, type NodeKey, VESSEL_COLUMNS, type VesselKey } from './quantities.ts';
+import { columnName, NODE_COLUMNS, type NodeKey, TERRITORY, VESSEL_COLUMNS, type VesselKey } from './quantities.ts';
 import { keepRows, type Placed } from './row-order.ts';
 
 /** Nodes and vessels as some file listed them: in any order, unchecked but for the length of columns. */
@@ -29,6 +29,8 @@ export interface LooseTree {
   /** Taken over: columns are dropped once they stand in the record. */
   readonly vesselField: Partial<Record<VesselKey, Float64Array>>;
   readonly nodeField: Partial<Record<NodeKey, Float64Array>>;
+  /** (vessels) m³ that each terminal serves, or null: not in the file. */
+  readonly territory: Float64Array | null;
   readonly names: readonly string[] | null;
   readonly kinds: readonly string[] | null;
   readonly provenance: string | null;
@@ -59,7 +61,10 @@ export function assembleTree(loose: LooseTree, faults: FaultList, notes: string[
   const order =
     loose.order === null ? strahlerOrders(forest) : placed.ofVessels(loose.order, new Int32Array(forest.count));
   const field = buildField(loose, placed, notes);
-  return { record: { forest, names, kinds, field, order, provenance: loose.provenance }, notes };
+  const { provenance } = loose;
+  if (loose.territory === null) return { record: { forest, names, kinds, field, order, provenance }, notes };
+  const territory = placed.ofVessels(loose.territory, new Float64Array(forest.count));
+  return { record: { forest, names, kinds, field, order, territory, provenance }, notes };
 }
 
 /** The forest of nodes and vessels in any order. */
@@ -147,6 +152,11 @@ function checkValues(loose: LooseTree, faults: FaultList): void {
     } else if (p[3 * a] === p[3 * b] && p[3 * a + 1] === p[3 * b + 1] && p[3 * a + 2] === p[3 * b + 2]) {
       faults.add('no-length', loose.nameVessel(v), 'got both ends at one place, expected a vessel with length');
     }
+  }
+  for (let v = 0; loose.territory !== null && v < loose.vessels; v++) {
+    const size = loose.territory[v]!;
+    if (size >= 0 && size < Infinity) continue;
+    faults.add('territory', loose.nameVessel(v), `got ${TERRITORY} ${size}, expected a number of at least 0`);
   }
   for (const column of VESSEL_COLUMNS) {
     const values = loose.vesselField[column.key];

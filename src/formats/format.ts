@@ -40,6 +40,7 @@ export type Kept =
   | 'tree names and kinds'
   | 'orders'
   | 'flow solution'
+  | 'territories'
   | 'provenance';
 
 export interface TreeFormat {

@@ -27,6 +27,9 @@ export const NODE_COLUMNS = [
   { key: 'transit', base: 'transit_s', unit: '', quantity: null },
 ] as const satisfies readonly ColumnSpec<NodeKey>[];
 
+/** What a terminal serves, where it was measured: m³, of vessels; vessels that end in no terminal have 0. */
+export const TERRITORY = 'territory_m3';
+
 /** Name of a column as written. */
 export function columnName(column: { readonly base: string; readonly unit: string }): string {
   return column.unit === '' ? column.base : `${column.base}_${column.unit}`;

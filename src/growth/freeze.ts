@@ -54,5 +54,9 @@ export function freezeWithTerritories(grower: Grower, spec: Spec): FrozenGrowth 
     flow,
     roots: builder.roots,
   });
-  return { forest, territory: served === null ? null : Float64Array.from(source, (row) => served[row]!) };
+  if (served === null) return { forest, territory: null };
+  const territory = new Float64Array(forest.count);
+  // A root repeats its vessel's, which may end in a terminal.
+  for (let i = 0; i < territory.length; i++) territory[i] = served[source[forest.parent[i]! < 0 ? i + 1 : i]!]!;
+  return { forest, territory };
 }

@@ -63,7 +63,7 @@ export interface TreeRecord {
   readonly order: Rows;
   /**
    * (n) m³ at demand 1; demand that a terminal's territory has, the tissue nearer to it than to its tree's others; 0 at rows
-   * that are none or of trees that share their flow otherwise. Null or left out: not measured.
+   * that are none or of trees that share their flow otherwise; a root repeats its child's. Null or left out: not measured.
    */
   readonly territory?: Reals | null;
   /** The resolved spec as JSON text, or null where the file came from elsewhere. */

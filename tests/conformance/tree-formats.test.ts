@@ -52,6 +52,7 @@ for (const format of TREE_FORMATS as readonly TreeFormat[]) {
           'positions',
           'provenance',
           'radii',
+          'territories',
           'tree index',
           'tree names and kinds',
         ].sort(),
@@ -84,6 +85,9 @@ for (const format of TREE_FORMATS as readonly TreeFormat[]) {
           for (const key of FIELD)
             expect(apart(back.field![key], record.field[key])).toBeLessThanOrEqual(format.precision);
         } else expect(back.field).toBeNull();
+        if (keeps('territories') && record.territory) {
+          expect(apart(back.territory!, record.territory)).toBeLessThanOrEqual(format.precision);
+        } else expect(back.territory ?? null).toBeNull();
         expect(back.provenance).toBe(keeps('provenance') ? record.provenance : null);
         // The same record gives the same bytes, the first time and after a trip.
         if (format.precision === 0) {

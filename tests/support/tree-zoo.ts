@@ -28,6 +28,14 @@ export function recordOf(
   };
 }
 
+/** The record with a territory at each terminal of its first tree. */
+function withTerritories(record: TreeRecord): TreeRecord {
+  const { count, parent, tree } = record.forest;
+  const territory = Float64Array.from({ length: count }, (_, i) => (tree[i] === 0 ? 1e-12 / (i + 3) : 0));
+  for (let i = 0; i < count; i++) if (parent[i]! >= 0) territory[parent[i]!] = 0;
+  return { ...record, territory };
+}
+
 /** Records that every format must carry: small and odd, and one of 10⁴ rows. No 0s and 1s that hide a lost digit. */
 export const ZOO: Readonly<Record<string, TreeRecord>> = {
   'one tube': recordOf(
@@ -63,5 +71,8 @@ export const ZOO: Readonly<Record<string, TreeRecord>> = {
   ),
   'two trees, three children': recordOf(randomForest('zoo', 40, 2), ['supply', 'drain'], true, '{}'),
   'two trees, unsolved': recordOf(randomForest('zoo2', 5, 2), ['drain', 'supply'], false, '{"a":1}'),
+  'two trees, one shared by territory': withTerritories(
+    recordOf(randomForest('zoo4', 30, 2), ['supply', 'drain'], true, '{}'),
+  ),
   'ten thousand rows': recordOf(randomForest('zoo3', 5000, 3), ['supply', 'drain', 'supply'], true, null),
 };

@@ -3,20 +3,20 @@ import type { TreeRecord } from '../../tree/forest.ts';
 import { assembleTree } from '../assemble.ts';
 import { FaultList } from '../faults.ts';
 import type { DecodedTree, EncodedFile, NamedBytes, TreeFormat } from '../format.ts';
-import { columnName, NODE_COLUMNS, type NodeKey, VESSEL_COLUMNS, type VesselKey } from '../quantities.ts';
+import { columnName, NODE_COLUMNS, type NodeKey, TERRITORY, VESSEL_COLUMNS, type VesselKey } from '../quantities.ts';
 import { columnToSi, printReal, unitOfName } from '../text/numbers.ts';
 import { readTable, type Table } from '../text/table.ts';
 import { TextWriter } from '../text/writer.ts';
 
 function encodeCsv(record: TreeRecord): EncodedFile[] {
-  const { forest, field, order } = record;
+  const { forest, field, order, territory } = record;
   const nodes = new TextWriter();
   const vessels = new TextWriter();
   const nodeFields = field === null ? [] : NODE_COLUMNS;
   const vesselFields = field === null ? [] : VESSEL_COLUMNS;
   nodes.add(`${['node', 'tree', 'x_m', 'y_m', 'z_m', ...nodeFields.map(columnName)].join(',')}\n`);
   const head = ['vessel', 'tree', 'tree_name', 'kind', 'from', 'to', 'radius_m', 'flow_m3_s', 'order'];
-  vessels.add(`${[...head, ...vesselFields.map(columnName)].join(',')}\n`);
+  vessels.add(`${[...head, ...vesselFields.map(columnName), ...(territory ? [TERRITORY] : [])].join(',')}\n`);
   for (let i = 0, v = 0; i < forest.count; i++) {
     const p = forest.position;
     const t = forest.tree[i]!;
@@ -26,6 +26,7 @@ function encodeCsv(record: TreeRecord): EncodedFile[] {
     if (forest.parent[i]! < 0) continue;
     row = `${v++},${t},${record.names[t]},${record.kinds[t]},${forest.parent[i]},${i},${forest.radius[i]},${forest.flow[i]},${order[i]}`;
     for (const column of vesselFields) row += `,${printReal(field![column.key][i]!)}`;
+    if (territory) row += `,${printReal(territory[i]!)}`;
     vessels.add(`${row}\n`);
   }
   return [
@@ -48,6 +49,7 @@ const VESSEL_READ: readonly (readonly [string, Quantity | null])[] = [
   ['radius', 'length'],
   ['flow', 'flow'],
   ['order', null],
+  [TERRITORY, null],
   ...VESSEL_COLUMNS.map((column) => [column.base, column.quantity] as const),
 ];
 
@@ -114,6 +116,7 @@ function decodeCsv(files: readonly NamedBytes[]): DecodedTree {
       order: whole('order'),
       vesselField,
       nodeField,
+      territory: column(vessels!, TERRITORY, null, false, faults),
       names: textByTree(vessels!, 'tree_name', tree),
       kinds: textByTree(vessels!, 'kind', tree),
       provenance: null,
@@ -178,7 +181,16 @@ export const CSV: TreeFormat = {
   parts: ['.nodes.csv', '.vessels.csv'],
   units: 'SI; the unit is in each column name',
   precision: 0,
-  keeps: ['positions', 'radii', 'flows', 'tree index', 'tree names and kinds', 'orders', 'flow solution'],
+  keeps: [
+    'positions',
+    'radii',
+    'flows',
+    'tree index',
+    'tree names and kinds',
+    'orders',
+    'flow solution',
+    'territories',
+  ],
   drops: ['provenance'],
   encode: encodeCsv,
   decode: decodeCsv,

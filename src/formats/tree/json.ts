@@ -5,14 +5,14 @@ import type { TreeRecord } from '../../tree/forest.ts';
 import { assembleTree } from '../assemble.ts';
 import { FaultList } from '../faults.ts';
 import type { DecodedTree, EncodedFile, NamedBytes, TreeFormat } from '../format.ts';
-import { columnName, NODE_COLUMNS, type NodeKey, VESSEL_COLUMNS, type VesselKey } from '../quantities.ts';
+import { columnName, NODE_COLUMNS, type NodeKey, TERRITORY, VESSEL_COLUMNS, type VesselKey } from '../quantities.ts';
 import { columnToSi, printReal, unitOfName } from '../text/numbers.ts';
 import { TextWriter } from '../text/writer.ts';
 
 const FORMAT_VERSION = 1;
 
 function encodeJson(record: TreeRecord): EncodedFile[] {
-  const { forest, field, order } = record;
+  const { forest, field, order, territory } = record;
   const out = new TextWriter();
   const list = (name: string, value: (row: number) => number, roots: boolean, last = false) => {
     out.add(`    "${name}": [`);
@@ -36,6 +36,7 @@ function encodeJson(record: TreeRecord): EncodedFile[] {
   list('flow_m3_s', (i) => forest.flow[i]!, false);
   if (field !== null)
     for (const column of VESSEL_COLUMNS) list(columnName(column), (i) => field[column.key][i]!, false);
+  if (territory) list(TERRITORY, (i) => territory[i]!, false);
   list('order', (i) => order[i]!, false, true);
   out.add(`  },\n  "provenance": ${JSON.stringify(record.provenance)}\n}\n`);
   return [{ suffix: '.json', bytes: out.bytes() }];
@@ -68,6 +69,7 @@ function decodeJson(files: readonly NamedBytes[]): DecodedTree {
   const flow = read('vessels', vessels, 'flow', 'flow');
   const tree = read('vessels', vessels, 'tree', null);
   const order = read('vessels', vessels, 'order', null);
+  const territory = read('vessels', vessels, TERRITORY, null);
   const vesselField: Partial<Record<VesselKey, Float64Array>> = {};
   for (const column of VESSEL_COLUMNS) {
     const values = read('vessels', vessels, column.base, column.quantity);
@@ -93,7 +95,7 @@ function decodeJson(files: readonly NamedBytes[]): DecodedTree {
     }
   };
   same('nodes', count, [...axes, ...Object.values(nodeField)]);
-  same('vessels', length, [to, radius, flow, tree, order, ...Object.values(vesselField)]);
+  same('vessels', length, [to, radius, flow, tree, order, territory, ...Object.values(vesselField)]);
   const ends = (values: Float64Array, what: string): Int32Array => {
     const rows = new Int32Array(values);
     for (let v = 0; v < values.length; v++) {
@@ -126,6 +128,7 @@ function decodeJson(files: readonly NamedBytes[]): DecodedTree {
       order: order === null ? null : new Int32Array(order),
       vesselField,
       nodeField,
+      territory,
       names: textsOf('name'),
       kinds: textsOf('kind'),
       provenance,
@@ -204,7 +207,17 @@ export const JSON_TREE: TreeFormat = {
   parts: ['.json'],
   units: 'SI; the unit is in each key',
   precision: 0,
-  keeps: ['positions', 'radii', 'flows', 'tree index', 'tree names and kinds', 'orders', 'flow solution', 'provenance'],
+  keeps: [
+    'positions',
+    'radii',
+    'flows',
+    'tree index',
+    'tree names and kinds',
+    'orders',
+    'flow solution',
+    'territories',
+    'provenance',
+  ],
   drops: [],
   encode: encodeJson,
   decode: decodeJson,

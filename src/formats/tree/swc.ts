@@ -103,6 +103,7 @@ function decodeSwc(files: readonly NamedBytes[]): DecodedTree {
       order: null,
       vesselField: {},
       nodeField: {},
+      territory: null,
       names: names.length > 0 ? names : null,
       kinds: kinds.length > 0 ? kinds : null,
       provenance: null,
@@ -148,7 +149,7 @@ export const SWC: TreeFormat = {
   units: 'micrometres, as the standard has it',
   precision: 1e-15,
   keeps: ['positions', 'radii', 'tree names and kinds'],
-  drops: ['flows', 'tree index', 'orders', 'flow solution', 'provenance'],
+  drops: ['flows', 'tree index', 'orders', 'flow solution', 'territories', 'provenance'],
   encode: encodeSwc,
   decode: decodeSwc,
 };

@@ -5,7 +5,7 @@ import { countVessels } from '../../tree/vessels.ts';
 import { assembleTree } from '../assemble.ts';
 import { FaultList } from '../faults.ts';
 import type { ByteSource, DecodedTree, EncodedFile } from '../format.ts';
-import { columnName, NODE_COLUMNS, type NodeKey, VESSEL_COLUMNS, type VesselKey } from '../quantities.ts';
+import { columnName, NODE_COLUMNS, type NodeKey, TERRITORY, VESSEL_COLUMNS, type VesselKey } from '../quantities.ts';
 import { columnToSi, unitOfName } from '../text/numbers.ts';
 import type { LineData } from '../vtk/data-set-reader.ts';
 import {
@@ -48,6 +48,7 @@ export function treeAsLines(record: TreeRecord): DataSetParts & { readonly lines
     ofVessels('tree', forest.tree),
     ofVessels('order', record.order),
   ];
+  if (record.territory) cellData.push(ofVessels(TERRITORY, record.territory));
   const pointData: NamedArray[] = [];
   if (field !== null) {
     for (const column of VESSEL_COLUMNS) cellData.push(ofVessels(columnName(column), field[column.key]));
@@ -139,6 +140,7 @@ export function treeOfLines(
     if (values !== null) nodeField[column.key] = values;
   }
   const flow = spread(arrays.cell('flow', 'flow'));
+  const territory = spread(arrays.cell(TERRITORY, null));
   const tree = whole(arrays.cellIndices('tree'));
   const order = whole(arrays.cellIndices('order'));
   const texts = (of: string): string[] | null => {
@@ -163,6 +165,7 @@ export function treeOfLines(
       order,
       vesselField,
       nodeField,
+      territory,
       names,
       kinds,
       provenance,

@@ -6,7 +6,7 @@ import { ZOO } from '../../support/tree-zoo.ts';
 
 /** Nodes and vessels of a record, vessels in a given order of their vessel numbers. */
 function looseOf(name: keyof typeof ZOO, order: (vessels: number) => number[]): LooseTree {
-  const { forest, names, kinds, order: orders } = ZOO[name]!;
+  const { forest, names, kinds, order: orders, territory } = ZOO[name]!;
   const rows = Array.from({ length: forest.count }, (_, i) => i).filter((i) => forest.parent[i]! >= 0);
   const listed = order(rows.length).map((v) => rows[v]!);
   return {
@@ -22,6 +22,7 @@ function looseOf(name: keyof typeof ZOO, order: (vessels: number) => number[]): 
     order: Int32Array.from(listed, (i) => orders[i]!),
     vesselField: {},
     nodeField: {},
+    territory: territory ? Float64Array.from(listed, (i) => territory[i]!) : null,
     names,
     kinds,
     provenance: null,
