@@ -1,5 +1,7 @@
 /** Items and nodes that a node holds. */
-const FAN = 4;
+export const FAN = 4;
+/** More than the spacing of float32 numbers relative to their size, 2⁻²³. */
+const HAIR = 1.3e-7;
 
 /**
  * A hierarchy of boxes over items of any size, for overlap and nearest queries.
@@ -21,8 +23,13 @@ export interface BoxTree {
 /** Writes the box of an item to out[0…5]. */
 export type BoxOf = (item: number, out: Float64Array) => void;
 
-/** Builds the hierarchy. All boxes must be finite. Cost: O(n), two counting passes. */
-export function buildBoxTree(count: number, boxOf: BoxOf): BoxTree {
+/**
+ * Builds the hierarchy. All boxes must be finite.
+ *
+ * @param slotBox (6 n) filled with the box of each slot's item, rounded outwards; may be left out
+ * Cost: O(n), two counting passes.
+ */
+export function buildBoxTree(count: number, boxOf: BoxOf, slotBox?: Float32Array): BoxTree {
   const one = new Float64Array(6);
   const low = [Infinity, Infinity, Infinity];
   const high = [-Infinity, -Infinity, -Infinity];
@@ -64,6 +71,11 @@ export function buildBoxTree(count: number, boxOf: BoxOf): BoxTree {
   for (let slot = 0; slot < count; slot++) {
     boxOf(item[slot]!, one);
     grow(box, 6 * (slot >> 2), one, 0);
+    if (slotBox === undefined) continue;
+    for (let k = 0; k < 3; k++) {
+      slotBox[6 * slot + k] = one[k]! - HAIR * Math.abs(one[k]!);
+      slotBox[6 * slot + k + 3] = one[k + 3]! + HAIR * Math.abs(one[k + 3]!);
+    }
   }
   for (let level = 1; level + 1 < levelStart.length; level++) {
     const below = levelStart[level - 1]!;
@@ -157,6 +169,59 @@ export function visitOverlaps(
       if (((child + 1) << (2 * level)) - 1 < firstSlot) continue;
       stack[top++] = level - 1;
       stack[top++] = child;
+    }
+  }
+}
+
+/** How far apart boxes may be to be of interest; whoever visits them may lower it on the way. */
+export interface Reach {
+  /** m, ≥ 0 */
+  margin: number;
+}
+
+/**
+ * Calls `visit` for every two leaves (and every leaf with itself) whose boxes may come within the reach of one another
+ * along each axis, the first never after the second. Leaf k holds the slots `FAN` · k to `FAN` · k + `FAN` − 1.
+ *
+ * Both go down the hierarchy together, so that what lies far apart is told so once for all that it holds.
+ */
+export function visitNearLeaves(tree: BoxTree, reach: Reach, visit: (one: number, other: number) => void): void {
+  if (tree.count === 0) return;
+  const { levelStart, box } = tree;
+  // Sixteen pairs a level at most, three numbers each, and levels ≤ 16.
+  const stack = new Int32Array(1024);
+  let top = 3;
+  stack[0] = levelStart.length - 2;
+  while (top > 0) {
+    const b = stack[--top]!;
+    const a = stack[--top]!;
+    const level = stack[--top]!;
+    if (level === 0) {
+      visit(a, b);
+      continue;
+    }
+    const below = levelStart[level - 1]!;
+    const size = levelStart[level]! - below;
+    const endA = Math.min(FAN * a + FAN, size);
+    const endB = Math.min(FAN * b + FAN, size);
+    for (let i = endA - 1; i >= FAN * a; i--) {
+      const at = 6 * (below + i);
+      const { margin } = reach;
+      const x0 = box[at]! - margin;
+      const y0 = box[at + 1]! - margin;
+      const z0 = box[at + 2]! - margin;
+      const x1 = box[at + 3]! + margin;
+      const y1 = box[at + 4]! + margin;
+      const z1 = box[at + 5]! + margin;
+      for (let j = endB - 1; j >= FAN * b; j--) {
+        if (j < i) break;
+        const to = 6 * (below + j);
+        if (box[to]! > x1 || box[to + 3]! < x0 || box[to + 1]! > y1 || box[to + 4]! < y0) continue;
+        if (box[to + 2]! > z1 || box[to + 5]! < z0) continue;
+        stack[top++] = level - 1;
+        stack[top++] = i;
+        stack[top++] = j;
+      }
     }
   }
 }

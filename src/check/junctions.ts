@@ -88,5 +88,8 @@ function angleAt(position: Forest['position'], node: number, a: number, b: numbe
   const vx = position[3 * b]! - position[3 * node]!;
   const vy = position[3 * b + 1]! - position[3 * node + 1]!;
   const vz = position[3 * b + 2]! - position[3 * node + 2]!;
-  return Math.atan2(Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx), ux * vx + uy * vy + uz * vz);
+  const nx = uy * vz - uz * vy;
+  const ny = uz * vx - ux * vz;
+  const nz = ux * vy - uy * vx;
+  return Math.atan2(Math.sqrt(nx * nx + ny * ny + nz * nz), ux * vx + uy * vy + uz * vz);
 }

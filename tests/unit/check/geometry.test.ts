@@ -1,6 +1,13 @@
 import { describe, expect, test } from 'vitest';
 import { nodeToSegment, segmentToSegment } from '../../../src/check/axis-distance.ts';
-import { buildBoxTree, nearestSquaredDistance, traversalStack, visitOverlaps } from '../../../src/check/box-tree.ts';
+import {
+  buildBoxTree,
+  FAN,
+  nearestSquaredDistance,
+  traversalStack,
+  visitNearLeaves,
+  visitOverlaps,
+} from '../../../src/check/box-tree.ts';
 import { measureClearance } from '../../../src/check/clearance.ts';
 import { junctionReach } from '../../../src/check/junctions.ts';
 import { Tally } from '../../../src/check/result.ts';
@@ -80,10 +87,64 @@ describe('box tree', () => {
     }
   });
 
+  test('keeps boxes by slot, rounded outwards by no more than float32 needs', () => {
+    const slotBox = new Float32Array(6 * n);
+    const { item } = buildBoxTree(n, (i, out) => out.set(boxes.subarray(6 * i, 6 * i + 6)), slotBox);
+    for (let slot = 0; slot < n; slot++) {
+      for (let k = 0; k < 3; k++) {
+        const [low, high] = [boxes[6 * item[slot]! + k]!, boxes[6 * item[slot]! + k + 3]!];
+        expect(slotBox[6 * slot + k]).toBeLessThanOrEqual(low);
+        expect(slotBox[6 * slot + k]).toBeGreaterThan(low - 1e-6);
+        expect(slotBox[6 * slot + k + 3]).toBeGreaterThanOrEqual(high);
+        expect(slotBox[6 * slot + k + 3]).toBeLessThan(high + 1e-6);
+      }
+    }
+  });
+
+  test.each([0, 0.03, 10])('visits every two leaves that come within %d, once', (margin) => {
+    const seen = new Set<number>();
+    const leaves = Math.ceil(n / FAN);
+    visitNearLeaves(tree, { margin }, (a, b) => {
+      expect(a).toBeLessThanOrEqual(b);
+      expect(seen.has(leaves * a + b)).toBe(false);
+      seen.add(leaves * a + b);
+    });
+    for (let p = 0; p < n; p++) {
+      for (let q = p; q < n; q++) {
+        const [i, j] = [6 * tree.item[p]!, 6 * tree.item[q]!];
+        const near = [0, 1, 2].every(
+          (k) => boxes[i + k]! <= boxes[j + k + 3]! + margin && boxes[i + k + 3]! >= boxes[j + k]! - margin,
+        );
+        if (near) expect(seen.has(leaves * Math.floor(p / FAN) + Math.floor(q / FAN))).toBe(true);
+      }
+    }
+    // Not all by all, unless the margin spans the whole.
+    const all = (leaves * (leaves + 1)) / 2;
+    if (margin === 10) expect(seen.size).toBe(all);
+    else expect(seen.size).toBeLessThan(0.8 * all);
+  });
+
+  test('visits what a margin that is lowered on the way leaves', () => {
+    const reach = { margin: 10 };
+    let visits = 0;
+    visitNearLeaves(tree, reach, () => {
+      visits++;
+      reach.margin = 0;
+    });
+    let few = 0;
+    visitNearLeaves(tree, { margin: 0 }, () => few++);
+    expect(visits).toBeGreaterThanOrEqual(few);
+    expect(visits).toBeLessThan(few + 200);
+  });
+
   test('of nothing, and of one', () => {
     const empty = buildBoxTree(0, () => {});
     expect(nearestSquaredDistance(empty, 0, 0, 0, traversalStack(), () => 0)).toBe(Infinity);
+    visitNearLeaves(empty, { margin: 1 }, () => expect.unreachable());
     const one = buildBoxTree(1, (_, out) => out.fill(2));
+    const pairs: number[][] = [];
+    visitNearLeaves(one, { margin: 1 }, (a, b) => pairs.push([a, b]));
+    expect(pairs).toEqual([[0, 0]]);
     expect(nearestSquaredDistance(one, 0, 0, 0, traversalStack(), () => 12)).toBe(12);
   });
 });
