@@ -1,12 +1,16 @@
 import { inputError } from '../core/errors.ts';
 import type { Watch } from '../core/progress.ts';
 import { Attacher } from '../moves/attach.ts';
+import { Rehanger } from '../moves/rehang.ts';
+import { NodeMover } from '../moves/move-node.ts';
 import { straighten } from '../moves/straighten.ts';
+import { flowWeight } from '../physics/murray.ts';
 import { Room } from '../room/room.ts';
 import { askedDrop, fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
 import type { Spec } from '../spec/types.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { ForestBuilder } from '../tree/builder.ts';
+import { Batch } from './batch.ts';
 import type { Demand } from './demand.ts';
 import { evict } from './evict.ts';
 import { mendByMoving } from './mend.ts';
@@ -16,8 +20,19 @@ import { shareByTerritory } from './territories.ts';
 
 /** Growth of the whole forest between two refreshes of potentials and sizes. */
 const REFRESH = 1.05;
+/** Sites in hand at once, as a share of the terminals served, and at most. */
+const BATCH = 0.02;
+const MOST_BATCH = 8192;
+/** Placements proposed for each. */
+const KEEP = 4;
 /** Growth between two sizings of trees whose radii depend on all their lengths. */
 const RESIZE = 1.15;
+/** Growth between two sweeps that move nodes to their best places. */
+const RELAX = 1.1;
+/** Radii over today's that a moved node leaves room for, so that the tubes at it can still gain flow. */
+const RELAX_SLACK = 1.2;
+/** Gain, as a share of the cost of its tubes, for which a node is moved. */
+const RELAX_GAIN = 1e-3;
 /** Growth between two rebuilds of the grid. */
 const GRID = 1.5;
 /** Edge of a grid cell over the spacing of terminals. */
@@ -64,6 +79,10 @@ export class Grower {
   cramped = false;
   /** Vessels that were made to fit by moving a node. */
   private mended = 0;
+  private readonly batch: Batch;
+  private readonly mover: NodeMover;
+  private readonly rehanger: Rehanger;
+  private nextRelax = 8;
   private nextRefresh = 2;
   private nextResize = 2;
   private nextGrid = 8;
@@ -102,13 +121,22 @@ export class Grower {
       const seedling = plant(builder, room, tree, `trees[${t}]`, radius);
       this.trees.push({ seedling, demand, resizer: new Resizer(spec, tree), resized, full: false });
     }
+    this.batch = new Batch(tissue, MOST_BATCH, KEEP, (bytes) => new ArrayBuffer(bytes));
+    this.mover = new NodeMover(builder, room);
     this.attacher = new Attacher(
       builder,
       room,
-      { first: 16, second: 64, headroom: HEADROOM },
+      {
+        first: 16,
+        second: 24,
+        keep: 4,
+        slimmest: this.trees.some((tree) => tree.resized) ? 0.7 : 1,
+        headroom: HEADROOM,
+      },
       (row, along, length, share) =>
         this.trees[builder.tree[row]!]!.resizer.terminalWeight(builder, row, along, length, share),
     );
+    this.rehanger = new Rehanger(builder, room, this.attacher.potential);
   }
 
   /** m; first vessels' radii foreseen for trees of so many terminals. */
@@ -125,15 +153,19 @@ export class Grower {
 
   /** Serves what is wanted, as far as there is room. */
   grow(stage = 'growth'): Stopped {
-    let steps = 0;
-    while (true) {
-      const tree = this.hungriest();
-      if (tree < 0) break;
+    const { batch } = this;
+    for (let told = this.served; ; ) {
+      if (this.watch.signal?.aborted) return 'cancelled';
       if (this.cramped) return 'no-room';
-      this.step(tree);
-      if ((++steps & 63) === 0) {
-        if (this.watch.signal?.aborted) return 'cancelled';
-        if ((steps & 255) === 0) this.watch.onProgress?.({ stage, done: this.served, total: this.wanted });
+      this.fillBatch();
+      if (batch.count === 0) break;
+      batch.sort();
+      this.propose();
+      for (let k = 0; k < batch.count; k++) this.serveOne(batch.order[k]!);
+      if (this.served >= this.nextRefresh) this.refresh();
+      if (this.served - told >= 256 || batch.count >= 256) {
+        told = this.served;
+        this.watch.onProgress?.({ stage, done: told, total: this.wanted });
       }
     }
     for (const tree of this.trees) {
@@ -212,14 +244,38 @@ export class Grower {
     shareByTerritory(this.builder, t, this.tissue, this.trees[t]!.demand, (row) => this.siteOf[row]!);
   }
 
+  /** Takes sites in hand, from the tree that has served the least part of its demand first. */
+  private fillBatch(): void {
+    const { batch } = this;
+    batch.clear();
+    const inHand = new Int32Array(this.trees.length);
+    const most = Math.min(Math.max(1, Math.floor(BATCH * this.served)), MOST_BATCH);
+    while (batch.count < most) {
+      const t = this.hungriest(inHand);
+      if (t < 0) return;
+      const { demand } = this.trees[t]!;
+      // A tree's first terminal is hung alone: there is no tube yet that another could be proposed for.
+      if (demand.served === 0 && batch.count > 0) return;
+      if (!demand.next()) {
+        this.trees[t]!.full = true;
+        continue;
+      }
+      const { site } = demand;
+      inHand[t]!++;
+      batch.add(t, site, demand.siteX(site), demand.siteY(site), demand.siteZ(site), demand.siteShare(site));
+      if (demand.served === 0) return;
+    }
+  }
+
   /** Index of the tree that has served the least part of its demand, or −1 when all are full or served. */
-  private hungriest(): number {
+  private hungriest(inHand: Int32Array): number {
     let best = -1;
     let least = Infinity;
     for (let t = 0; t < this.trees.length; t++) {
       const { demand, full } = this.trees[t]!;
-      if (full || demand.served >= demand.wanted) continue;
-      const part = demand.served / demand.wanted;
+      const taken = demand.served + inHand[t]!;
+      if (full || taken >= demand.wanted) continue;
+      const part = taken / demand.wanted;
       if (part < least) {
         least = part;
         best = t;
@@ -228,23 +284,43 @@ export class Grower {
     return best;
   }
 
-  private step(t: number): void {
+  /** Looks for places for all sites in hand, against the forest as it stands. */
+  private propose(): void {
+    const { batch } = this;
+    const { proposer } = this.attacher;
+    this.attacher.potential.follow();
+    for (let n = 0; n < batch.count; n++) {
+      const k = batch.order[n]!;
+      if (this.trees[batch.tree[k]!]!.demand.served === 0) continue;
+      const p = batch.position;
+      const count = proposer.propose(batch.tree[k]!, p[3 * k]!, p[3 * k + 1]!, p[3 * k + 2]!, batch.share[k]!);
+      batch.proposed[k] = count;
+      for (let i = 0; i < count; i++) batch.row[k * batch.keep + i] = proposer.row[i]!;
+      for (let i = 0; i < 3 * count; i++) batch.at[3 * k * batch.keep + i] = proposer.at[i]!;
+    }
+  }
+
+  /** Hangs one of the sites in hand, or gives it back. */
+  private serveOne(k: number): void {
+    const { batch, attacher } = this;
+    const t = batch.tree[k]!;
     const tree = this.trees[t]!;
     const { demand } = tree;
-    if (!demand.next()) {
-      tree.full = true;
-      return;
-    }
-    const site = demand.site;
-    const x = demand.siteX(site);
-    const y = demand.siteY(site);
-    const z = demand.siteZ(site);
-    const share = demand.siteShare(site);
+    const site = batch.site[k]!;
+    const x = batch.position[3 * k]!;
+    const y = batch.position[3 * k + 1]!;
+    const z = batch.position[3 * k + 2]!;
+    const share = batch.share[k]!;
     const first = demand.served === 0;
-    let row = first
-      ? hangFirst(this.builder, this.room, tree.seedling, x, y, z, share)
-      : this.attacher.attach(t, x, y, z, share);
-    if (row < 0 && !first && demand.isPrecious(site)) row = this.attacher.attachBent(t, x, y, z, share);
+    let row = -1;
+    if (first) row = hangFirst(this.builder, this.room, tree.seedling, x, y, z, share);
+    else {
+      const count = batch.proposed[k]!;
+      row = attacher.hang(batch.row, batch.at, k * batch.keep, count, x, y, z, share);
+      // What was hung since has taken the place; where nothing was proposed there is less room now than then.
+      if (row < 0 && count > 0 && batch.count > 1) row = attacher.attach(t, x, y, z, share);
+      if (row < 0 && demand.isPrecious(site)) row = attacher.attachBent(t, x, y, z, share);
+    }
     if (row < 0) {
       demand.giveBack(site, false);
       return;
@@ -258,8 +334,7 @@ export class Grower {
       const a = this.builder.child[2 * junction]!;
       tree.resizer.extend(this.builder, junction, row, a === branch ? this.builder.child[2 * junction + 1]! : a);
     }
-    if (first) this.attacher.refreshPotential(this.builder.preorder(t), share);
-    if (this.served >= this.nextRefresh) this.refresh();
+    if (first) attacher.refreshPotential(this.builder.preorder(t), share);
   }
 
   private refresh(): void {
@@ -268,6 +343,10 @@ export class Grower {
     if (served >= this.nextGrid) {
       this.nextGrid = GRID * served;
       this.room.rebuild(CELL * Math.cbrt(this.tissue.volume / served));
+    }
+    if (served >= this.nextRelax) {
+      this.nextRelax = RELAX * served;
+      this.relax();
     }
     let changed = false;
     const due = served >= this.nextResize;
@@ -288,6 +367,25 @@ export class Grower {
       const whole = this.builder.load[this.builder.child[2 * seedling.root]!]!;
       this.attacher.refreshPotential(this.builder.preorder(t), whole / demand.served);
     }
+  }
+
+  /** Moves every node once; each tree is weighed as if its tubes had their least-power radii. */
+  private relax(): void {
+    const { builder, room } = this;
+    const weight = new Float64Array(builder.capacity);
+    for (let row = 0; row < builder.count; row++) weight[row] = flowWeight(builder.load[row]!);
+    room.slack = RELAX_SLACK;
+    for (let row = 0; row < builder.count; row++) this.mover.move(row, weight, RELAX_GAIN);
+    const part = Number((globalThis as any).PART ?? 500);
+    for (let t = 0; t < this.trees.length; t++) {
+      const { demand, seedling } = this.trees[t]!;
+      if (demand.served < 3) continue;
+      const order = builder.preorder(t);
+      const whole = builder.load[builder.child[2 * seedling.root]!]!;
+      this.attacher.refreshPotential(order, whole / demand.served);
+      for (const row of order) if (builder.load[row]! * part >= whole) this.rehanger.rehang(row, 1e-3);
+    }
+    room.slack = 1;
   }
 
   private resize(t: number, final: boolean): void {

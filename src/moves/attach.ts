@@ -1,10 +1,10 @@
 import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 import { BEND_PLACES, BendPlaces } from './bend-places.ts';
-import { Candidates } from './candidates.ts';
-import { JunctionPlaces } from './junction-places.ts';
 import { Potential } from './potential.ts';
+import { type ProposeOptions, Proposer } from './proposer.ts';
 import { span } from './span.ts';
+import { Trial } from './trial.ts';
 
 /*
  * Lab notes (box, γ = 3, one thread of a busy two-core machine, December 2026):
@@ -15,10 +15,7 @@ import { span } from './span.ts';
  */
 
 /** What growth asks of an attachment search. */
-export interface AttachOptions {
-  /** Tubes looked at in the first try, and in the second where none of them would do. */
-  readonly first: number;
-  readonly second: number;
+export interface AttachOptions extends ProposeOptions {
   /** Radius certified over radius needed, so that a vessel may gain a little without a new look. */
   readonly headroom: number;
 }
@@ -37,28 +34,21 @@ const BENT_CANDIDATES = 12;
 export class Attacher {
   private readonly builder: ForestBuilder;
   private readonly room: Room;
-  private readonly options: AttachOptions;
   private readonly terminalWeight: TerminalWeight;
-  private readonly potential: Potential;
-  private readonly candidates: Candidates;
-  private readonly places: JunctionPlaces;
+  readonly potential: Potential;
+  readonly proposer: Proposer;
   private readonly bends: BendPlaces;
-  private savedRow = new Int32Array(256);
-  private saved = new Float64Array(512);
-  private savedCount = 0;
-  /** Tubes above which a way up has refused this site's share; nothing below them can serve it. */
-  private readonly blocked: number[] = [];
+  private readonly trial: Trial;
   /** How often each outcome was met; for lab notes and benches. */
-  readonly tally = { sites: 0, served: 0, candidates: 0, tried: 0, path: 0 };
+  readonly tally = { served: 0, tried: 0 };
 
   constructor(builder: ForestBuilder, room: Room, options: AttachOptions, terminalWeight: TerminalWeight) {
     this.builder = builder;
     this.room = room;
-    this.options = options;
     this.terminalWeight = terminalWeight;
     this.potential = new Potential(builder);
-    this.candidates = new Candidates(builder, room, this.potential);
-    this.places = new JunctionPlaces(builder, room);
+    this.proposer = new Proposer(builder, room, this.potential, options);
+    this.trial = new Trial(builder, room, options.headroom);
     this.bends = new BendPlaces(room.tissue);
   }
 
@@ -82,19 +72,33 @@ export class Attacher {
    */
   attach(tree: number, x: number, y: number, z: number, share: number): number {
     this.potential.follow();
-    this.tally.sites++;
-    this.blocked.length = 0;
-    const first = this.options.first;
-    const found = this.candidates.search(tree, x, y, z, share, first);
-    for (let k = 0; k < found; k++) {
-      const row = this.tryCandidate(this.candidates.rows[k]!, x, y, z, share);
-      if (row >= 0) return row;
-    }
-    if (found < first) return -1;
-    const more = this.candidates.search(tree, x, y, z, share, this.options.second);
-    for (let k = 0; k < more; k++) {
-      const row = this.tryCandidate(this.candidates.rows[k]!, x, y, z, share);
-      if (row >= 0) return row;
+    const { proposer } = this;
+    const count = proposer.propose(tree, x, y, z, share);
+    return this.hang(proposer.row, proposer.at, 0, count, x, y, z, share);
+  }
+
+  /**
+   * Hangs one terminal at the first of some proposed placements that fits.
+   *
+   * @param rows, at rows of tubes, and (3k) m, places of their junctions; `count` of them from index `from`
+   * @returns the terminal's row, or −1 where none fits; the forest is then as before
+   */
+  hang(
+    rows: Int32Array,
+    at: Float64Array,
+    from: number,
+    count: number,
+    x: number,
+    y: number,
+    z: number,
+    share: number,
+  ): number {
+    this.trial.forget();
+    for (let k = from; k < from + count; k++) {
+      const row = rows[k]!;
+      if (this.builder.parent[row]! < 0 || this.trial.isBlocked(row)) continue;
+      const served = this.tryAt(row, at[3 * k]!, at[3 * k + 1]!, at[3 * k + 2]!, x, y, z, share);
+      if (served >= 0) return served;
     }
     return -1;
   }
@@ -104,9 +108,10 @@ export class Attacher {
    * sites that must be served.
    */
   attachBent(tree: number, x: number, y: number, z: number, share: number): number {
-    const { candidates, places, bends } = this;
+    const { bends } = this;
+    const { candidates, places } = this.proposer;
     this.potential.follow();
-    this.blocked.length = 0;
+    this.trial.forget();
     const found = candidates.search(tree, x, y, z, share, BENT_CANDIDATES);
     bends.face(x, y, z);
     for (let c = 0; c < found; c++) {
@@ -116,25 +121,12 @@ export class Attacher {
         const jx = places.at[3 * k]!;
         const jy = places.at[3 * k + 1]!;
         const jz = places.at[3 * k + 2]!;
-        for (let b = 0; b < BEND_PLACES && !this.isBlocked(row); b++) {
+        for (let b = 0; b < BEND_PLACES && !this.trial.isBlocked(row); b++) {
           bends.find(b, jx, jy, jz, x, y, z);
           const served = this.tryAt(row, jx, jy, jz, x, y, z, share, bends.at);
           if (served >= 0) return served;
         }
       }
-    }
-    return -1;
-  }
-
-  private tryCandidate(row: number, x: number, y: number, z: number, share: number): number {
-    this.tally.candidates++;
-    if (this.isBlocked(row)) return -1;
-    const { at } = this.places;
-    const count = this.places.find(row, x, y, z, share);
-    for (let k = 0; k < count; k++) {
-      const served = this.tryAt(row, at[3 * k]!, at[3 * k + 1]!, at[3 * k + 2]!, x, y, z, share);
-      if (served >= 0) return served;
-      if (this.blocked.length > 0 && this.isBelow(row, this.blocked[this.blocked.length - 1]!)) return -1;
     }
     return -1;
   }
@@ -168,95 +160,18 @@ export class Attacher {
       builder.load[bend] = share;
       builder.weight[bend] = weight;
     }
-    this.raise(junction, share, weight);
-    if (this.examine(parent, row, junction, bend, site)) {
+    this.trial.raise(junction, share, weight);
+    if (this.trial.examine(parent, row, junction, site, bend, -1)) {
       room.commit();
       this.tally.served++;
       this.keepPotential(junction, bend, site);
       return site;
     }
-    this.lower();
+    this.trial.lower();
     builder.removeTerminal(site);
     if (bend >= 0) builder.removeTerminal(bend);
     builder.spliceOut(junction);
     return -1;
-  }
-
-  /** Whether all that a try touches fits: its three or four tubes, their ends, and every vessel on the way to the root. */
-  private examine(parent: number, row: number, junction: number, bend: number, site: number): boolean {
-    const { builder, room } = this;
-    const { headroom } = this.options;
-    room.begin();
-    room.move(junction);
-    room.move(site);
-    room.move(row);
-    if (bend >= 0) room.move(bend);
-    // Cheap questions first.
-    if (!(room.fits(junction) && room.fits(parent) && room.fits(row))) return false;
-    if (bend >= 0 && !(room.fits(bend) && room.certify(bend, headroom))) return false;
-    if (!(room.certify(site, headroom) && room.certify(junction, headroom) && room.certify(row, headroom)))
-      return false;
-    let above = parent;
-    let raised = 0;
-    while (builder.parent[above]! >= 0) {
-      if (room.outgrown(above)) {
-        raised++;
-        if (!room.certify(above, headroom)) {
-          this.tally.path++;
-          this.blocked.push(above);
-          return false;
-        }
-      }
-      above = builder.parent[above]!;
-    }
-    if (raised > 0) {
-      above = parent;
-      while (builder.parent[above]! >= 0) {
-        if (room.raised(above)) {
-          if (!(room.fits(above) && room.fits(builder.parent[above]!))) {
-            this.tally.path++;
-            if (above !== parent) this.blocked.push(above);
-            return false;
-          }
-        }
-        above = builder.parent[above]!;
-      }
-      // Fits may cut reserves back only to today's radii, so what was certified stays certified.
-    }
-    return room.fits(junction) && room.fits(row) && room.fits(parent) && (bend < 0 || room.fits(bend));
-  }
-
-  /** Adds load and weight on the way from a row to the root, remembering what stood there. */
-  private raise(row: number, share: number, weight: number): void {
-    const { builder } = this;
-    let size = 0;
-    for (let at = row; builder.parent[at]! >= 0; at = builder.parent[at]!) {
-      if (size === this.savedRow.length) {
-        const rows = new Int32Array(2 * size);
-        rows.set(this.savedRow);
-        this.savedRow = rows;
-        const values = new Float64Array(4 * size);
-        values.set(this.saved);
-        this.saved = values;
-      }
-      this.savedRow[size] = at;
-      this.saved[2 * size] = builder.load[at]!;
-      this.saved[2 * size + 1] = builder.weight[at]!;
-      builder.load[at]! += share;
-      builder.weight[at]! += weight;
-      size++;
-    }
-    this.savedCount = size;
-  }
-
-  /** Takes back the last `raise`. */
-  private lower(): void {
-    const { builder } = this;
-    for (let k = 0; k < this.savedCount; k++) {
-      const row = this.savedRow[k]!;
-      builder.load[row] = this.saved[2 * k]!;
-      builder.weight[row] = this.saved[2 * k + 1]!;
-    }
   }
 
   /** Gives new rows their potentials; a bend takes the mean, as if it lay half way along the straight vessel. */
@@ -266,16 +181,5 @@ export class Attacher {
     potential.extend(junction, this.builder.parent[junction]!);
     potential.extend(site, junction);
     if (bend >= 0) potential.values[bend] = 0.5 * (potential.values[junction]! + potential.values[site]!);
-  }
-
-  private isBlocked(row: number): boolean {
-    for (let k = 0; k < this.blocked.length; k++) if (this.isBelow(row, this.blocked[k]!)) return true;
-    return false;
-  }
-
-  private isBelow(row: number, top: number): boolean {
-    const { builder } = this;
-    for (let at = row; at >= 0; at = builder.parent[at]!) if (at === top) return true;
-    return false;
   }
 }

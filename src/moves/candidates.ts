@@ -16,6 +16,8 @@ import { span } from './span.ts';
 export class Candidates {
   /** Rows of the tubes last found, cheapest first; replaced by a longer one where they are many. */
   rows = new Int32Array(256);
+  /** Power that each adds at its own tube alone, the way up apart; a lower bound of what the junction really costs there. */
+  local = new Float64Array(256);
   private scores = new Float64Array(256);
   private readonly builder: ForestBuilder;
   private readonly room: Room;
@@ -33,12 +35,18 @@ export class Candidates {
    *
    * @param share flow share of the terminal that is to hang on one of them, > 0
    * @param want  most tubes kept, ≥ 1
-   * @returns     number found, ≤ want; they are in `rows`, cheapest first, until the next search
+   * @param own   m, ≥ 0; radius that the terminal has at least
+   * @param top   row of a cut subtree, whose tubes do not count; −1: none
+   * @param least share that a tube must carry to be looked at
+   * @param start m, reach of the first round; 0: about a cell
+   * @param most  m, reach beyond which no tube is looked at
+   * @returns     number found, ≤ want; they are in `rows`, cheapest first, until the next search; −1 where a vessel
+   *              stands in the place itself
    */
-  search(tree: number, x: number, y: number, z: number, share: number, want: number): number {
+  search(tree: number, x: number, y: number, z: number, share: number, want: number, own = 0, top = -1, least = 0, start = 0, most = Infinity): number {
     const { builder, room } = this;
     const p = builder.position;
-    let reach = 0.8 * room.cell;
+    let reach = start > 0 ? start : 0.8 * room.cell;
     let found = 0;
     for (let round = 0; round < 40; round++) {
       const near = room.near(x, y, z, reach);
@@ -46,7 +54,7 @@ export class Candidates {
       for (let k = 0; k < near; k++) {
         const row = room.foundRow(k);
         const parent = builder.parent[row]!;
-        if (parent < 0 || builder.tree[row] !== tree || room.pinned.has(row)) continue;
+        if (parent < 0) continue;
         const reached = squaredDistanceToSegment(
           x,
           y,
@@ -58,20 +66,33 @@ export class Candidates {
           p[3 * row + 1]!,
           p[3 * row + 2]!,
         );
-        if (reached > reach * reach) continue;
+        if (own > 0) {
+          const widest = own + room.limits.gap + room.reserveOf(row);
+          if (reached < widest * widest) {
+            const wide = own + room.limits.gap + builder.radius(row);
+            if (reached < wide * wide) return -1;
+          }
+        }
+        if (reached > reach * reach || builder.tree[row] !== tree || room.pinned.has(row)) continue;
+        if (top >= 0 && (builder.load[row]! < least || isBelow(builder, row, top))) continue;
         if (found === this.rows.length) this.widen();
         this.rows[found++] = row;
       }
-      if (found >= want || reach > room.span) break;
+      if (found >= want || reach > room.span || reach >= most) break;
       reach *= 1.5;
     }
-    for (let k = 0; k < found; k++) this.scores[k] = this.scoreOf(this.rows[k]!, x, y, z, share);
-    sortByScore(this.rows, this.scores, found);
+    for (let k = 0; k < found; k++) {
+      const row = this.rows[k]!;
+      const local = this.localCost(row, x, y, z, share);
+      this.local[k] = local;
+      this.scores[k] = local + share * this.potential.values[builder.parent[row]!]!;
+    }
+    sortByScore(this.rows, this.scores, this.local, found);
     return Math.min(found, want);
   }
 
-  /** Power that a terminal adds on a tube at its best junction, in the cost model's unit. */
-  private scoreOf(row: number, x: number, y: number, z: number, share: number): number {
+  /** Power that a terminal adds at a tube with its best junction, in the cost model's unit; the way up is not in it. */
+  private localCost(row: number, x: number, y: number, z: number, share: number): number {
     const { builder, point } = this;
     const p = builder.position;
     const parent = builder.parent[row]!;
@@ -92,8 +113,7 @@ export class Candidates {
     return (
       above * span(ax - jx, ay - jy, az - jz) +
       below * (span(bx - jx, by - jy, bz - jz) - span(bx - ax, by - ay, bz - az)) +
-      own * span(x - jx, y - jy, z - jz) +
-      share * this.potential.values[parent]!
+      own * span(x - jx, y - jy, z - jz)
     );
   }
 
@@ -104,21 +124,32 @@ export class Candidates {
     const scores = new Float64Array(2 * this.scores.length);
     scores.set(this.scores);
     this.scores = scores;
+    const local = new Float64Array(2 * this.local.length);
+    local.set(this.local);
+    this.local = local;
   }
 }
 
+function isBelow(builder: ForestBuilder, row: number, top: number): boolean {
+  for (let at = row; at >= 0; at = builder.parent[at]!) if (at === top) return true;
+  return false;
+}
+
 /** Insertion sort; ties keep the lower row first, so that the order does not depend on how rows were found. */
-function sortByScore(rows: Int32Array, scores: Float64Array, count: number): void {
+function sortByScore(rows: Int32Array, scores: Float64Array, local: Float64Array, count: number): void {
   for (let i = 1; i < count; i++) {
     const row = rows[i]!;
     const score = scores[i]!;
+    const own = local[i]!;
     let j = i - 1;
     while (j >= 0 && (scores[j]! > score || (scores[j] === score && rows[j]! > row))) {
       rows[j + 1] = rows[j]!;
       scores[j + 1] = scores[j]!;
+      local[j + 1] = local[j]!;
       j--;
     }
     rows[j + 1] = row;
     scores[j + 1] = score;
+    local[j + 1] = own;
   }
 }

@@ -3,6 +3,7 @@ import { flowWeight } from '../physics/murray.ts';
 import { FIT_MARGIN, RUN_OUT, separationReach } from '../room/reach.ts';
 import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
+import type { Preview } from './preview.ts';
 import { span } from './span.ts';
 
 /*
@@ -23,13 +24,25 @@ const MOST_PLACES = 4;
 export class JunctionPlaces {
   /** (4, 3) m; places last found. */
   readonly at = new Float64Array(3 * MOST_PLACES);
+  /** (4) m; the ball of the junction at each. */
+  readonly ball = new Float64Array(MOST_PLACES);
+  /** (4) 1 where the junction lies on the tube as it is. */
+  readonly onTube = new Uint8Array(MOST_PLACES);
+  /** m; radii that the tubes above, below and to the side of the junction would have. */
+  above = 0;
+  below = 0;
+  own = 0;
+  private ballA = 0;
+  private ballB = 0;
   private readonly builder: ForestBuilder;
   private readonly room: Room;
+  private readonly preview: Preview;
   private readonly point = new Float64Array(3);
 
-  constructor(builder: ForestBuilder, room: Room) {
+  constructor(builder: ForestBuilder, room: Room, preview: Preview) {
     this.builder = builder;
     this.room = room;
+    this.preview = preview;
   }
 
   /**
@@ -37,13 +50,21 @@ export class JunctionPlaces {
    *
    * @param row   the tube's lower node
    * @param share flow share of the new terminal, > 0
+   * @param run   radii that its far end needs: a terminal's run-out, or the ball of a subtree over its radius
    * @returns     number of places, 0 to 4; they are in `at`, best first, until the next call
    */
-  find(row: number, x: number, y: number, z: number, share: number): number {
-    const { builder, point } = this;
+  find(row: number, x: number, y: number, z: number, share: number, run = RUN_OUT): number {
+    const { builder, point, preview } = this;
     const p = builder.position;
     const parent = builder.parent[row]!;
     const load = builder.load[row]!;
+    const grown = builder.radius(row);
+    this.below = grown;
+    this.above = grown * this.rootOf((load + share) / load);
+    this.own = grown * this.rootOf(share / load);
+    this.ballA = Math.max(preview.ballWith(parent, -1, 0, 0, 0, 0), this.above);
+    this.ballB = builder.child[2 * row]! < 0 ? RUN_OUT * grown : Math.max(preview.ballWith(row, -1, 0, 0, 0, 0), grown);
+    const ballS = run * this.own;
     const ax = p[3 * parent]!;
     const ay = p[3 * parent + 1]!;
     const az = p[3 * parent + 2]!;
@@ -55,7 +76,7 @@ export class JunctionPlaces {
     const jx = point[0]!;
     const jy = point[1]!;
     const jz = point[2]!;
-    count = this.keepPlace(count, row, jx, jy, jz, x, y, z, share);
+    count = this.keepPlace(count, row, jx, jy, jz, x, y, z, ballS);
     // On the tube itself: only the new side vessel can be in anybody's way.
     const ux = bx - ax;
     const uy = by - ay;
@@ -63,11 +84,14 @@ export class JunctionPlaces {
     const uu = ux * ux + uy * uy + uz * uz;
     let t = uu > 0 ? ((jx - ax) * ux + (jy - ay) * uy + (jz - az) * uz) / uu : 0;
     t = t < 0.25 ? 0.25 : t > 0.75 ? 0.75 : t;
-    count = this.keepPlace(count, row, ax + t * ux, ay + t * uy, az + t * uz, x, y, z, share);
+    const free = count;
+    count = this.keepPlace(count, row, ax + t * ux, ay + t * uy, az + t * uz, x, y, z, ballS);
     const s = t < 0.5 ? 0.7 : 0.3;
-    count = this.keepPlace(count, row, ax + s * ux, ay + s * uy, az + s * uz, x, y, z, share);
+    count = this.keepPlace(count, row, ax + s * ux, ay + s * uy, az + s * uz, x, y, z, ballS);
+    this.onTube.fill(0);
+    for (let k = free; k < count; k++) this.onTube[k] = this.liesOn(k, ax, ay, az, ux, uy, uz) ? 1 : 0;
     // Half way to the site, which leaves room at the tube.
-    count = this.keepPlace(count, row, 0.6 * jx + 0.4 * x, 0.6 * jy + 0.4 * y, 0.6 * jz + 0.4 * z, x, y, z, share);
+    count = this.keepPlace(count, row, 0.6 * jx + 0.4 * x, 0.6 * jy + 0.4 * y, 0.6 * jz + 0.4 * z, x, y, z, ballS);
     return count;
   }
 
@@ -81,24 +105,12 @@ export class JunctionPlaces {
     x: number,
     y: number,
     z: number,
-    share: number,
+    ballS: number,
   ): number {
-    const { builder, room } = this;
+    const { builder, room, above, own, ballA, ballB } = this;
+    const grown = this.below;
     const p = builder.position;
     const parent = builder.parent[row]!;
-    const load = builder.load[row]!;
-    const grown = builder.radius(row);
-    const above =
-      builder.exponent === 3
-        ? grown * Math.cbrt((load + share) / load)
-        : grown * Math.exp(Math.log((load + share) / load) / builder.exponent);
-    const own =
-      builder.exponent === 3
-        ? grown * Math.cbrt(share / load)
-        : grown * Math.exp(Math.log(share / load) / builder.exponent);
-    const ballA = Math.max(room.ballOf(parent), above);
-    const ballB = builder.child[2 * row]! < 0 ? RUN_OUT * grown : Math.max(room.ballOf(row), grown);
-    const ballS = RUN_OUT * own;
     for (let pass = 0; pass < 6; pass++) {
       let ax = p[3 * parent]! - jx;
       let ay = p[3 * parent + 1]! - jy;
@@ -156,6 +168,7 @@ export class JunctionPlaces {
         this.at[3 * count] = jx;
         this.at[3 * count + 1] = jy;
         this.at[3 * count + 2] = jz;
+        this.ball[count] = ball;
         return count + 1;
       }
       if (a + b < needA + needB && a + c < needA + needS && b + c < needB + needS) return count;
@@ -167,5 +180,22 @@ export class JunctionPlaces {
       jz += 1.05 * (pushA * az + pushB * bz + pushS * sz);
     }
     return count;
+  }
+
+  /** Whether place k is, to rounding, on the line from a along u. */
+  private liesOn(k: number, ax: number, ay: number, az: number, ux: number, uy: number, uz: number): boolean {
+    const dx = this.at[3 * k]! - ax;
+    const dy = this.at[3 * k + 1]! - ay;
+    const dz = this.at[3 * k + 2]! - az;
+    const cx = dy * uz - dz * uy;
+    const cy = dz * ux - dx * uz;
+    const cz = dx * uy - dy * ux;
+    const uu = ux * ux + uy * uy + uz * uz;
+    return cx * cx + cy * cy + cz * cz <= 1e-18 * uu * uu;
+  }
+
+  private rootOf(ratio: number): number {
+    const { exponent } = this.builder;
+    return exponent === 3 ? Math.cbrt(ratio) : Math.exp(Math.log(ratio) / exponent);
   }
 }

@@ -39,6 +39,8 @@ export class Room {
   readonly pinned = new Set<number>();
   /** Those of them that lead in from the boundary and need not lie in the tissue. */
   readonly exempt = new Set<number>();
+  /** Radii are taken this much wider in all that is asked, ≥ 1, so that what moves leaves room for growth. */
+  slack = 1;
   private reserve: Float64Array;
   private listed: Float64Array;
   private pending: Float64Array;
@@ -93,7 +95,7 @@ export class Room {
   move(row: number): void {
     this.follow();
     this.fresh.push(row);
-    this.set(row, this.builder.radius(row));
+    this.set(row, this.slack * this.builder.radius(row));
   }
 
   commit(): void {
@@ -128,6 +130,11 @@ export class Room {
     return this.grid.gather(x, y, z, x, y, z, reach);
   }
 
+  /** Rows listed within `reach` (m) of a segment; read them with `foundRow` before the next question. */
+  nearTube(ax: number, ay: number, az: number, bx: number, by: number, bz: number, reach: number): number {
+    return this.grid.gather(ax, ay, az, bx, by, bz, reach);
+  }
+
   foundRow(k: number): number {
     return this.grid.found[k]!;
   }
@@ -160,7 +167,7 @@ export class Room {
     const bx = p[3 * row]!;
     const by = p[3 * row + 1]!;
     const bz = p[3 * row + 2]!;
-    const least = builder.radius(row);
+    const least = this.slack * builder.radius(row);
     let granted = least * headroom;
     if (!this.exempt.has(row) && !tubeInside(this.tissue, ax, ay, az, bx, by, bz, this.wall * granted)) {
       if (headroom <= 1 || !tubeInside(this.tissue, ax, ay, az, bx, by, bz, this.wall * least)) {
@@ -198,7 +205,7 @@ export class Room {
         granted = allowed;
         continue;
       }
-      if (room - least < builder.radius(other)) return this.refuse('vessel', other);
+      if (room - least < this.slack * builder.radius(other)) return this.refuse('vessel', other);
       granted = least;
       this.set(other, room - least);
     }
@@ -312,7 +319,7 @@ export class Room {
   }
 
   private cutBack(row: number): void {
-    const radius = this.builder.radius(row);
+    const radius = this.slack * this.builder.radius(row);
     if (radius < this.reserveOf(row)) this.set(row, radius);
   }
 

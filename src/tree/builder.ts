@@ -2,6 +2,8 @@ import { InvariantError } from '../core/errors.ts';
 
 /** A row that an eviction has given back. */
 export const FREED = -2;
+/** Parent of the node that a cut subtree hangs from until it is hung anew. */
+export const LOOSE = -3;
 
 /**
  * Rooted binary trees that may still change: the one structure growth and refinement write.
@@ -32,6 +34,9 @@ export class ForestBuilder {
   /** m; radius of the first vessel by tree. */
   readonly inletRadius: number[] = [];
   private readonly free: number[] = [];
+  /** Tree from which a subtree is cut at this moment, and the weight that its radii go on to refer to. */
+  private cutTree = -1;
+  private cutWhole = 0;
 
   constructor(exponent: number, capacity = 1024) {
     this.exponent = exponent;
@@ -118,6 +123,55 @@ export class ForestBuilder {
     else this.child[2 * parent + 1] = row;
   }
 
+  /**
+   * Takes a subtree off: the junction that it leaves stays with it as a loose node, its sibling hangs on what is above.
+   * Loads and weights above are the caller's to change; radii stay as they are.
+   */
+  cut(top: number): void {
+    const junction = this.parent[top]!;
+    const tree = this.tree[top]!;
+    const sibling = this.child[2 * junction] === top ? this.child[2 * junction + 1]! : this.child[2 * junction]!;
+    if (this.cutTree >= 0 || sibling < 0 || this.parent[junction]! < 0)
+      throw new InvariantError(`cut: row ${top} cannot be cut`);
+    this.cutTree = tree;
+    this.cutWhole = this.weight[this.child[2 * this.roots[tree]!]!]!;
+    this.replaceChild(this.parent[junction]!, junction, sibling);
+    this.parent[sibling] = this.parent[junction]!;
+    this.child[2 * junction] = top;
+    this.child[2 * junction + 1] = -1;
+    this.parent[junction] = LOOSE;
+  }
+
+  /** Hangs a cut subtree on a junction that has room for it; the loose node is kept until `endCut` or `unhang`. */
+  hang(top: number, junction: number): void {
+    this.parent[top] = junction;
+    this.linkChild(junction, top);
+  }
+
+  /** Takes back `hang`. */
+  unhang(top: number, loose: number): void {
+    this.unlinkChild(this.parent[top]!, top);
+    this.parent[top] = loose;
+  }
+
+  /** Ends a cut whose subtree hangs again; gives the loose node back. */
+  endCut(loose: number): void {
+    this.freeRow(loose);
+    this.cutTree = -1;
+  }
+
+  /** Takes back `cut`: the loose node goes back above the sibling it had, on the side that its subtree had. */
+  uncut(top: number, sibling: number, wasFirst: boolean): void {
+    const junction = this.parent[top]!;
+    const above = this.parent[sibling]!;
+    this.replaceChild(above, sibling, junction);
+    this.parent[junction] = above;
+    this.parent[sibling] = junction;
+    this.child[2 * junction] = wasFirst ? top : sibling;
+    this.child[2 * junction + 1] = wasFirst ? sibling : top;
+    this.cutTree = -1;
+  }
+
   freeRow(row: number): void {
     this.parent[row] = FREED;
     this.child[2 * row] = -1;
@@ -128,8 +182,8 @@ export class ForestBuilder {
   /** m; radius of the tube that ends at a row (of a root: of its first vessel). */
   radius(row: number): number {
     const tree = this.tree[row]!;
-    const first = this.child[2 * this.roots[tree]!]!;
-    const share = this.weight[row]! / this.weight[first]!;
+    const whole = tree === this.cutTree ? this.cutWhole : this.weight[this.child[2 * this.roots[tree]!]!]!;
+    const share = this.weight[row]! / whole;
     const root = this.exponent === 3 ? Math.cbrt(share) : Math.exp(Math.log(share) / this.exponent);
     return this.inletRadius[tree]! * root;
   }
