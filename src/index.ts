@@ -22,6 +22,7 @@ export type { LumenMesh } from './mesh/lumen.ts';
 export { CAUTION } from './report/caution.ts';
 export { renderReport } from './report/render.ts';
 export type { Report } from './report/report.ts';
+export { withResources } from './report/resources.ts';
 export {
   checkRun,
   describeChanges,

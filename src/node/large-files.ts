@@ -6,8 +6,13 @@ const STRETCH = 1 << 28;
 /** Pieces smaller than this are gathered before they are written. */
 const SMALL = 1 << 16;
 
-/** What a file is made of: bytes, a text, or pieces that follow one another, each good until the next is taken. */
-export type Content = Uint8Array | string | Iterable<Uint8Array>;
+/**
+ * What a file is made of: bytes, a text, or pieces that follow one another, each good until the next is taken; or what
+ * makes one of these when the file's turn comes.
+ */
+export type Content = Made | (() => Made);
+
+type Made = Uint8Array | string | Iterable<Uint8Array>;
 
 /** Writes a new file of any size and hands it to the disk. */
 export function writeContent(path: string, content: Content): void {
@@ -19,7 +24,7 @@ export function writeContent(path: string, content: Content): void {
       writeWhole(file, gathered.subarray(0, size));
       size = 0;
     };
-    for (const piece of piecesOf(content)) {
+    for (const piece of piecesOf(typeof content === 'function' ? content() : content)) {
       if (size + piece.length > SMALL) flush();
       if (piece.length >= SMALL) writeWhole(file, piece);
       else {
@@ -34,7 +39,7 @@ export function writeContent(path: string, content: Content): void {
   }
 }
 
-function piecesOf(content: Content): Iterable<Uint8Array> {
+function piecesOf(content: Made): Iterable<Uint8Array> {
   if (typeof content === 'string') return [Buffer.from(content)];
   return content instanceof Uint8Array ? [content] : content;
 }

@@ -28,19 +28,19 @@ export class Meter {
     this.#costs.push({ stage, time_s: this.seconds(), cost_W: cost });
   }
 
-  /** Times in s, memory in bytes; the costs thinned to a few hundred. */
+  /** Times in s, memory in bytes; the costs of each stage thinned to some hundred. The stage under way goes on. */
   read(): { wallTime: number; peakMemory: number } & Pick<Resources, 'stages'> & {
       costAgainstTime: Resources['cost_against_time'];
     } {
+    const stage = this.#stage;
     this.#closeStage();
-    this.#stage = null;
-    const every = Math.ceil(this.#costs.length / 300);
-    const last = this.#costs.length - 1;
+    this.#stage = stage;
+    this.#since = this.seconds();
     return {
-      wallTime: this.seconds(),
+      wallTime: this.#since,
       peakMemory: process.resourceUsage().maxRSS * 1024,
-      stages: this.#stages,
-      costAgainstTime: this.#costs.filter((_, k) => k % every === 0 || k === last),
+      stages: this.#stages.map((one) => ({ ...one })),
+      costAgainstTime: thinned(this.#costs),
     };
   }
 
@@ -52,4 +52,20 @@ export class Meter {
     if (known) known.time_s += time;
     else this.#stages.push({ stage: this.#stage, time_s: time });
   }
+}
+
+/** Most costs kept of a stage. */
+const KEPT = 150;
+
+/** Costs at about even steps of each stage, the first and the last of it among them. */
+function thinned<Point extends { readonly stage: string }>(costs: readonly Point[]): Point[] {
+  const counts = new Map<string, number>();
+  for (const { stage } of costs) counts.set(stage, (counts.get(stage) ?? 0) + 1);
+  const seen = new Map<string, number>();
+  return costs.filter(({ stage }) => {
+    const k = seen.get(stage) ?? 0;
+    seen.set(stage, k + 1);
+    const count = counts.get(stage)!;
+    return k % Math.ceil(count / KEPT) === 0 || k === count - 1;
+  });
 }

@@ -7,6 +7,7 @@ import {
   reportRun,
   splitTreePath,
   type TreeRecord,
+  withResources,
 } from '../index.ts';
 import { Meter } from './meter.ts';
 import { placeForFolder, RUN_FOLDER } from './out-folder.ts';
@@ -31,6 +32,7 @@ export function growToFolder(read: SpecFiles, out: string, options: GrowOptions,
   placeForFolder(out, RUN_FOLDER, writing.where);
   const home = useBaseNames(read);
   const meter = new Meter();
+  meter.see({ stage: 'tissue' });
   const result = growRun(home.spec, home.surfaces, {
     ...options,
     onProgress: (progress) => {
@@ -42,9 +44,14 @@ export function growToFolder(read: SpecFiles, out: string, options: GrowOptions,
       options.onCost?.(stage, cost);
     },
   });
-  const report = reportRun(result, meter.read());
+  meter.see({ stage: 'report' });
+  let report = withResources(reportRun(result, undefined), meter.read());
   if (result.stopped === 'cancelled') return { result, report, files: [] };
-  const files = runFiles(result.record, report, home.bytes);
+  meter.see({ stage: 'write' });
+  const files = runFiles(result.record, home.bytes, () => {
+    report = withResources(report, meter.read());
+    return report;
+  });
   writeFolder(out, RUN_FOLDER, files, writing);
   return { result, report, files: files.map((file) => file.name) };
 }
@@ -57,19 +64,29 @@ export function writeRun(
   surfaces: ReadonlyMap<string, Uint8Array>,
   writing: WriteOptions,
 ): readonly string[] {
-  const files = runFiles(record, report, surfaces);
+  const files = runFiles(record, surfaces, () => report);
   writeFolder(out, RUN_FOLDER, files, writing);
   return files.map((file) => file.name);
 }
 
-function runFiles(record: TreeRecord, report: Report, surfaces: ReadonlyMap<string, Uint8Array>): OutFile[] {
+/**
+ * The files of a run in the order they are written.
+ *
+ * @param report asked once, when all but the report itself is on the disk
+ */
+function runFiles(record: TreeRecord, surfaces: ReadonlyMap<string, Uint8Array>, report: () => Report): OutFile[] {
   const { format } = splitTreePath('tree.vtp', 'tree.vtp');
   const tree = format.encode(record)[0]!;
+  let told: Report | null = null;
+  const once = (): Report => {
+    told ??= report();
+    return told;
+  };
   return [
     { name: 'tree.vtp', content: tree.pieces ?? tree.bytes },
     { name: 'spec.json', content: record.provenance ?? '' },
-    { name: 'report.json', content: `${JSON.stringify(report, null, 2)}\n` },
-    { name: 'report.html', content: renderReport(report) },
+    { name: 'report.json', content: () => `${JSON.stringify(once(), null, 2)}\n` },
+    { name: 'report.html', content: () => renderReport(once()) },
     ...[...surfaces].map(([name, content]) => ({ name, content })),
   ];
 }

@@ -5,6 +5,7 @@ import { CAUTION } from './caution.ts';
 import type { ReportInput } from './input.ts';
 import { measureAngles, measureHorton, measureOrders } from './morphometry.ts';
 import type { Report, TreeSummary } from './report.ts';
+import { resourcesOf } from './resources.ts';
 
 /** Makes the report of a tree; `JSON.stringify` of it is report.json. Cost: O(n). */
 export function buildReport(input: ReportInput): Report {
@@ -42,12 +43,7 @@ export function buildReport(input: ReportInput): Report {
     horton: measureHorton(orders),
     notes: input.notes ?? [],
     provenance,
-    resources: {
-      wall_time_s: input.resources?.wallTime ?? null,
-      peak_memory_bytes: input.resources?.peakMemory ?? null,
-      stages: input.resources?.stages ?? [],
-      cost_against_time: input.resources?.costAgainstTime ?? [],
-    },
+    resources: resourcesOf(input.resources),
   };
 }
 

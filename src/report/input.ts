@@ -26,6 +26,7 @@ export interface PromiseLine {
 
 /** The cost at a moment of growth or refinement. */
 export interface CostPoint {
+  /** Costs of the stage `growth`, which rise with every terminal, are plotted apart from all others. */
   readonly stage: string;
   /** s since the run began. */
   readonly time_s: number;

@@ -196,13 +196,18 @@ function plots(report: Report): string {
       ),
     );
   }
-  if (resources.cost_against_time.length > 1) {
-    const history = resources.cost_against_time;
-    const { unit, perWatt } = powerUnit(history.reduce((most, point) => Math.max(most, point.cost_W), 0));
+  // Growth multiplies the cost, refinement takes a few percent off it: on one axis the second would not be seen.
+  const history = resources.cost_against_time;
+  for (const [title, points] of [
+    ['Cost against time while the tree grows', history.filter(({ stage }) => stage === 'growth')],
+    ['Cost against time', history.filter(({ stage }) => stage !== 'growth')],
+  ] as const) {
+    if (points.length < 2) continue;
+    const { unit, perWatt } = powerUnit(points.reduce((most, point) => Math.max(most, point.cost_W), 0));
     figures.push(
       plotSteps(
-        { title: 'Cost against time', x: 'time, s', y: `total power, ${unit}` },
-        history.map((point) => ({ x: point.time_s, y: point.cost_W * perWatt, series: point.stage })),
+        { title, x: 'time, s', y: `total power, ${unit}` },
+        points.map((point) => ({ x: point.time_s, y: point.cost_W * perWatt, series: point.stage })),
       ),
     );
   }

@@ -7,6 +7,7 @@ import { CAUTION } from '../../../src/report/caution.ts';
 import { formatNumber, powerUnit } from '../../../src/report/html.ts';
 import type { PromiseLine, ReportInput } from '../../../src/report/input.ts';
 import { renderReport } from '../../../src/report/render.ts';
+import { withResources } from '../../../src/report/resources.ts';
 import { promiseLines } from '../../../src/run-report.ts';
 import type { Forest, TreeRecord } from '../../../src/tree/forest.ts';
 import { strahlerOrders } from '../../../src/tree/strahler.ts';
@@ -207,6 +208,19 @@ describe('renderReport', () => {
     expect(open).toEqual([]);
     expect(page).not.toMatch(/NaN|undefined|Infinity|null/);
     expect(page.match(/<svg/g)?.length).toBe(7);
+  });
+
+  it('plots the cost of growth apart from what comes after, and either only where it changes', () => {
+    const point = (stage: string, time_s: number, cost_W: number) => ({ stage, time_s, cost_W });
+    const growth = [point('growth', 0, 1e-6), point('growth', 1, 1e-5)];
+    const refine = [point('refine', 1, 1e-5), point('refine', 2, 9e-6)];
+    const plots = (costAgainstTime: typeof growth) => [
+      ...renderReport(withResources(report, { costAgainstTime })).matchAll(/<figcaption>(Cost[^<]*)/g),
+    ];
+    const titles = (costs: typeof growth) => plots(costs).map((match) => match[1]);
+    expect(titles([...growth, ...refine])).toEqual(['Cost against time while the tree grows', 'Cost against time']);
+    expect(titles(refine)).toEqual(['Cost against time']);
+    expect(titles([growth[1]!, refine[0]!])).toEqual([]);
   });
 
   it('draws the smallest trees too', () => {
