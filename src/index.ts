@@ -9,6 +9,7 @@ export { compareJUnit } from './compare/junit.ts';
 export { compareTable } from './compare/table.ts';
 export { DEFAULT_TOLERANCE, parseTolerance, type Tolerance } from './compare/tolerance.ts';
 export { type Fault, InputError, InvariantError, inputError } from './core/errors.ts';
+export { type Memory, ownMemory } from './core/memory.ts';
 export type { Progress, Watch } from './core/progress.ts';
 export type { TriangleSurface } from './core/surface.ts';
 export { fromSi, toSi, UNITS, type Unit } from './core/units.ts';
@@ -17,6 +18,7 @@ export type { ByteSource, DecodedTree, NamedBytes, TreeFormat } from './formats/
 export { MESH_UNITS, type MeshUnit } from './formats/mesh/length-unit.ts';
 export { decodeSurface } from './formats/surface/surface-formats.ts';
 export { splitTreePath, TREE_FORMATS } from './formats/tree-formats.ts';
+export { CHUNK, type Crew, Desk, type ProposalTask } from './growth/crew.ts';
 export { LUMEN_DEFAULTS } from './mesh/build-lumen.ts';
 export type { LumenMesh } from './mesh/lumen.ts';
 export { CAUTION } from './report/caution.ts';

@@ -1,11 +1,11 @@
 import { checkTree } from './check/check-tree.ts';
 import type { CheckResult } from './check/result.ts';
 import { type Fault, InputError } from './core/errors.ts';
-import type { Watch } from './core/progress.ts';
 import type { Reals } from './core/reals.ts';
 import type { TriangleSurface } from './core/surface.ts';
 import { solveFlow } from './flow/solve.ts';
 import { freezeWithTerritories } from './growth/freeze.ts';
+import type { GrowthOptions } from './growth/crew.ts';
 import { type Growth, growForest } from './growth/grow.ts';
 import type { Stopped } from './growth/grower.ts';
 import { tubeWeights } from './refine/cost.ts';
@@ -34,7 +34,7 @@ const ORDERS = 24;
 /** Times that explicit points which were left out are tried again, first in line. */
 const SECOND_TRIES = 4;
 
-export interface GrowOptions extends Watch {
+export interface GrowOptions extends GrowthOptions {
   /** Asked after each sweep of refinement: true ends it. How a budget in seconds comes in; the library has no clock. */
   readonly refineEnough?: (() => boolean) | undefined;
   /** Told the cost (W) as it falls. */

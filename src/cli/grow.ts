@@ -33,7 +33,7 @@ export function addGrow(program: Command, context: Context): void {
   command
     .option('--seed <seed>', 'seed in place of the spec’s')
     .option('--terminals <count>', 'number of terminals a tree, in place of the spec’s count')
-    .option('--workers <count>', 'accepted; this version grows on one thread, and the result never depends on it')
+    .option('--workers <count>', 'threads that grow, one for each core by default; the result never depends on it')
     .option('--refine <budget>', 'none, quick, thorough, or a time such as 20s, in place of the spec’s');
   addCommonOptions(command, 'print the summary as one JSON document');
   addExample(
@@ -48,7 +48,7 @@ export function addGrow(program: Command, context: Context): void {
 
 function grow(given: string, options: GrowArguments, talk: Talk): number {
   const refine = options.refine === undefined ? null : refineOf(options.refine);
-  if (options.workers !== undefined) wholeNumber(options.workers, '--workers', 1, 1024);
+  const workers = options.workers === undefined ? undefined : wholeNumber(options.workers, '--workers', 1, 1024);
   placeForFolder(options.out, RUN_FOLDER, '--out');
   const read = readSpec(specPath(given));
   const spec = overrideSpec(read.spec, options, refine);
@@ -57,7 +57,7 @@ function grow(given: string, options: GrowArguments, talk: Talk): number {
   const grown = growToFolder(
     { ...read, spec },
     options.out,
-    { onProgress: clock.onProgress, refineEnough: budget === null ? undefined : clock.enough },
+    { workers, onProgress: clock.onProgress, refineEnough: budget === null ? undefined : clock.enough },
     talk.writing('--out'),
   );
   talk.settle();

@@ -1,7 +1,21 @@
+import { type Memory, ownMemory } from './memory.ts';
 import { squaredDistanceToSegment } from './segments.ts';
 
 /** Above this many cells a box of cells is thinned to those near the tube's axis. */
 const FEW_CELLS = 27;
+
+/** Columns of a grid, for a reader in another thread. */
+export interface TubeGridView {
+  readonly min: readonly [number, number, number];
+  readonly cell: number;
+  readonly across: readonly [number, number, number];
+  readonly head: Int32Array;
+  readonly next: Int32Array;
+  readonly item: Int32Array;
+  readonly start: Int32Array;
+  readonly packed: Int32Array;
+  readonly rows: number;
+}
 
 /**
  * Uniform grid over tubes: which rows could come within a given distance of a segment?
@@ -13,17 +27,21 @@ const FEW_CELLS = 27;
  * Cost: add and gather O(cells touched).
  */
 export class TubeGrid {
-  readonly cell: number;
-  private readonly minX: number;
-  private readonly minY: number;
-  private readonly minZ: number;
-  private readonly nx: number;
-  private readonly ny: number;
-  private readonly nz: number;
-  private readonly head: Int32Array;
+  cell: number;
+  private minX: number;
+  private minY: number;
+  private minZ: number;
+  private nx: number;
+  private ny: number;
+  private nz: number;
+  private head: Int32Array;
   private next: Int32Array;
   private item: Int32Array;
   private entries = 0;
+  private readonly memory: Memory;
+  /** (cells + 1) first entry of each cell among `packed`; both empty before the first `pack`. */
+  private start: Int32Array = new Int32Array(0);
+  private packed: Int32Array = new Int32Array(0);
   private seen: Int32Array;
   private pass = 0;
   /** Rows that the last `gather` found; only the first `gather()` of them count. */
@@ -32,13 +50,16 @@ export class TubeGrid {
   /**
    * @param min, max m, box that most tubes lie in; what lies outside is filed in the cells at the edge
    * @param cell     m, edge of a cell; widened where the box would need more than `mostCells`
+   * @param memory   where columns are kept
    */
   constructor(
     min: readonly [number, number, number],
     max: readonly [number, number, number],
     cell: number,
     mostCells = 1 << 25,
+    memory: Memory = ownMemory,
   ) {
+    this.memory = memory;
     const wx = max[0] - min[0];
     const wy = max[1] - min[1];
     const wz = max[2] - min[2];
@@ -52,10 +73,33 @@ export class TubeGrid {
     this.nx = Math.max(1, Math.ceil(wx / size));
     this.ny = Math.max(1, Math.ceil(wy / size));
     this.nz = Math.max(1, Math.ceil(wz / size));
-    this.head = new Int32Array(this.nx * this.ny * this.nz).fill(-1);
-    this.next = new Int32Array(4096);
-    this.item = new Int32Array(4096);
+    this.head = new Int32Array(memory(4 * this.nx * this.ny * this.nz)).fill(-1);
+    this.next = new Int32Array(memory(4 * 4096));
+    this.item = new Int32Array(memory(4 * 4096));
     this.seen = new Int32Array(1024);
+  }
+
+  /** What another thread needs to look into this grid; stale after the next change. */
+  view(): TubeGridView {
+    const { cell, head, next, item, start, packed } = this;
+    const min = [this.minX, this.minY, this.minZ] as const;
+    return { min, cell, across: [this.nx, this.ny, this.nz], head, next, item, start, packed, rows: this.seen.length };
+  }
+
+  /** Looks into another grid's columns from now on; nothing may be added through this one. */
+  adopt(view: TubeGridView): void {
+    this.cell = view.cell;
+    [this.minX, this.minY, this.minZ] = view.min;
+    [this.nx, this.ny, this.nz] = view.across;
+    this.head = view.head;
+    this.next = view.next;
+    this.item = view.item;
+    this.start = view.start;
+    this.packed = view.packed;
+    if (this.seen.length < view.rows) {
+      this.seen = new Int32Array(view.rows);
+      this.pass = 0;
+    }
   }
 
   /** Lists a row in every cell that the tube a→b of a radius (m) touches. */
@@ -110,33 +154,66 @@ export class TubeGrid {
     const thin = cells > FEW_CELLS && this.inside(ax, ay, az) && this.inside(bx, by, bz);
     const near = this.nearSquared(reach);
     const pass = ++this.pass;
+    const packed = this.start.length > 0;
     let size = 0;
     for (let z = z0; z <= z1; z++) {
       const cz = this.minZ + (z + 0.5) * this.cell;
       for (let y = y0; y <= y1; y++) {
         const cy = this.minY + (y + 0.5) * this.cell;
         for (let x = x0; x <= x1; x++) {
-          let entry = this.head[(z * this.ny + y) * this.nx + x]!;
-          if (entry < 0) continue;
+          const at = (z * this.ny + y) * this.nx + x;
+          let entry = this.head[at]!;
+          let from = packed ? this.start[at]! : 0;
+          const to = packed ? this.start[at + 1]! : 0;
+          if (entry < 0 && from === to) continue;
           if (thin) {
             const cx = this.minX + (x + 0.5) * this.cell;
             if (squaredDistanceToSegment(cx, cy, cz, ax, ay, az, bx, by, bz) > near) continue;
+          }
+          for (; from < to; from++) {
+            const row = this.packed[from]!;
+            if (this.seen[row] === pass) continue;
+            this.seen[row] = pass;
+            if (size === this.found.length) this.widenFound();
+            this.found[size++] = row;
           }
           for (; entry >= 0; entry = this.next[entry]!) {
             const row = this.item[entry]!;
             if (this.seen[row] === pass) continue;
             this.seen[row] = pass;
-            if (size === this.found.length) {
-              const wider = new Int32Array(2 * size);
-              wider.set(this.found);
-              this.found = wider;
-            }
+            if (size === this.found.length) this.widenFound();
             this.found[size++] = row;
           }
         }
       }
     }
     return size;
+  }
+
+  /** Files what has been added cell by cell, so that looks touch memory in a row; more may be added afterwards. */
+  pack(): void {
+    const cells = this.head.length;
+    const start = new Int32Array(this.memory(4 * (cells + 1)));
+    const packed = new Int32Array(this.memory(4 * (this.packed.length + this.entries)));
+    let size = 0;
+    for (let at = 0; at < cells; at++) {
+      start[at] = size;
+      if (this.start.length > 0) {
+        for (let k = this.start[at]!; k < this.start[at + 1]!; k++) packed[size++] = this.packed[k]!;
+      }
+      for (let entry = this.head[at]!; entry >= 0; entry = this.next[entry]!) packed[size++] = this.item[entry]!;
+      this.head[at] = -1;
+    }
+    start[cells] = size;
+    this.start = start;
+    this.packed = packed;
+    this.entries = 0;
+  }
+
+  private widenFound(): void {
+    const wider = new Int32Array(2 * this.found.length);
+    wider.set(this.found);
+    this.found = wider;
   }
 
   /** Whether a point is in the box: only there does a cell's centre stand for all that is filed in it. */
@@ -170,8 +247,8 @@ export class TubeGrid {
 
   private widen(least: number): void {
     const capacity = Math.max(2 * this.next.length, least);
-    const next = new Int32Array(capacity);
-    const item = new Int32Array(capacity);
+    const next = new Int32Array(this.memory(4 * capacity));
+    const item = new Int32Array(this.memory(4 * capacity));
     next.set(this.next);
     item.set(this.item);
     this.next = next;

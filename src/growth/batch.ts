@@ -1,3 +1,4 @@
+import type { Memory } from '../core/memory.ts';
 import { MOST_PROPOSED } from '../moves/proposer.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 
@@ -34,7 +35,7 @@ export class Batch {
    * @param keep   placements kept for each, ≤ MOST_PROPOSED
    * @param memory where the columns that proposals are read from and written to may be shared
    */
-  constructor(tissue: Tissue, most: number, keep: number, memory: (bytes: number) => ArrayBufferLike) {
+  constructor(tissue: Tissue, most: number, keep: number, memory: Memory) {
     this.tissue = tissue;
     this.keep = Math.min(keep, MOST_PROPOSED);
     this.tree = new Int32Array(memory(4 * most));
@@ -44,7 +45,7 @@ export class Batch {
     this.proposed = new Int32Array(memory(4 * most));
     this.row = new Int32Array(memory(4 * most * this.keep));
     this.at = new Float64Array(memory(24 * most * this.keep));
-    this.order = new Int32Array(most);
+    this.order = new Int32Array(memory(4 * most));
     this.key = new Float64Array(most);
   }
 

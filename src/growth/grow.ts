@@ -1,7 +1,7 @@
-import type { Watch } from '../core/progress.ts';
 import { fixedInletRadius } from '../sizing/size-tree.ts';
 import type { Spec, TreeSpec } from '../spec/types.ts';
 import type { Tissue } from '../tissue/tissue.ts';
+import type { GrowthOptions } from './crew.ts';
 import type { Demand } from './demand.ts';
 import { demandOf } from './demand-of.ts';
 import { firstGuess, Grower, SPARE, type Stopped } from './grower.ts';
@@ -26,7 +26,7 @@ export interface Growth {
 export function growForest(
   spec: Spec,
   tissue: Tissue,
-  watch: Watch = {},
+  options: GrowthOptions = {},
   salt = 0,
   first: readonly (readonly number[])[] = [],
 ): Growth {
@@ -35,7 +35,7 @@ export function growForest(
   if (unknown.includes(true)) guess = rehearse(spec, tissue, unknown, salt);
   for (let attempt = 0; ; attempt++) {
     const demands = spec.trees.map((tree, t) => demandOf(spec, tree, t, tissue, guess, salt, first[t] ?? [], Infinity));
-    const grower = new Grower(spec, tissue, demands, guess, watch);
+    const grower = new Grower(spec, tissue, demands, guess, options);
     let stopped = grower.grow();
     if (stopped !== 'cancelled') stopped = grower.finish();
     if (stopped === 'cancelled' || guess === null || attempt >= RESTARTS) return { grower, stopped };

@@ -1,8 +1,9 @@
 import { inputError } from '../core/errors.ts';
+import { ownMemory } from '../core/memory.ts';
 import type { Watch } from '../core/progress.ts';
-import { Attacher } from '../moves/attach.ts';
-import { Rehanger } from '../moves/rehang.ts';
+import { Attacher, type AttachOptions, type TerminalWeight } from '../moves/attach.ts';
 import { NodeMover } from '../moves/move-node.ts';
+import { Rehanger } from '../moves/rehang.ts';
 import { straighten } from '../moves/straighten.ts';
 import { flowWeight } from '../physics/murray.ts';
 import { Room } from '../room/room.ts';
@@ -11,6 +12,7 @@ import type { Spec } from '../spec/types.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { ForestBuilder } from '../tree/builder.ts';
 import { Batch } from './batch.ts';
+import { type Crew, type GrowthOptions, type ProposalTask, proposeAll } from './crew.ts';
 import type { Demand } from './demand.ts';
 import { evict } from './evict.ts';
 import { mendByMoving } from './mend.ts';
@@ -23,18 +25,20 @@ const REFRESH = 1.05;
 /** Sites in hand at once, as a share of the terminals served, and at most. */
 const BATCH = 0.02;
 const MOST_BATCH = 8192;
+/** Sites in hand from which on a crew is worth calling. */
+const SHARED_BATCH = 128;
 /** Placements proposed for each. */
 const KEEP = 4;
 /** Growth between two sizings of trees whose radii depend on all their lengths. */
 const RESIZE = 1.15;
 /** Growth between two sweeps that move nodes to their best places. */
-const RELAX = 1.1;
+const RELAX = 1.15;
 /** Radii over today's that a moved node leaves room for, so that the tubes at it can still gain flow. */
 const RELAX_SLACK = 1.2;
+/** Subtrees that carry at least this part of their tree are hung anew now and then while it grows. */
+const COARSE = 500;
 /** Gain, as a share of the cost of its tubes, for which a node is moved. */
 const RELAX_GAIN = 1e-3;
-/** Growth between two rebuilds of the grid. */
-const GRID = 1.5;
 /** Edge of a grid cell over the spacing of terminals. */
 const CELL = 0.9;
 /** Radius certified over radius needed. */
@@ -80,12 +84,14 @@ export class Grower {
   /** Vessels that were made to fit by moving a node. */
   private mended = 0;
   private readonly batch: Batch;
+  private readonly options: AttachOptions;
+  private readonly crew: Crew | null;
   private readonly mover: NodeMover;
   private readonly rehanger: Rehanger;
   private nextRelax = 8;
+  private relaxed = 0;
   private nextRefresh = 2;
   private nextResize = 2;
-  private nextGrid = 8;
 
   /**
    * @param demands one a tree of the spec, in its order
@@ -97,19 +103,21 @@ export class Grower {
     tissue: Tissue,
     demands: readonly Demand[],
     inletGuess: readonly number[] | null,
-    watch: Watch = {},
+    options: GrowthOptions = {},
   ) {
     this.tissue = tissue;
-    this.watch = watch;
+    this.watch = options;
+    this.crew = options.crew ?? null;
+    const memory = this.crew?.memory ?? ownMemory;
     this.wanted = demands.reduce((sum, demand) => sum + demand.wanted, 0);
-    const builder = new ForestBuilder(junctionExponent(spec), Math.max(64, Math.min(4 * this.wanted, 1 << 20)));
+    const builder = new ForestBuilder(junctionExponent(spec), Math.max(64, Math.min(4 * this.wanted, 1 << 20)), memory);
     this.builder = builder;
     const limits = {
       gap: spec.clearance.gap,
       cosMinAngle: Math.cos(1.001 * spec.junctions.minAngle),
       cosMinBend: 0,
     };
-    const room = new Room(builder, tissue, limits, Math.cbrt(tissue.volume / 8));
+    const room = new Room(builder, tissue, limits, Math.cbrt(tissue.volume / 8), memory);
     this.room = room;
     for (let t = 0; t < spec.trees.length; t++) {
       const tree = spec.trees[t]!;
@@ -121,21 +129,18 @@ export class Grower {
       const seedling = plant(builder, room, tree, `trees[${t}]`, radius);
       this.trees.push({ seedling, demand, resizer: new Resizer(spec, tree), resized, full: false });
     }
-    this.batch = new Batch(tissue, MOST_BATCH, KEEP, (bytes) => new ArrayBuffer(bytes));
+    this.batch = new Batch(tissue, MOST_BATCH, KEEP, memory);
     this.mover = new NodeMover(builder, room);
-    this.attacher = new Attacher(
-      builder,
-      room,
-      {
-        first: 16,
-        second: 24,
-        keep: 4,
-        slimmest: this.trees.some((tree) => tree.resized) ? 0.7 : 1,
-        headroom: HEADROOM,
-      },
-      (row, along, length, share) =>
-        this.trees[builder.tree[row]!]!.resizer.terminalWeight(builder, row, along, length, share),
-    );
+    this.options = {
+      first: 8,
+      second: 24,
+      keep: KEEP,
+      slimmest: this.trees.some((tree) => tree.resized) ? 0.7 : 1,
+      headroom: HEADROOM,
+    };
+    const weigh: TerminalWeight = (row, along, length, share) =>
+      this.trees[builder.tree[row]!]!.resizer.terminalWeight(builder, row, along, length, share);
+    this.attacher = new Attacher(builder, room, this.options, weigh, memory);
     this.rehanger = new Rehanger(builder, room, this.attacher.potential);
   }
 
@@ -287,17 +292,27 @@ export class Grower {
   /** Looks for places for all sites in hand, against the forest as it stands. */
   private propose(): void {
     const { batch } = this;
-    const { proposer } = this.attacher;
-    this.attacher.potential.follow();
-    for (let n = 0; n < batch.count; n++) {
-      const k = batch.order[n]!;
-      if (this.trees[batch.tree[k]!]!.demand.served === 0) continue;
-      const p = batch.position;
-      const count = proposer.propose(batch.tree[k]!, p[3 * k]!, p[3 * k + 1]!, p[3 * k + 2]!, batch.share[k]!);
-      batch.proposed[k] = count;
-      for (let i = 0; i < count; i++) batch.row[k * batch.keep + i] = proposer.row[i]!;
-      for (let i = 0; i < 3 * count; i++) batch.at[3 * k * batch.keep + i] = proposer.at[i]!;
+    const { proposer, potential } = this.attacher;
+    potential.follow();
+    const { tree, count } = batch;
+    // A bare tree has no tube to hang on; its first terminal comes alone.
+    if (count === 0 || this.trees[tree[0]!]!.demand.served === 0) return;
+    const mine = (from: number, end: number) => proposeAll(proposer, batch, from, end);
+    if (this.crew === null || count < SHARED_BATCH) {
+      mine(0, count);
+      return;
     }
+    const { builder, room } = this;
+    const { keep, order, share, position, proposed, row, at } = batch;
+    const task: ProposalTask = {
+      options: this.options,
+      limits: room.limits,
+      builder: builder.view(),
+      room: room.view(),
+      potential: potential.values,
+      batch: { count, keep, order, tree, share, position, proposed, row, at },
+    };
+    this.crew.work(task, mine);
   }
 
   /** Hangs one of the sites in hand, or gives it back. */
@@ -340,10 +355,6 @@ export class Grower {
   private refresh(): void {
     const served = this.served;
     this.nextRefresh = Math.max(served + 1, Math.ceil(served * REFRESH));
-    if (served >= this.nextGrid) {
-      this.nextGrid = GRID * served;
-      this.room.rebuild(CELL * Math.cbrt(this.tissue.volume / served));
-    }
     if (served >= this.nextRelax) {
       this.nextRelax = RELAX * served;
       this.relax();
@@ -376,16 +387,22 @@ export class Grower {
     for (let row = 0; row < builder.count; row++) weight[row] = flowWeight(builder.load[row]!);
     room.slack = RELAX_SLACK;
     for (let row = 0; row < builder.count; row++) this.mover.move(row, weight, RELAX_GAIN);
-    const part = Number((globalThis as any).PART ?? 500);
+    if (++this.relaxed % 2 === 0) this.rehangCoarse();
+    room.slack = 1;
+    room.rebuild(CELL * Math.cbrt(this.tissue.volume / this.served));
+  }
+
+  /** Hangs each subtree that carries a fair part of its tree anew where that is cheaper: what is coarse is cheap to mend. */
+  private rehangCoarse(): void {
+    const { builder } = this;
     for (let t = 0; t < this.trees.length; t++) {
       const { demand, seedling } = this.trees[t]!;
       if (demand.served < 3) continue;
       const order = builder.preorder(t);
       const whole = builder.load[builder.child[2 * seedling.root]!]!;
       this.attacher.refreshPotential(order, whole / demand.served);
-      for (const row of order) if (builder.load[row]! * part >= whole) this.rehanger.rehang(row, 1e-3);
+      for (const row of order) if (builder.load[row]! * COARSE >= whole) this.rehanger.rehang(row, 1e-3);
     }
-    room.slack = 1;
   }
 
   private resize(t: number, final: boolean): void {

@@ -1,3 +1,4 @@
+import { type Memory, ownMemory } from '../core/memory.ts';
 import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 import { BEND_PLACES, BendPlaces } from './bend-places.ts';
@@ -42,11 +43,17 @@ export class Attacher {
   /** How often each outcome was met; for lab notes and benches. */
   readonly tally = { served: 0, tried: 0 };
 
-  constructor(builder: ForestBuilder, room: Room, options: AttachOptions, terminalWeight: TerminalWeight) {
+  constructor(
+    builder: ForestBuilder,
+    room: Room,
+    options: AttachOptions,
+    terminalWeight: TerminalWeight,
+    memory: Memory = ownMemory,
+  ) {
     this.builder = builder;
     this.room = room;
     this.terminalWeight = terminalWeight;
-    this.potential = new Potential(builder);
+    this.potential = new Potential(builder, memory);
     this.proposer = new Proposer(builder, room, this.potential, options);
     this.trial = new Trial(builder, room, options.headroom);
     this.bends = new BendPlaces(room.tissue);

@@ -43,7 +43,19 @@ export class Candidates {
    * @returns     number found, ≤ want; they are in `rows`, cheapest first, until the next search; −1 where a vessel
    *              stands in the place itself
    */
-  search(tree: number, x: number, y: number, z: number, share: number, want: number, own = 0, top = -1, least = 0, start = 0, most = Infinity): number {
+  search(
+    tree: number,
+    x: number,
+    y: number,
+    z: number,
+    share: number,
+    want: number,
+    own = 0,
+    top = -1,
+    least = 0,
+    start = 0,
+    most = Infinity,
+  ): number {
     const { builder, room } = this;
     const p = builder.position;
     let reach = start > 0 ? start : 0.8 * room.cell;

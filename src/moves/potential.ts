@@ -1,3 +1,4 @@
+import { type Memory, ownMemory } from '../core/memory.ts';
 import { flowWeight } from '../physics/murray.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 import { span } from './span.ts';
@@ -22,11 +23,13 @@ export class Potential {
   /** (capacity) potential of every row, power over share; replaced by a longer one in `follow`. */
   values: Float64Array;
   private readonly builder: ForestBuilder;
+  private readonly memory: Memory;
   private usual = 1;
 
-  constructor(builder: ForestBuilder) {
+  constructor(builder: ForestBuilder, memory: Memory = ownMemory) {
     this.builder = builder;
-    this.values = new Float64Array(builder.capacity);
+    this.memory = memory;
+    this.values = new Float64Array(memory(8 * builder.capacity));
   }
 
   /**
@@ -62,7 +65,7 @@ export class Potential {
   /** Makes room for every row that the builder has room for. */
   follow(): void {
     if (this.values.length >= this.builder.capacity) return;
-    const wider = new Float64Array(this.builder.capacity);
+    const wider = new Float64Array(this.memory(8 * this.builder.capacity));
     wider.set(this.values);
     this.values = wider;
   }

@@ -95,7 +95,19 @@ export class Proposer {
     const share = builder.load[top]!;
     const loose = builder.parent[top]!;
     const length = span(x - p[3 * loose]!, y - p[3 * loose + 1]!, z - p[3 * loose + 2]!);
-    const found = this.candidates.search(builder.tree[top]!, x, y, z, share, options.first, 0, top, least, 0.5 * length, 3 * length + this.room.cell);
+    const found = this.candidates.search(
+      builder.tree[top]!,
+      x,
+      y,
+      z,
+      share,
+      options.first,
+      0,
+      top,
+      least,
+      0.5 * length,
+      3 * length + this.room.cell,
+    );
     const { rows, local } = this.candidates;
     let kept = 0;
     for (let k = 0; k < found; k++) {

@@ -1,3 +1,4 @@
+import { availableParallelism } from 'node:os';
 import {
   type GrowOptions,
   type GrowResult,
@@ -5,10 +6,12 @@ import {
   type Report,
   renderReport,
   reportRun,
+  type Spec,
   splitTreePath,
   type TreeRecord,
   withResources,
 } from '../index.ts';
+import { startCrew } from './crew.ts';
 import { Meter } from './meter.ts';
 import { placeForFolder, RUN_FOLDER } from './out-folder.ts';
 import { type SpecFiles, useBaseNames } from './read-spec.ts';
@@ -26,24 +29,38 @@ export interface GrownFolder {
  * Grows a spec into a run folder. Surfaces are copied beside the tree and named by their base names before growth
  * begins, so that growing `spec.json` of the folder again gives the same `tree.vtp`.
  *
+ * @param options `workers`: threads that grow, ≥ 1, one for each core where it is not given; the tree is the same
  * @throws InputError for what is wrong with spec, surfaces or place; nothing is written then
  */
-export function growToFolder(read: SpecFiles, out: string, options: GrowOptions, writing: WriteOptions): GrownFolder {
+export function growToFolder(
+  read: SpecFiles,
+  out: string,
+  options: Omit<GrowOptions, 'crew'> & { readonly workers?: number | undefined },
+  writing: WriteOptions,
+): GrownFolder {
   placeForFolder(out, RUN_FOLDER, writing.where);
   const home = useBaseNames(read);
   const meter = new Meter();
   meter.see({ stage: 'tissue' });
-  const result = growRun(home.spec, home.surfaces, {
-    ...options,
-    onProgress: (progress) => {
-      meter.see(progress);
-      options.onProgress?.(progress);
-    },
-    onCost: (stage, cost) => {
-      meter.cost(stage, cost);
-      options.onCost?.(stage, cost);
-    },
-  });
+  const { workers = availableParallelism(), ...rest } = options;
+  const crew = workers > 1 && isLarge(home.spec) ? startCrew(workers, home.spec, home.surfaces) : undefined;
+  let result: GrowResult;
+  try {
+    result = growRun(home.spec, home.surfaces, {
+      ...rest,
+      crew,
+      onProgress: (progress) => {
+        meter.see(progress);
+        options.onProgress?.(progress);
+      },
+      onCost: (stage, cost) => {
+        meter.cost(stage, cost);
+        options.onCost?.(stage, cost);
+      },
+    });
+  } finally {
+    crew?.close();
+  }
   meter.see({ stage: 'report' });
   let report = withResources(reportRun(result, undefined), meter.read());
   if (result.stopped === 'cancelled') return { result, report, files: [] };
@@ -54,6 +71,18 @@ export function growToFolder(read: SpecFiles, out: string, options: GrowOptions,
   });
   writeFolder(out, RUN_FOLDER, files, writing);
   return { result, report, files: files.map((file) => file.name) };
+}
+
+/** Terminals from which on threads are worth starting. */
+const MANY_TERMINALS = 8192;
+
+function isLarge(spec: Spec): boolean {
+  let count = 0;
+  for (const { terminals } of spec.trees) {
+    if (terminals.by === 'spacing') return true;
+    count += terminals.by === 'count' ? terminals.count : terminals.points.length;
+  }
+  return count >= MANY_TERMINALS;
 }
 
 /** Writes a run folder of a tree that is there already. */

@@ -1,5 +1,6 @@
+import { type Memory, ownMemory } from '../core/memory.ts';
 import { squaredDistanceBetweenSegments } from '../core/segments.ts';
-import { TubeGrid } from '../core/tube-grid.ts';
+import { TubeGrid, type TubeGridView } from '../core/tube-grid.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { tubeInside } from '../tissue/tube.ts';
 import { type ForestBuilder, FREED } from '../tree/builder.ts';
@@ -14,8 +15,18 @@ export interface RoomLimits {
   readonly cosMinBend: number;
 }
 
+/** Most cells of the grid; at 10⁷ terminals a few tubes a cell. */
+const MOST_CELLS = 1 << 25;
+
 /** Why a vessel did not fit. */
 export type Refusal = 'none' | 'tissue' | 'vessel' | 'junction';
+
+/** What a reader in another thread needs of a room. */
+export interface RoomView {
+  readonly reserve: Float64Array;
+  readonly grid: TubeGridView;
+  readonly pinned: readonly number[];
+}
 
 /**
  * The space a forest stands in: which radii its vessels may take where they are.
@@ -48,6 +59,7 @@ export class Room {
   private round = 1;
   private touched: number[] = [];
   private fresh: number[] = [];
+  private readonly memory: Memory;
   private grid: TubeGrid;
   private readonly floor: number;
   /** Radii are asked of the tissue this much wider: `tubeInside` may be off by a thousandth where it marches. */
@@ -55,17 +67,22 @@ export class Room {
   /** m; longest edge of the tissue's box. */
   readonly span: number;
 
-  constructor(builder: ForestBuilder, tissue: Tissue, limits: RoomLimits, cell: number) {
+  /**
+   * @param cell   m, edge of the first grid's cells
+   * @param memory where columns that may be shared are kept
+   */
+  constructor(builder: ForestBuilder, tissue: Tissue, limits: RoomLimits, cell: number, memory: Memory = ownMemory) {
+    this.memory = memory;
     this.builder = builder;
     this.tissue = tissue;
     this.limits = limits;
     const n = builder.capacity;
-    this.reserve = new Float64Array(n);
+    this.reserve = new Float64Array(memory(8 * n));
     this.listed = new Float64Array(n);
     this.pending = new Float64Array(n);
     this.stamp = new Int32Array(n);
     this.wall = tissue.convex ? 1 + 1e-9 : 1.002;
-    this.grid = new TubeGrid(tissue.min, tissue.max, cell);
+    this.grid = new TubeGrid(tissue.min, tissue.max, cell, MOST_CELLS, memory);
     this.span = Math.max(tissue.max[0] - tissue.min[0], tissue.max[1] - tissue.min[1], tissue.max[2] - tissue.min[2]);
     // Rounding must not eat the gap: judges measure in another order.
     this.floor = 1e-12 * this.span;
@@ -75,11 +92,26 @@ export class Room {
     return this.grid.cell;
   }
 
+  /** What another thread needs to ask this room; stale after the next change. */
+  view(): RoomView {
+    return { reserve: this.reserve, grid: this.grid.view(), pinned: [...this.pinned] };
+  }
+
+  /** Answers from another room's columns from now on; nothing may be changed through this one. */
+  adopt(view: RoomView): void {
+    this.reserve = view.reserve;
+    this.grid.adopt(view.grid);
+    this.pinned.clear();
+    for (const row of view.pinned) this.pinned.add(row);
+    if (this.stamp.length < view.reserve.length) this.stamp = new Int32Array(view.reserve.length);
+  }
+
   /** Lists every living tube anew, in a grid of another cell. */
   rebuild(cell: number): void {
     this.follow();
-    this.grid = new TubeGrid(this.tissue.min, this.tissue.max, cell);
+    this.grid = new TubeGrid(this.tissue.min, this.tissue.max, cell, MOST_CELLS, this.memory);
     for (let row = 0; row < this.builder.count; row++) if (this.builder.parent[row]! >= 0) this.list(row);
+    this.grid.pack();
   }
 
   begin(): void {
@@ -361,7 +393,9 @@ export class Room {
   private follow(): void {
     const n = this.builder.capacity;
     if (this.reserve.length >= n) return;
-    this.reserve = widened(this.reserve, n);
+    const reserve = new Float64Array(this.memory(8 * n));
+    reserve.set(this.reserve);
+    this.reserve = reserve;
     this.listed = widened(this.listed, n);
     this.pending = widened(this.pending, n);
     const stamp = new Int32Array(n);

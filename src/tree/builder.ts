@@ -1,9 +1,24 @@
 import { InvariantError } from '../core/errors.ts';
+import { type Memory, ownMemory } from '../core/memory.ts';
 
 /** A row that an eviction has given back. */
 export const FREED = -2;
 /** Parent of the node that a cut subtree hangs from until it is hung anew. */
 export const LOOSE = -3;
+
+/** Columns of a builder, and what else its radii need, for a reader in another thread. */
+export interface BuilderView {
+  readonly exponent: number;
+  readonly count: number;
+  readonly parent: Int32Array;
+  readonly child: Int32Array;
+  readonly tree: Int32Array;
+  readonly position: Float64Array;
+  readonly load: Float64Array;
+  readonly weight: Float64Array;
+  readonly roots: readonly number[];
+  readonly inletRadius: readonly number[];
+}
 
 /**
  * Rooted binary trees that may still change: the one structure growth and refinement write.
@@ -34,18 +49,41 @@ export class ForestBuilder {
   /** m; radius of the first vessel by tree. */
   readonly inletRadius: number[] = [];
   private readonly free: number[] = [];
+  private readonly memory: Memory;
   /** Tree from which a subtree is cut at this moment, and the weight that its radii go on to refer to. */
   private cutTree = -1;
   private cutWhole = 0;
 
-  constructor(exponent: number, capacity = 1024) {
+  /** @param memory where columns are kept */
+  constructor(exponent: number, capacity = 1024, memory: Memory = ownMemory) {
     this.exponent = exponent;
-    this.parent = new Int32Array(capacity);
-    this.child = new Int32Array(2 * capacity);
-    this.tree = new Int32Array(capacity);
-    this.position = new Float64Array(3 * capacity);
-    this.load = new Float64Array(capacity);
-    this.weight = new Float64Array(capacity);
+    this.memory = memory;
+    this.parent = new Int32Array(memory(4 * capacity));
+    this.child = new Int32Array(memory(8 * capacity));
+    this.tree = new Int32Array(memory(4 * capacity));
+    this.position = new Float64Array(memory(24 * capacity));
+    this.load = new Float64Array(memory(8 * capacity));
+    this.weight = new Float64Array(memory(8 * capacity));
+  }
+
+  /** What another thread needs to read this forest; stale after the next change. */
+  view(): BuilderView {
+    const { exponent, count, parent, child, tree, position, load, weight } = this;
+    const roots = [...this.roots];
+    return { exponent, count, parent, child, tree, position, load, weight, roots, inletRadius: [...this.inletRadius] };
+  }
+
+  /** Reads another builder's columns from now on; nothing may be changed through this one. */
+  adopt(view: BuilderView): void {
+    this.count = view.count;
+    this.parent = view.parent;
+    this.child = view.child;
+    this.tree = view.tree;
+    this.position = view.position;
+    this.load = view.load;
+    this.weight = view.weight;
+    this.roots.splice(0, this.roots.length, ...view.roots);
+    this.inletRadius.splice(0, this.inletRadius.length, ...view.inletRadius);
   }
 
   get capacity(): number {
@@ -232,13 +270,15 @@ export class ForestBuilder {
   }
 
   private widen(): void {
-    const capacity = 2 * this.capacity;
-    this.parent = widened(this.parent, new Int32Array(capacity));
-    this.child = widened(this.child, new Int32Array(2 * capacity));
-    this.tree = widened(this.tree, new Int32Array(capacity));
-    this.position = widened(this.position, new Float64Array(3 * capacity));
-    this.load = widened(this.load, new Float64Array(capacity));
-    this.weight = widened(this.weight, new Float64Array(capacity));
+    const { memory } = this;
+    // Doubling costs too much memory where there are many rows.
+    const capacity = this.capacity < 1 << 22 ? 2 * this.capacity : this.capacity + (this.capacity >> 1);
+    this.parent = widened(this.parent, new Int32Array(memory(4 * capacity)));
+    this.child = widened(this.child, new Int32Array(memory(8 * capacity)));
+    this.tree = widened(this.tree, new Int32Array(memory(4 * capacity)));
+    this.position = widened(this.position, new Float64Array(memory(24 * capacity)));
+    this.load = widened(this.load, new Float64Array(memory(8 * capacity)));
+    this.weight = widened(this.weight, new Float64Array(memory(8 * capacity)));
   }
 }
 

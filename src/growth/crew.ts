@@ -1,0 +1,93 @@
+import type { Memory } from '../core/memory.ts';
+import type { Watch } from '../core/progress.ts';
+import { Potential } from '../moves/potential.ts';
+import { type ProposeOptions, Proposer } from '../moves/proposer.ts';
+import { Room, type RoomLimits, type RoomView } from '../room/room.ts';
+import type { Tissue } from '../tissue/tissue.ts';
+import { type BuilderView, ForestBuilder } from '../tree/builder.ts';
+import type { Batch } from './batch.ts';
+
+/** Sites looked at in one go by one member of a crew. */
+export const CHUNK = 32;
+
+/** Columns of a batch that proposals are read from and written to. */
+export type BatchColumns = Pick<
+  Batch,
+  'count' | 'keep' | 'order' | 'tree' | 'share' | 'position' | 'proposed' | 'row' | 'at'
+>;
+
+/** All that a member of a crew must see to propose; plain columns and numbers, fit to be sent to another thread. */
+export interface ProposalTask {
+  readonly options: ProposeOptions;
+  readonly limits: RoomLimits;
+  readonly builder: BuilderView;
+  readonly room: RoomView;
+  readonly potential: Float64Array;
+  readonly batch: BatchColumns;
+}
+
+/**
+ * Several threads that look for places together. What they propose is the same however many they are, because each site
+ * is looked at alone and nothing changes meanwhile.
+ */
+export interface Crew {
+  /** Memory that all of them see. */
+  readonly memory: Memory;
+  /**
+   * Has every chunk of a task worked on, and comes back when all are done.
+   *
+   * @param mine works on the sites from … end − 1 of the batch's order, in the calling thread
+   */
+  work(task: ProposalTask, mine: (from: number, end: number) => void): void;
+}
+
+export interface GrowthOptions extends Watch {
+  /** Threads that look for places together; none: the calling thread alone. The result is the same. */
+  readonly crew?: Crew | undefined;
+}
+
+/** A member's own reader of a forest that another thread grows. */
+export class Desk {
+  private readonly tissue: Tissue;
+  private reader: { builder: ForestBuilder; room: Room; potential: Potential; proposer: Proposer } | null = null;
+  private batch: BatchColumns | null = null;
+
+  /** @param tissue the same as the grower's, built anew in this thread */
+  constructor(tissue: Tissue) {
+    this.tissue = tissue;
+  }
+
+  /** Takes a task in hand. */
+  open(task: ProposalTask): void {
+    if (this.reader === null) {
+      const builder = new ForestBuilder(task.builder.exponent, 1);
+      const room = new Room(builder, this.tissue, task.limits, Number.MAX_VALUE);
+      const potential = new Potential(builder);
+      this.reader = { builder, room, potential, proposer: new Proposer(builder, room, potential, task.options) };
+    }
+    this.reader.builder.adopt(task.builder);
+    this.reader.room.adopt(task.room);
+    this.reader.potential.values = task.potential;
+    this.batch = task.batch;
+  }
+
+  /** Proposes for the sites from … end − 1 of the task's order. */
+  propose(from: number, end: number): void {
+    proposeAll(this.reader!.proposer, this.batch!, from, end);
+  }
+}
+
+/** Looks for places for the sites from … end − 1 of a batch's order and writes what is found beside them. */
+export function proposeAll(proposer: Proposer, batch: BatchColumns, from: number, end: number): void {
+  const { keep, position } = batch;
+  for (let n = from; n < end; n++) {
+    const k = batch.order[n]!;
+    const x = position[3 * k]!;
+    const y = position[3 * k + 1]!;
+    const z = position[3 * k + 2]!;
+    const count = proposer.propose(batch.tree[k]!, x, y, z, batch.share[k]!);
+    batch.proposed[k] = count;
+    for (let i = 0; i < count; i++) batch.row[k * keep + i] = proposer.row[i]!;
+    for (let i = 0; i < 3 * count; i++) batch.at[3 * k * keep + i] = proposer.at[i]!;
+  }
+}
