@@ -4,7 +4,7 @@ import { countVessels } from '../tree/vessels.ts';
 import { CAUTION } from './caution.ts';
 import type { ReportInput } from './input.ts';
 import { measureAngles, measureHorton, measureOrders } from './morphometry.ts';
-import type { Report, TreeSummary } from './report.ts';
+import type { Report, TerritorySummary, TreeSummary } from './report.ts';
 import { resourcesOf } from './resources.ts';
 
 /** Makes the report of a tree; `JSON.stringify` of it is report.json. Cost: O(n). */
@@ -84,6 +84,30 @@ function summariseTree(record: TreeRecord, children: Children, t: number, asked:
         ? null
         : { min_Pa: pressure.min, mean_Pa: pressure.sum / carried, max_Pa: pressure.max, asked_Pa: asked },
     transit: field === null ? null : { min_s: transit.min, mean_s: transit.sum / carried, max_s: transit.max },
+    territory: summariseTerritories(record, children, t),
+  };
+}
+
+/** Null where a tree's terminals have none. */
+function summariseTerritories(record: TreeRecord, children: Children, t: number): TerritorySummary | null {
+  const { forest, territory } = record;
+  if (!territory) return null;
+  const sizes: number[] = [];
+  for (let i = forest.treeStart[t]! + 1; i < forest.treeStart[t + 1]!; i++) {
+    if (children.start[i + 1] === children.start[i] && territory[i]! > 0) sizes.push(territory[i]!);
+  }
+  if (sizes.length === 0) return null;
+  const sorted = Float64Array.from(sizes).sort();
+  const n = sorted.length;
+  let mean = 0;
+  for (const size of sorted) mean += size / n;
+  let squares = 0;
+  for (const size of sorted) squares += (size - mean) * (size - mean);
+  return {
+    min_m3: sorted[0]!,
+    median_m3: 0.5 * (sorted[(n - 1) >> 1]! + sorted[n >> 1]!),
+    max_m3: sorted[n - 1]!,
+    variation: Math.sqrt(squares / n) / mean,
   };
 }
 

@@ -16,6 +16,7 @@ export function renderReport(report: Report): string {
     keyFigures(report),
     promises(report),
     trees(report),
+    territories(report),
     orders(report),
     plots(report),
     resources(report),
@@ -123,6 +124,24 @@ function trees(report: Report): string {
     'mean transit, s',
   ];
   return `<section><h2>Trees</h2>${table('Flow and pressure at the ends; means are by flow.', head, rows, [0, 1])}</section>`;
+}
+
+function territories(report: Report): string {
+  const rows = report.trees.flatMap(({ name, territory }) => {
+    if (territory === null) return [];
+    const { min_m3, median_m3, max_m3, variation } = territory;
+    return [
+      [
+        escapeHtml(name),
+        ...[min_m3, median_m3, max_m3].map((size) => formatNumber(size * 1e9)),
+        formatNumber(variation, 3),
+      ],
+    ];
+  });
+  if (rows.length === 0) return '';
+  const caption =
+    'Of the terminals: volume of the tissue nearer to one than to the others of its tree, times its demand where that differs over the tissue. Variation is the standard deviation over the mean.';
+  return `<section><h2>Territories</h2>${table(caption, ['tree', 'least, mm³', 'median, mm³', 'most, mm³', 'variation'], rows)}</section>`;
 }
 
 function orders(report: Report): string {

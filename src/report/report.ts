@@ -40,6 +40,15 @@ export interface HortonRatios {
   readonly length: number;
 }
 
+/** How much tissue, times its demand, the terminals of a tree serve. */
+export interface TerritorySummary {
+  readonly min_m3: number;
+  readonly median_m3: number;
+  readonly max_m3: number;
+  /** Standard deviation of the terminals' territories over their mean. */
+  readonly variation: number;
+}
+
 export interface TreeSummary {
   readonly name: string;
   readonly kind: 'supply' | 'drain';
@@ -57,6 +66,8 @@ export interface TreeSummary {
   } | null;
   /** Time between root and terminals. */
   readonly transit: { readonly min_s: number; readonly mean_s: number; readonly max_s: number } | null;
+  /** Of the terminals, m³ at demand 1; null where they were not measured. */
+  readonly territory: TerritorySummary | null;
 }
 
 /** What report.json holds. All but `resources` is the same for the same spec and seed. */

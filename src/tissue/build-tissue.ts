@@ -57,14 +57,15 @@ export function buildTissue(
 /** Demand over a region; refused where it is nothing. */
 function perfuse(region: Region, parts: readonly WeightedRegion[]): Perfusion {
   const weighing = weighParts(parts);
-  const { whole, error } = integrateDemand(region, weighing, coverDemand(region, weighing));
+  const cells = coverDemand(region, weighing);
+  const { whole, error } = integrateDemand(region, weighing, cells);
   if (!(whole > 0))
     throw inputError(
       'no-demand',
       'tissue.demand',
       'got weights of 0 all over the tissue, expected a part of it that demands blood',
     );
-  return { uniform: false, whole, error, ...weighing };
+  return { uniform: false, whole, error, cells, ...weighing };
 }
 
 /** Builds regions and gathers the faults of all of them. */

@@ -1,6 +1,6 @@
 import type { Random } from '../core/random.ts';
 import { type Cells, coverCells } from './cells.ts';
-import { coverDemand, type DemandCells } from './perfusion.ts';
+import type { DemandCells } from './perfusion.ts';
 import type { Tissue } from './tissue.ts';
 
 /** Cells the box is cut into so that darts fall near the tissue only. */
@@ -15,7 +15,8 @@ export type ThrowDart = (out: Float64Array) => boolean;
 
 /** Darts that fall on a tissue, or just beside it, as often as blood is demanded there. */
 export function createDarts(tissue: Tissue, random: Random): ThrowDart {
-  if (!tissue.perfusion.uniform) return throwWeighted(coverDemand(tissue, tissue.perfusion), tissue, random);
+  const demanding = tissue.perfusion.cells;
+  if (demanding !== null) return throwWeighted(demanding, tissue, random);
   const cells = coverCells(tissue, SITE_CELLS);
   return (out) => {
     throwEven(cells, random, out);

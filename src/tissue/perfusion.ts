@@ -8,6 +8,8 @@ export interface Perfusion {
   readonly whole: number;
   /** Relative standard error of `whole`. */
   readonly error: number;
+  /** Boxes that hold all that is demanded; null where uniform. */
+  readonly cells: DemandCells | null;
   /** Greatest weight, and least above 0, that a point may have. */
   readonly most: number;
   readonly least: number;
@@ -33,6 +35,7 @@ export function evenPerfusion(volume: number, error: number): Perfusion {
     uniform: true,
     whole: volume,
     error,
+    cells: null,
     most: 1,
     least: 1,
     at: () => 1,
@@ -90,10 +93,10 @@ export interface DemandCells {
 }
 
 /** Boxes that demand is first cut into, and share of all demand above which a box of mixed demand is cut again. */
-const FIRST = 32_768;
+const FIRST = 8192;
 const COARSE = 1 / 16_384;
 /** Times that a box may be cut in eight. */
-const PASSES = 6;
+const PASSES = 8;
 
 /**
  * Cuts a tissue's box until hardly any demand is in boxes where it is not the same all over.
@@ -125,12 +128,16 @@ export function coverDemand(region: Pick<Region, 'min' | 'max' | 'depth'>, weigh
     let sum = 0;
     for (let at = 0; at < boxes.length; at += WIDE) sum += boxWhole(boxes, at);
     const next: number[] = [];
+    let same = true;
     for (let at = 0; at < boxes.length; at += WIDE) {
       const mixed = boxes[at + 6] !== boxes[at + 7];
-      if (!mixed || boxWhole(boxes, at) <= COARSE * sum) for (let k = 0; k < WIDE; k++) next.push(boxes[at + k]!);
-      else cut(next, region, weighing, boxes, at);
+      if (!mixed || boxWhole(boxes, at) <= COARSE * sum) {
+        for (let k = 0; k < WIDE; k++) next.push(boxes[at + k]!);
+        continue;
+      }
+      same = false;
+      cut(next, region, weighing, boxes, at);
     }
-    const same = next.length === boxes.length;
     boxes = next;
     if (same) break;
   }
@@ -159,7 +166,6 @@ export function coverDemand(region: Pick<Region, 'min' | 'max' | 'depth'>, weigh
 
 /** Numbers a box in a list takes: centre, half edges, bounds of demand, full. */
 const WIDE = 9;
-const bounds = () => new Float64Array(2);
 
 function look(
   into: number[],
@@ -170,7 +176,7 @@ function look(
   const reach = halfDiagonal(2 * hx, 2 * hy, 2 * hz) * (1 + 1e-9);
   const depth = region.depth(x, y, z);
   if (depth < -reach) return;
-  const range = bounds();
+  const range = new Float64Array(2);
   weighing.within(x, y, z, reach, range);
   if (range[1] === 0) return;
   into.push(x, y, z, hx, hy, hz, range[0]!, range[1]!, depth > reach ? 1 : 0);
