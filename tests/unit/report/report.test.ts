@@ -113,6 +113,24 @@ describe('buildReport', () => {
     expect(buildReport(inputOf(FORK, {}, false)).trees[0]!.terminal_pressure).toBeNull();
   });
 
+  it('summarises the territories of terminals, where they are told', () => {
+    const input = inputOf(FORK);
+    const territory = Float64Array.from([0, 0, 0, 3e-9, 0, 1e-9, 2e-9]);
+    const report = buildReport({ ...input, record: { ...input.record, territory } });
+    expect(report.trees[0]!.territory).toEqual({
+      min_m3: 1e-9,
+      median_m3: 2e-9,
+      max_m3: 3e-9,
+      // (1, 2, 3): variance 2/3 about a mean of 2.
+      variation: expect.closeTo(Math.sqrt(2 / 3) / 2, 12),
+    });
+    expect(renderReport(report)).toContain('<h2>Territories</h2>');
+    expect(buildReport(input).trees[0]!.territory).toBeNull();
+    expect(renderReport(buildReport(input))).not.toContain('Territories');
+    const none = buildReport({ ...input, record: { ...input.record, territory: new Float64Array(7) } });
+    expect(none.trees[0]!.territory).toBeNull();
+  });
+
   it('keeps times and memory apart: all else is the same for the same tree', () => {
     const one = buildReport(
       inputOf(FORK, { resources: { wallTime: 1, costAgainstTime: [{ stage: 'growth', time_s: 1, cost_W: 2 }] } }),
