@@ -7,6 +7,7 @@ import { randomStream } from '../../src/core/random.ts';
 import { buildTissue } from '../../src/tissue/build-tissue.ts';
 import { checkSurface } from '../../src/tissue/check-surface.ts';
 import { createSites } from '../../src/tissue/sites.ts';
+import { measureTerritories } from '../../src/tissue/territories.ts';
 import type { Tissue } from '../../src/tissue/tissue.ts';
 import { tubeInside } from '../../src/tissue/tube.ts';
 import { bean } from '../support/surfaces.ts';
@@ -31,6 +32,15 @@ const tissues: readonly (readonly [string, Tissue])[] = [
         minus: [{ shape: 'ellipsoid', center: [0, 0, 0], radii: [2.5, 1.5, 1.5] }],
       },
       new Map(),
+    ),
+  ],
+  [
+    'box with demand',
+    buildTissue(
+      { shape: 'box', min: [0, 0, 0], max: [1, 1, 1] },
+      new Map(),
+      [],
+      [{ shape: { shape: 'sphere', center: [0.5, 0.5, 0.5], radius: 0.3 }, weight: 5 }],
     ),
   ],
   ['bean surface', buildTissue({ shape: 'surface', file: 'bean', unit: 'm' }, new Map([['bean', surface]]))],
@@ -91,4 +101,8 @@ for (const [name, tissue] of tissues) {
     for (let i = 0; i < wanted; i++) if (stream.next(0)) sum += stream.x + stream.y + stream.z;
     return sum;
   });
+  const stream = createSites(tissue, randomStream('bench', 'sites'));
+  for (let i = 0; i < wanted; i++) stream.next(0);
+  const sites = stream.positions();
+  report(name, 'territory', wanted, () => measureTerritories(tissue, sites).reduce((sum, one) => sum + one * one, 0));
 }

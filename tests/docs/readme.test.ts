@@ -52,6 +52,8 @@ describe('README', () => {
   beforeAll(() => {
     scratch = realpathSync(mkdtempSync(join(tmpdir(), 'readme-')));
     process.chdir(scratch);
+    // Files that the reader is told to save.
+    for (const [, name, content] of text.matchAll(/```json (\S+)\n([\s\S]*?)```/g)) writeFileSync(name!, content!);
   });
   afterAll(() => {
     process.chdir(before);
