@@ -78,10 +78,12 @@ export function checkTree(
   }
 
   // The first reach is about the distance between neighbours; it is only for naming the closest pair.
-  measureClearance(forest, spec?.clearance.gap ?? 0, size / Math.cbrt(forest.count), tallies.clearance);
+  const nearest = size / Math.cbrt(forest.count);
+  const whole = measureClearance(forest, spec?.clearance.gap ?? 0, nearest, tallies.clearance);
   promises.push(
     tallies.clearance.close(
       `${spec === null ? 'no spec, so no gap is asked; ' : ''}` +
+        (whole ? '' : 'broken off: more pairs break it than can be counted in reasonable time; ') +
         (tallies.clearance.checked === 0 ? 'no pair comes near; ' : '') +
         'counted are the pairs near enough to matter; slack 1e-9 of the size',
     ),

@@ -9,12 +9,16 @@ import type { Tally } from './result.ts';
  * Every pair that could be closer than `gap` is measured; beyond that the search looks only for the closest pair, so its
  * reach shrinks as close pairs are met.
  *
+ * Where radii are far too large, as in a file in the wrong unit, all vessels lie in one another and there is no end of pairs:
+ * past a million and twenty a vessel that break the promise, the rest is not looked at.
+ *
  * @param gap   m, what is asked between walls
  * @param reach m, how far to look for the closest pair at first
  * @param tally sees one value a pair measured: axis distance − r₁ − r₂ in m
+ * @returns     false where it was broken off
  * Cost: O(n log n) for trees whose vessels fill their boxes as trees do; 2·10⁶ vessels take about 2 s.
  */
-export function measureClearance(forest: Forest, gap: number, reach: number, tally: Tally): void {
+export function measureClearance(forest: Forest, gap: number, reach: number, tally: Tally): boolean {
   const { count, parent, position, radius } = forest;
   const tubes = new Int32Array(count);
   let tubeCount = 0;
@@ -36,6 +40,8 @@ export function measureClearance(forest: Forest, gap: number, reach: number, tal
   const row = new Int32Array(tubeCount);
   for (let slot = 0; slot < tubeCount; slot++) row[slot] = tubes[tree.item[slot]!]!;
   const near = { margin: Math.max(gap, reach) };
+  const enough = 1e6 + 20 * tubeCount;
+  let whole = true;
 
   const meet = (i: number, j: number): void => {
     const iParent = parent[i]!;
@@ -45,7 +51,10 @@ export function measureClearance(forest: Forest, gap: number, reach: number, tal
     if (distance > near.margin) return;
     if (i < j) tally.see(distance, i, j);
     else tally.see(distance, j, i);
-    if (distance < near.margin) near.margin = Math.max(gap, distance);
+    if (tally.failures > enough) {
+      near.margin = -Infinity;
+      whole = false;
+    } else if (distance < near.margin) near.margin = Math.max(gap, distance);
   };
   visitNearLeaves(tree, near, (one, other) => {
     const endA = Math.min(FAN * one + FAN, tubeCount);
@@ -67,4 +76,5 @@ export function measureClearance(forest: Forest, gap: number, reach: number, tal
       }
     }
   });
+  return whole;
 }

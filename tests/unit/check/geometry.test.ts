@@ -8,12 +8,15 @@ import {
   visitNearLeaves,
   visitOverlaps,
 } from '../../../src/check/box-tree.ts';
+import { checkTree } from '../../../src/check/check-tree.ts';
 import { measureClearance } from '../../../src/check/clearance.ts';
 import { junctionReach } from '../../../src/check/junctions.ts';
 import { Tally } from '../../../src/check/result.ts';
 import { randomStream } from '../../../src/core/random.ts';
 import { squaredDistanceBetweenSegments } from '../../../src/core/segments.ts';
+import { solveRecord } from '../../../src/run.ts';
 import type { Forest } from '../../../src/tree/forest.ts';
+import { bisectBox } from '../../support/bisected-tree.ts';
 
 describe('segment distance', () => {
   test('by hand', () => {
@@ -197,9 +200,29 @@ describe('clearance', () => {
       describe: () => '',
       cap: 1e6,
     });
-    measureClearance(forest, gap, 1, tally);
+    expect(measureClearance(forest, gap, 1, tally)).toBe(true);
     expect(tally.worst).toBe(closest);
     expect(tally.findings.map((finding) => `${finding.vessel}-${finding.other}`).sort()).toEqual(wanted.sort());
+  });
+});
+
+describe('a tree that was never grown', () => {
+  const { forest, spec } = bisectBox(5000);
+
+  test('keeps every promise, as it is made to', () => {
+    const { promises } = checkTree(solveRecord(forest, spec), spec, new Map());
+    expect(promises.filter(({ held }) => held === false)).toEqual([]);
+    expect(promises.filter(({ held }) => held === true).length).toBeGreaterThanOrEqual(18);
+  });
+
+  test('with radii of another unit is told to be broken, and not looked at for ever', () => {
+    const wide = { ...forest, radius: forest.radius.map((r) => 1000 * r) };
+    const { promises } = checkTree(solveRecord(wide, spec), spec, new Map());
+    const clearance = promises.find(({ id }) => id === 'clearance')!;
+    expect(clearance.held).toBe(false);
+    expect(clearance.note).toMatch(/^broken off/);
+    // All pairs are some fifty million.
+    expect(clearance.checked).toBeLessThan(3e6);
   });
 });
 
