@@ -27,6 +27,8 @@ const BATCH = 0.02;
 const MOST_BATCH = 8192;
 /** Sites in hand from which on a crew is worth calling. */
 const SHARED_BATCH = 128;
+/** Lengths at a new junction over those that would just do. */
+const PLACE_SLACK = 1.2;
 /** Placements proposed for each. */
 const KEEP = 4;
 /** Growth between two sizings of trees whose radii depend on all their lengths. */
@@ -137,6 +139,7 @@ export class Grower {
       keep: KEEP,
       slimmest: this.trees.some((tree) => tree.resized) ? 0.7 : 1,
       headroom: HEADROOM,
+      slack: PLACE_SLACK,
     };
     const weigh: TerminalWeight = (row, along, length, share) =>
       this.trees[builder.tree[row]!]!.resizer.terminalWeight(builder, row, along, length, share);

@@ -32,6 +32,8 @@ export class JunctionPlaces {
   above = 0;
   below = 0;
   own = 0;
+  /** Lengths that a place is given over those that would just do, > 1: tubes that are as short as can be cannot gain flow. */
+  slack = 1.01;
   private ballA = 0;
   private ballB = 0;
   private readonly builder: ForestBuilder;
@@ -51,19 +53,18 @@ export class JunctionPlaces {
    * @param row   the tube's lower node
    * @param share flow share of the new terminal, > 0
    * @param run   radii that its far end needs: a terminal's run-out, or the ball of a subtree over its radius
+   * @param shrink radius of a tube that gains nothing, over what it is now: a new terminal makes all others' part less
    * @returns     number of places, 0 to 4; they are in `at`, best first, until the next call
    */
-  find(row: number, x: number, y: number, z: number, share: number, run = RUN_OUT): number {
+  find(row: number, x: number, y: number, z: number, share: number, run = RUN_OUT, shrink = 1): number {
     const { builder, point, preview } = this;
     const p = builder.position;
     const parent = builder.parent[row]!;
     const load = builder.load[row]!;
-    const grown = builder.radius(row);
+    const grown = shrink * builder.radius(row);
     this.below = grown;
     this.above = grown * this.rootOf((load + share) / load);
     this.own = grown * this.rootOf(share / load);
-    this.ballA = Math.max(preview.ballWith(parent, -1, 0, 0, 0, 0), this.above);
-    this.ballB = builder.child[2 * row]! < 0 ? RUN_OUT * grown : Math.max(preview.ballWith(row, -1, 0, 0, 0, 0), grown);
     const ballS = run * this.own;
     const ax = p[3 * parent]!;
     const ay = p[3 * parent + 1]!;
@@ -71,6 +72,9 @@ export class JunctionPlaces {
     const bx = p[3 * row]!;
     const by = p[3 * row + 1]!;
     const bz = p[3 * row + 2]!;
+    // As the tube runs today; how it will run is looked at once the junction has a place.
+    this.ballA = Math.max(preview.ballWith(parent, row, bx, by, bz, this.above), this.above);
+    this.ballB = Math.max(preview.ballWith(row, parent, ax, ay, az, grown), grown);
     fermatPoint(ax, ay, az, bx, by, bz, x, y, z, flowWeight(load + share), flowWeight(load), flowWeight(share), point);
     let count = 0;
     const jx = point[0]!;
@@ -160,9 +164,9 @@ export class JunctionPlaces {
         separationReach(above, own, Math.min(as, least)),
         separationReach(grown, own, Math.min(bs, least)),
       );
-      const needA = 1.01 * FIT_MARGIN * (ballA + ball);
-      const needB = 1.01 * FIT_MARGIN * (ballB + ball);
-      const needS = 1.01 * FIT_MARGIN * (ballS + ball);
+      const needA = this.slack * FIT_MARGIN * (ballA + ball);
+      const needB = this.slack * FIT_MARGIN * (ballB + ball);
+      const needS = this.slack * FIT_MARGIN * (ballS + ball);
       if (a >= needA && b >= needB && c >= needS) {
         if (ab > least || as > least || bs > least) return count;
         this.at[3 * count] = jx;

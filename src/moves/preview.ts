@@ -4,6 +4,9 @@ import type { Room } from '../room/room.ts';
 import { tubeInside } from '../tissue/tube.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 
+/** Lengths are asked a hair less than they must be: the last word has whoever makes the change. */
+export const LENIENT = 1 - 1e-6;
+
 /**
  * Looks at a change before it is made, and changes nothing: what it refuses would not fit; what it lets through most
  * likely does. So many looks may be taken at one forest at once.
@@ -11,6 +14,8 @@ import type { ForestBuilder } from '../tree/builder.ts';
 export class Preview {
   /** Row whose tube does not count: that of a subtree which has been cut; −1: none. */
   ignored = -1;
+  /** What the change leaves of the radius of a tube that it does not touch, ≤ 1. */
+  shrink = 1;
   private readonly builder: ForestBuilder;
   private readonly room: Room;
 
@@ -64,7 +69,7 @@ export class Preview {
       );
       const wide = need + room.reserveOf(other);
       if (squared >= wide * wide) continue;
-      const least = need + builder.radius(other);
+      const least = need + this.shrink * builder.radius(other);
       if (squared < least * least) return false;
     }
     return true;
@@ -88,8 +93,8 @@ export class Preview {
     const c0 = builder.child[2 * node]!;
     const c1 = builder.child[2 * node + 1]!;
     const parent = builder.parent[node]!;
-    if (parent < 0) return RUN_OUT * (c0 === neighbour ? radius : builder.radius(c0));
-    const own = parent === neighbour ? radius : builder.radius(node);
+    if (parent < 0) return RUN_OUT * (c0 === neighbour ? radius : this.shrink * builder.radius(c0));
+    const own = parent === neighbour ? radius : this.shrink * builder.radius(node);
     if (c0 < 0) return RUN_OUT * own;
     const p = builder.position;
     const ox = p[3 * node]!;
@@ -111,7 +116,7 @@ export class Preview {
     ax *= inverse;
     ay *= inverse;
     az *= inverse;
-    const ra = ar ? radius : builder.radius(c0);
+    const ra = ar ? radius : this.shrink * builder.radius(c0);
     const pa = px * ax + py * ay + pz * az;
     if (c1 < 0) return pa <= room.limits.cosMinBend ? separationReach(own, ra, pa) : -1;
     const br = c1 === neighbour;
@@ -122,7 +127,7 @@ export class Preview {
     bx *= inverse;
     by *= inverse;
     bz *= inverse;
-    const rb = br ? radius : builder.radius(c1);
+    const rb = br ? radius : this.shrink * builder.radius(c1);
     const pb = px * bx + py * by + pz * bz;
     const ab = ax * bx + ay * by + az * bz;
     const least = room.limits.cosMinAngle;
@@ -148,7 +153,7 @@ export class Preview {
     const dy = p[3 * other + 1]! - p[3 * node + 1]!;
     const dz = p[3 * other + 2]! - p[3 * node + 2]!;
     const far = this.ballWith(other, -1, 0, 0, 0, 0);
-    const least = FIT_MARGIN * (ball + (far < 0 ? 0 : far));
+    const least = LENIENT * FIT_MARGIN * (ball + (far < 0 ? 0 : far));
     return dx * dx + dy * dy + dz * dz >= least * least;
   }
 }

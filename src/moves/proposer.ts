@@ -4,11 +4,14 @@ import type { ForestBuilder } from '../tree/builder.ts';
 import { Candidates } from './candidates.ts';
 import { JunctionPlaces } from './junction-places.ts';
 import type { Potential } from './potential.ts';
-import { Preview } from './preview.ts';
+import { LENIENT, Preview } from './preview.ts';
 import { span } from './span.ts';
 
 /** Most placements that one look may propose. */
 export const MOST_PROPOSED = 8;
+
+/** Most of them on one tube. */
+const MOST_ON_TUBE = 2;
 
 export interface ProposeOptions {
   /** Tubes looked at in the first try, and in the second where none of them would do. */
@@ -18,6 +21,8 @@ export interface ProposeOptions {
   readonly keep: number;
   /** Share of the radius that its flow alone would give which a terminal has at least. */
   readonly slimmest: number;
+  /** Lengths at a new junction over those that would just do, > 1. */
+  readonly slack: number;
 }
 
 /**
@@ -46,6 +51,7 @@ export class Proposer {
     this.preview = new Preview(builder, room);
     this.candidates = new Candidates(builder, room, potential);
     this.places = new JunctionPlaces(builder, room, this.preview);
+    this.places.slack = options.slack;
   }
 
   /**
@@ -58,11 +64,9 @@ export class Proposer {
     const { builder, options } = this;
     this.tally.sites++;
     const first = builder.child[2 * builder.roots[tree]!]!;
-    const part = share / (builder.load[first]! + share);
-    const own =
-      options.slimmest *
-      builder.inletRadius[tree]! *
-      (builder.exponent === 3 ? Math.cbrt(part) : Math.exp(Math.log(part) / builder.exponent));
+    const whole = builder.load[first]!;
+    const own = options.slimmest * builder.inletRadius[tree]! * this.rootOf(share / (whole + share));
+    const shrink = this.rootOf(whole / (whole + share));
     if (!this.room.tissue.deeperThan(x, y, z, own)) {
       this.tally.taken++;
       return 0;
@@ -72,10 +76,10 @@ export class Proposer {
       this.tally.taken++;
       return 0;
     }
-    const count = this.weigh(0, found, x, y, z, share, -1, RUN_OUT);
+    const count = this.weigh(0, found, x, y, z, share, -1, RUN_OUT, shrink);
     if (count > 0 || found < options.first) return count;
     const more = this.candidates.search(tree, x, y, z, share, options.second);
-    return this.weigh(options.first, more, x, y, z, share, -1, RUN_OUT);
+    return this.weigh(options.first, more, x, y, z, share, -1, RUN_OUT, shrink);
   }
 
   /**
@@ -117,7 +121,7 @@ export class Proposer {
     if (kept === 0) return 0;
     const run = Math.max(preview.ballWith(top, -1, 0, 0, 0, 0) / builder.radius(top), 1);
     preview.ignored = top;
-    const count = this.weigh(0, kept, x, y, z, share, top, run);
+    const count = this.weigh(0, kept, x, y, z, share, top, run, 1);
     preview.ignored = -1;
     return count;
   }
@@ -132,14 +136,17 @@ export class Proposer {
     share: number,
     top: number,
     run: number,
+    shrink: number,
   ): number {
     const { candidates, places, options } = this;
+    this.preview.shrink = shrink;
     let count = 0;
     for (let c = from; c < end && count < options.keep; c++) {
       const row = candidates.rows[c]!;
       this.tally.candidates++;
-      const found = places.find(row, x, y, z, share, run);
-      for (let k = 0; k < found; k++) {
+      const found = places.find(row, x, y, z, share, run, shrink);
+      let onRow = 0;
+      for (let k = 0; k < found && onRow < MOST_ON_TUBE && count < options.keep; k++) {
         this.tally.places++;
         if (!this.looksWell(row, k, x, y, z, top)) continue;
         this.row[count] = row;
@@ -147,10 +154,16 @@ export class Proposer {
         this.at[3 * count + 1] = places.at[3 * k + 1]!;
         this.at[3 * count + 2] = places.at[3 * k + 2]!;
         count++;
-        break;
+        onRow++;
       }
     }
+    this.preview.shrink = 1;
     return count;
+  }
+
+  private rootOf(ratio: number): number {
+    const { exponent } = this.builder;
+    return exponent === 3 ? Math.cbrt(ratio) : Math.exp(Math.log(ratio) / exponent);
   }
 
   /** Whether the three tubes of one junction place would fit, as far as can be seen without making them. */
@@ -169,14 +182,14 @@ export class Proposer {
     const cy = p[3 * row + 1]!;
     const cz = p[3 * row + 2]!;
     const ballP = preview.ballWith(parent, row, jx, jy, jz, places.above);
-    if (ballP < 0 || span(px - jx, py - jy, pz - jz) < FIT_MARGIN * (ball + ballP)) return false;
+    if (ballP < 0 || span(px - jx, py - jy, pz - jz) < LENIENT * FIT_MARGIN * (ball + ballP)) return false;
     const ballC = preview.ballWith(row, parent, jx, jy, jz, places.below);
-    if (ballC < 0 || span(cx - jx, cy - jy, cz - jz) < FIT_MARGIN * (ball + ballC)) return false;
+    if (ballC < 0 || span(cx - jx, cy - jy, cz - jz) < LENIENT * FIT_MARGIN * (ball + ballC)) return false;
     if (!preview.sparesOthers(parent, row, ballP) || !preview.sparesOthers(row, parent, ballC)) return false;
     if (top >= 0 && builder.child[2 * top]! >= 0) {
       const loose = builder.parent[top]!;
       const ballS = preview.ballWith(top, loose, jx, jy, jz, places.own);
-      if (ballS < 0 || span(x - jx, y - jy, z - jz) < FIT_MARGIN * (ball + ballS)) return false;
+      if (ballS < 0 || span(x - jx, y - jy, z - jz) < LENIENT * FIT_MARGIN * (ball + ballS)) return false;
       if (!preview.sparesOthers(top, loose, ballS)) return false;
     }
     if (!preview.clear(jx, jy, jz, x, y, z, places.own, row, -1, top)) return false;

@@ -30,7 +30,13 @@ export class Rehanger {
     this.builder = builder;
     this.room = room;
     this.potential = potential;
-    this.proposer = new Proposer(builder, room, potential, { first, second: 0, keep: MOST_PROPOSED, slimmest: 0 });
+    this.proposer = new Proposer(builder, room, potential, {
+      first,
+      second: 0,
+      keep: MOST_PROPOSED,
+      slimmest: 0,
+      slack: 1.01,
+    });
     this.trial = new Trial(builder, room, 1);
     this.lowered = new Trial(builder, room, 1);
   }

@@ -25,7 +25,12 @@ function growBoth(seed: string, count: number) {
   room.begin();
   room.move(first);
   room.commit();
-  const attacher = new Attacher(builder, room, { first: 16, second: 64, headroom: 1.03 }, (_a, _b, _c, share) => share);
+  const attacher = new Attacher(
+    builder,
+    room,
+    { first: 16, second: 64, keep: 8, slimmest: 1, slack: 1.3, headroom: 1.03 },
+    (_a, _b, _c, share) => share,
+  );
   const root = plainRoot(start);
   plainAttach(root, [sites.x, sites.y, sites.z], 1);
   let served = 1;
