@@ -40,6 +40,7 @@ export function measureContainment(
   tally: Tally,
 ): void {
   const { count, parent } = forest;
+  const { depthAtLeast } = region;
   const low = new Float64Array(256);
   const high = new Float64Array(256);
   const vector = () => new Float64Array(3);
@@ -72,8 +73,12 @@ export function measureContainment(
       const b = high[top]!;
       const half = 0.5 * (b - a);
       const s = a + half;
-      const middle = region.depth(from[0]! + s * along[0]!, from[1]! + s * along[1]!, from[2]! + s * along[2]!);
-      if (middle - Math.sqrt(r * r + half * half) >= enough) continue;
+      const x = from[0]! + s * along[0]!;
+      const y = from[1]! + s * along[1]!;
+      const z = from[2]! + s * along[2]!;
+      const needed = enough + Math.sqrt(r * r + half * half);
+      if (depthAtLeast !== undefined && depthAtLeast(x, y, z) >= needed) continue;
+      if (region.depth(x, y, z) >= needed) continue;
       if (whole) {
         whole = false;
         squareUp(tube);

@@ -14,6 +14,8 @@ export interface Region {
    * distance; it changes no faster than position.
    */
   readonly depth: Depth;
+  /** A lower bound of `depth` that costs a fraction of it; only where `depth` is costly. */
+  readonly depthAtLeast?: Depth | undefined;
   /** m; corners of a box that holds the region. */
   readonly min: Triple;
   readonly max: Triple;

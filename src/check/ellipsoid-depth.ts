@@ -71,6 +71,14 @@ export function measureEllipsoid(center: Triple, radii: Triple): Region {
       const c = y2 === 0 ? 0 : y2 / (s + above[2]);
       return -t * Math.sqrt(a * a + b * b + c * c);
     },
+    // Shrunk to the unit sphere, no distance is less than 1 / shortest of what it was. A hair is taken off for rounding.
+    depthAtLeast: (x, y, z) => {
+      const a = (x - center[0]) / radii[0];
+      const b = (y - center[1]) / radii[1];
+      const c = (z - center[2]) / radii[2];
+      const square = a * a + b * b + c * c;
+      return square < 1 ? shortest * (1 - Math.sqrt(square) - 1e-14) : -Infinity;
+    },
     min: [center[0] - radii[0], center[1] - radii[1], center[2] - radii[2]],
     max: [center[0] + radii[0], center[1] + radii[1], center[2] + radii[2]],
   };

@@ -33,6 +33,26 @@ describe('single shapes', () => {
     expect(measureShape(shape, NONE).depth(x, y, z)).toBeCloseTo(wanted, 12);
   });
 
+  test('an ellipsoid gives a bound from below, good at its centre', () => {
+    const random = randomStream('1', 'bound');
+    for (const radii of [
+      [3, 1.2, 0.7],
+      [2, 2, 2],
+      [0.5, 0.5, 9],
+    ] as [number, number, number][]) {
+      const { depth, depthAtLeast } = measureShape({ shape: 'ellipsoid', center: [1, 2, 3], radii }, NONE);
+      expect(depthAtLeast!(1, 2, 3)).toBeCloseTo(Math.min(...radii), 12);
+      for (let k = 0; k < 3000; k++) {
+        // Some hard by the boundary, where rounding counts.
+        const near = k % 3 === 0 ? 1 + 1e-15 * (random.next() - 0.5) : 1.2 * random.next();
+        const [u, v] = [2 * random.next() - 1, 2 * Math.PI * random.next()];
+        const w = Math.sqrt(1 - u * u);
+        const [x, y, z] = [u, w * Math.cos(v), w * Math.sin(v)].map((n, i) => i + 1 + near * n * radii[i]!);
+        expect(depthAtLeast!(x!, y!, z!)).toBeLessThanOrEqual(depth(x!, y!, z!));
+      }
+    }
+  });
+
   // The nearest of many boundary points is never nearer than the true distance, and little farther.
   test('ellipsoid against a fine cloud of boundary points', () => {
     const [a, b, c] = [3, 1.2, 0.7];
