@@ -1,15 +1,15 @@
 import { checkTree } from './check/check-tree.ts';
 import type { CheckResult } from './check/result.ts';
 import { type Fault, InputError } from './core/errors.ts';
+import { randomStream } from './core/random.ts';
 import type { Reals } from './core/reals.ts';
 import type { TriangleSurface } from './core/surface.ts';
 import { solveFlow } from './flow/solve.ts';
-import { freezeWithTerritories } from './growth/freeze.ts';
 import type { GrowthOptions } from './growth/crew.ts';
+import { freezeWithTerritories } from './growth/freeze.ts';
 import { type Growth, growForest } from './growth/grow.ts';
 import type { Stopped } from './growth/grower.ts';
-import { tubeWeights } from './refine/cost.ts';
-import { type RelaxResult, relaxJunctions } from './refine/relax.ts';
+import { type Budget, type RefineResult, refineForest } from './refine/refine.ts';
 import type { Spec, TreeSpec } from './spec/types.ts';
 import { specToJson } from './spec/write.ts';
 import { buildTissue } from './tissue/build-tissue.ts';
@@ -20,14 +20,8 @@ import { strahlerOrders } from './tree/strahler.ts';
 /** Version of the program, as written into every result. */
 export const VERSION = '0.1.0';
 
-/** What the budgets come to: most sweeps over all junctions, and the gain of a sweep below which it is enough. */
-const BUDGETS = {
-  none: { sweeps: 0, tolerance: 0 },
-  quick: { sweeps: 20, tolerance: 1e-4 },
-  thorough: { sweeps: 2000, tolerance: 1e-9 },
-} as const;
-/** Most sweeps that a spec may state, and so that a budget in seconds may come to. */
-const MOST_SWEEPS = 10_000;
+/** Most steps that a spec may state, and so that a budget in seconds may come to. */
+const MOST_STEPS = 10_000;
 /** Up to so many explicit points, several orders of serving them are tried and the cheapest tree is kept. */
 const FEW_POINTS = 64;
 const ORDERS = 24;
@@ -68,13 +62,13 @@ export function growRun(
   const best = growBest(spec, tissue, options);
   const { grower } = best.growth;
   let stopped = best.growth.stopped;
-  let refine: RelaxResult | null = best.refine;
+  let refine: RefineResult | null = best.refine;
   if (refine === null && stopped !== 'cancelled') {
     refine = refineGrowth(best.growth, spec, options);
     if (refine.stopped === 'cancelled') stopped = 'cancelled';
   }
   if (stopped !== 'cancelled') stopped = grower.finish();
-  const used: Spec = options.refineEnough !== undefined && refine !== null ? { ...spec, refine: refine.sweeps } : spec;
+  const used: Spec = options.refineEnough !== undefined && refine !== null ? { ...spec, refine: refine.steps } : spec;
   const { forest, territory } = freezeWithTerritories(grower, spec);
   const record = solveRecord(forest, used, territory);
   const check = checkTree(record, used, surfaces);
@@ -144,14 +138,11 @@ export function solveRecord(forest: Forest, spec: Spec, territory: Reals | null 
 }
 
 /** Lowers the cost of a growth within the spec's budget. */
-function refineGrowth(growth: Growth, spec: Spec, options: GrowOptions): RelaxResult {
+function refineGrowth(growth: Growth, spec: Spec, options: GrowOptions): RefineResult {
   const { builder, room } = growth.grower;
-  const budget = typeof spec.refine === 'number' ? { sweeps: spec.refine, tolerance: 0 } : BUDGETS[spec.refine];
   const timed = options.refineEnough !== undefined;
-  const weight = tubeWeights(builder, spec);
-  return relaxJunctions(builder, room, weight, {
-    sweeps: timed ? MOST_SWEEPS : budget.sweeps,
-    tolerance: timed ? 0 : budget.tolerance,
+  return refineForest(builder, room, spec, {
+    budget: timed ? { kind: 'steps', steps: MOST_STEPS } : budgetOf(spec),
     onProgress: options.onProgress,
     signal: options.signal,
     enough: (_, cost) => {
@@ -161,11 +152,17 @@ function refineGrowth(growth: Growth, spec: Spec, options: GrowOptions): RelaxRe
   });
 }
 
+function budgetOf(spec: Spec): Budget {
+  const { refine } = spec;
+  if (typeof refine === 'number') return refine === 0 ? { kind: 'none' } : { kind: 'steps', steps: refine };
+  return refine === 'annealed' ? { kind: refine, random: randomStream(spec.seed, 'annealing') } : { kind: refine };
+}
+
 /**
  * Grows once where sites are free; where points are given, again in other orders: the few-points problem is about
  * topology, and a point left out may be reached when it is served first.
  */
-function growBest(spec: Spec, tissue: Tissue, options: GrowOptions): { growth: Growth; refine: RelaxResult | null } {
+function growBest(spec: Spec, tissue: Tissue, options: GrowOptions): { growth: Growth; refine: RefineResult | null } {
   const points = spec.trees.map((tree) => (tree.terminals.by === 'points' ? tree.terminals.points.length : 0));
   const few = !points.includes(0) && points.reduce((a, b) => a + b, 0) <= FEW_POINTS;
   let growth = growForest(spec, tissue, options);
@@ -185,16 +182,12 @@ function growBest(spec: Spec, tissue: Tissue, options: GrowOptions): { growth: G
     if (next.stopped === 'cancelled') break;
     const relaxed = refineGrowth(next, trial, trialOptions);
     const served = next.grower.served - growth.grower.served;
-    if (served > 0 || (served === 0 && lastCost(relaxed) < lastCost(refine))) {
+    if (served > 0 || (served === 0 && relaxed.after < refine.after)) {
       growth = next;
       refine = relaxed;
     }
   }
   return { growth, refine: counted ? null : refine };
-}
-
-function lastCost(result: RelaxResult): number {
-  return result.cost[result.cost.length - 1]!;
 }
 
 /** (trees) points of the spec that a growth left out. */

@@ -34,7 +34,7 @@ export function addGrow(program: Command, context: Context): void {
     .option('--seed <seed>', 'seed in place of the spec’s')
     .option('--terminals <count>', 'number of terminals a tree, in place of the spec’s count')
     .option('--workers <count>', 'threads that grow, one for each core by default; the result never depends on it')
-    .option('--refine <budget>', 'none, quick, thorough, or a time such as 20s, in place of the spec’s');
+    .option('--refine <budget>', 'none, quick, thorough, annealed, or a time such as 20s, in place of the spec’s');
   addCommonOptions(command, 'print the summary as one JSON document');
   addExample(
     command,

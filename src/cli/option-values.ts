@@ -34,13 +34,13 @@ export function quantityOf(text: string, option: string, quantity: (typeof UNITS
 }
 
 /** What `--refine` asks for. */
-export type RefineOption = { readonly word: 'none' | 'quick' | 'thorough' } | { readonly seconds: number };
+export type RefineOption = { readonly word: 'none' | 'quick' | 'thorough' | 'annealed' } | { readonly seconds: number };
 
 export function refineOf(text: string): RefineOption {
-  if (text === 'none' || text === 'quick' || text === 'thorough') return { word: text };
+  if (text === 'none' || text === 'quick' || text === 'thorough' || text === 'annealed') return { word: text };
   const seconds = /^\d+(\.\d+)?s$/.test(text) ? Number(text.slice(0, -1)) : Number.NaN;
   if (seconds > 0) return { seconds };
-  const wanted = 'expected none, quick, thorough, or seconds such as 20s';
+  const wanted = 'expected none, quick, thorough, annealed, or seconds such as 20s';
   throw inputError('bad-value', '--refine', `got ${JSON.stringify(text)}, ${wanted}`);
 }
 

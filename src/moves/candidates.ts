@@ -1,8 +1,8 @@
 import { squaredDistanceToSegment } from '../core/segments.ts';
 import { fermatPoint } from '../physics/fermat.ts';
-import { flowWeight } from '../physics/murray.ts';
 import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
+import type { PerLength } from './per-length.ts';
 import type { Potential } from './potential.ts';
 import { span } from './span.ts';
 
@@ -22,9 +22,11 @@ export class Candidates {
   private readonly builder: ForestBuilder;
   private readonly room: Room;
   private readonly potential: Potential;
+  private readonly perLength: PerLength;
   private readonly point = new Float64Array(3);
 
-  constructor(builder: ForestBuilder, room: Room, potential: Potential) {
+  constructor(builder: ForestBuilder, room: Room, potential: Potential, perLength: PerLength) {
+    this.perLength = perLength;
     this.builder = builder;
     this.room = room;
     this.potential = potential;
@@ -109,9 +111,10 @@ export class Candidates {
     const p = builder.position;
     const parent = builder.parent[row]!;
     const load = builder.load[row]!;
-    const below = flowWeight(load);
-    const above = flowWeight(load + share);
-    const own = flowWeight(share);
+    const tree = builder.tree[row]!;
+    const below = this.perLength(load, tree);
+    const above = this.perLength(load + share, tree);
+    const own = this.perLength(share, tree);
     const ax = p[3 * parent]!;
     const ay = p[3 * parent + 1]!;
     const az = p[3 * parent + 2]!;

@@ -1,8 +1,8 @@
 import { fermatPoint } from '../physics/fermat.ts';
-import { flowWeight } from '../physics/murray.ts';
 import { FIT_MARGIN, RUN_OUT, separationReach } from '../room/reach.ts';
 import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
+import type { PerLength } from './per-length.ts';
 import type { Preview } from './preview.ts';
 import { span } from './span.ts';
 
@@ -39,9 +39,11 @@ export class JunctionPlaces {
   private readonly builder: ForestBuilder;
   private readonly room: Room;
   private readonly preview: Preview;
+  private readonly perLength: PerLength;
   private readonly point = new Float64Array(3);
 
-  constructor(builder: ForestBuilder, room: Room, preview: Preview) {
+  constructor(builder: ForestBuilder, room: Room, preview: Preview, perLength: PerLength) {
+    this.perLength = perLength;
     this.builder = builder;
     this.room = room;
     this.preview = preview;
@@ -61,6 +63,7 @@ export class JunctionPlaces {
     const p = builder.position;
     const parent = builder.parent[row]!;
     const load = builder.load[row]!;
+    const tree = builder.tree[row]!;
     const grown = shrink * builder.radius(row);
     this.below = grown;
     this.above = grown * this.rootOf((load + share) / load);
@@ -75,7 +78,21 @@ export class JunctionPlaces {
     // As the tube runs today; how it will run is looked at once the junction has a place.
     this.ballA = Math.max(preview.ballWith(parent, row, bx, by, bz, this.above), this.above);
     this.ballB = Math.max(preview.ballWith(row, parent, ax, ay, az, grown), grown);
-    fermatPoint(ax, ay, az, bx, by, bz, x, y, z, flowWeight(load + share), flowWeight(load), flowWeight(share), point);
+    fermatPoint(
+      ax,
+      ay,
+      az,
+      bx,
+      by,
+      bz,
+      x,
+      y,
+      z,
+      this.perLength(load + share, tree),
+      this.perLength(load, tree),
+      this.perLength(share, tree),
+      point,
+    );
     let count = 0;
     const jx = point[0]!;
     const jy = point[1]!;

@@ -1,6 +1,6 @@
 import { type Memory, ownMemory } from '../core/memory.ts';
-import { flowWeight } from '../physics/murray.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
+import { leastPowerPerLength, type PerLength } from './per-length.ts';
 import { span } from './span.ts';
 
 /*
@@ -24,10 +24,12 @@ export class Potential {
   values: Float64Array;
   private readonly builder: ForestBuilder;
   private readonly memory: Memory;
+  private readonly perLength: PerLength;
   private usual = 1;
 
-  constructor(builder: ForestBuilder, memory: Memory = ownMemory) {
+  constructor(builder: ForestBuilder, memory: Memory = ownMemory, perLength: PerLength = leastPowerPerLength) {
     this.builder = builder;
+    this.perLength = perLength;
     this.memory = memory;
     this.values = new Float64Array(memory(8 * builder.capacity));
   }
@@ -59,7 +61,7 @@ export class Potential {
       p[3 * row + 1]! - p[3 * above + 1]!,
       p[3 * row + 2]! - p[3 * above + 2]!,
     );
-    this.values[row] = this.values[above]! + length * this.rise(this.builder.load[row]!);
+    this.values[row] = this.values[above]! + length * this.rise(this.builder.load[row]!, this.builder.tree[row]!);
   }
 
   /** Makes room for every row that the builder has room for. */
@@ -71,7 +73,7 @@ export class Potential {
   }
 
   /** Cost per length and share of one more usual terminal on a tube. */
-  private rise(load: number): number {
-    return (flowWeight(load + this.usual) - flowWeight(load)) / this.usual;
+  private rise(load: number, tree: number): number {
+    return (this.perLength(load + this.usual, tree) - this.perLength(load, tree)) / this.usual;
   }
 }

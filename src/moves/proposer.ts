@@ -3,6 +3,7 @@ import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 import { Candidates } from './candidates.ts';
 import { JunctionPlaces } from './junction-places.ts';
+import { leastPowerPerLength, type PerLength } from './per-length.ts';
 import type { Potential } from './potential.ts';
 import { LENIENT, Preview } from './preview.ts';
 import { span } from './span.ts';
@@ -44,13 +45,19 @@ export class Proposer {
   /** How often each step was taken; for lab notes and benches. */
   readonly tally = { sites: 0, taken: 0, candidates: 0, places: 0 };
 
-  constructor(builder: ForestBuilder, room: Room, potential: Potential, options: ProposeOptions) {
+  constructor(
+    builder: ForestBuilder,
+    room: Room,
+    potential: Potential,
+    options: ProposeOptions,
+    perLength: PerLength = leastPowerPerLength,
+  ) {
     this.builder = builder;
     this.room = room;
     this.options = options;
     this.preview = new Preview(builder, room);
-    this.candidates = new Candidates(builder, room, potential);
-    this.places = new JunctionPlaces(builder, room, this.preview);
+    this.candidates = new Candidates(builder, room, potential, perLength);
+    this.places = new JunctionPlaces(builder, room, this.preview, perLength);
     this.places.slack = options.slack;
   }
 

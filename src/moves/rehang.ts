@@ -1,12 +1,12 @@
-import { flowWeight } from '../physics/murray.ts';
 import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
+import { leastPowerPerLength, type PerLength } from './per-length.ts';
 import type { Potential } from './potential.ts';
 import { MOST_PROPOSED, Proposer } from './proposer.ts';
 import { Trial } from './trial.ts';
 
 /*
- * Notation: G above J above S, the top of the subtree, and B, its sibling; q the subtree's share; f(Q) = Q^(2/3).
+ * Notation: G above J above S, the top of the subtree, and B, its sibling; q the subtree's share; f(Q) cost per length.
  * Cut: G→J, J→B and J→S go, G→B comes, every tube above G carries q less. Hung on P→C at a junction J′: P→C goes, P→J′,
  * J′→C and J′→S come, every tube above P carries q more. Both sums are exact; the potential only picks what to try.
  */
@@ -25,18 +25,20 @@ export class Rehanger {
   private readonly trial: Trial;
   private readonly lowered: Trial;
   private readonly potential: Potential;
+  private readonly perLength: PerLength;
 
-  constructor(builder: ForestBuilder, room: Room, potential: Potential, first = 16) {
+  constructor(builder: ForestBuilder, room: Room, potential: Potential, perLength: PerLength = leastPowerPerLength) {
+    this.perLength = perLength;
     this.builder = builder;
     this.room = room;
     this.potential = potential;
-    this.proposer = new Proposer(builder, room, potential, {
-      first,
-      second: 0,
-      keep: MOST_PROPOSED,
-      slimmest: 0,
-      slack: 1.01,
-    });
+    this.proposer = new Proposer(
+      builder,
+      room,
+      potential,
+      { first: 16, second: 0, keep: MOST_PROPOSED, slimmest: 0, slack: 1.01 },
+      perLength,
+    );
     this.trial = new Trial(builder, room, 1);
     this.lowered = new Trial(builder, room, 1);
   }
@@ -46,7 +48,7 @@ export class Rehanger {
    *
    * @param least share of what the cut saves below which a gain is not worth the change, ≥ 0
    * @param spare cost that the change may add instead of saving, ≥ 0, for annealing; 0: only gains
-   * @returns     what was saved, in Σ Q^(2/3) L of shares; 0 where the forest is as before
+   * @returns     what was saved, in the unit of `perLength`; less than 0 where `spare` was spent; 0 where the forest is as before
    */
   rehang(top: number, least: number, spare = 0): number {
     const { builder, room } = this;
@@ -58,11 +60,13 @@ export class Rehanger {
     const sibling = builder.child[2 * junction + (wasFirst ? 1 : 0)]!;
     const share = builder.load[top]!;
     const weight = builder.weight[top]!;
-    const own = flowWeight(share);
-    const f = flowWeight(builder.load[sibling]!);
+    const tree = builder.tree[top]!;
+    const { perLength } = this;
+    const own = perLength(share, tree);
+    const f = perLength(builder.load[sibling]!, tree);
     // The least that any place could cost is nothing: what is saved bounds what is worth a look.
     const saved =
-      flowWeight(builder.load[junction]!) * this.length(junction) +
+      perLength(builder.load[junction]!, tree) * this.length(junction) +
       own * this.length(top) +
       f * (this.length(sibling) - this.distance(above, sibling)) +
       this.wayUp(above, -share);
@@ -99,6 +103,8 @@ export class Rehanger {
     const order: number[] = [];
     for (let k = 0; k < count; k++) {
       gains[k] = saved - this.costAt(proposer.row[k]!, k, top, share);
+      // To hang where it was is no change; it is in the way only of one that may cost something.
+      if (least < 0 && proposer.row[k] === sibling) continue;
       if (gains[k]! > least && gains[k] !== 0) order.push(k);
     }
     order.sort((a, b) => gains[b]! - gains[a]! || a - b);
@@ -163,8 +169,9 @@ export class Rehanger {
 
   /** What hanging on a tube costs, given that the subtree is cut. */
   private costAt(row: number, k: number, top: number, share: number): number {
-    const { builder, proposer } = this;
+    const { builder, proposer, perLength } = this;
     const p = builder.position;
+    const tree = builder.tree[row]!;
     const { at } = proposer;
     const jx = at[3 * k]!;
     const jy = at[3 * k + 1]!;
@@ -178,20 +185,21 @@ export class Rehanger {
     const parent = builder.parent[row]!;
     const load = builder.load[row]!;
     return (
-      flowWeight(load + share) * to(parent) +
-      flowWeight(load) * (to(row) - this.distance(parent, row)) +
-      flowWeight(share) * to(top) +
+      perLength(load + share, tree) * to(parent) +
+      perLength(load, tree) * (to(row) - this.distance(parent, row)) +
+      perLength(share, tree) * to(top) +
       this.wayUp(parent, share)
     );
   }
 
   /** Change of cost of the tubes from a row to the root when they carry `share` more; for less, what is saved. */
   private wayUp(row: number, share: number): number {
-    const { builder } = this;
+    const { builder, perLength } = this;
+    const tree = builder.tree[row]!;
     let sum = 0;
     for (let at = row; builder.parent[at]! >= 0; at = builder.parent[at]!) {
       const load = builder.load[at]!;
-      sum += (flowWeight(load + share) - flowWeight(load)) * this.length(at);
+      sum += (perLength(load + share, tree) - perLength(load, tree)) * this.length(at);
     }
     return share < 0 ? -sum : sum;
   }

@@ -1,3 +1,5 @@
+import type { PerLength } from '../moves/per-length.ts';
+import { rootOf } from '../physics/junction.ts';
 import { flowWeight, leastPowerCostFactor } from '../physics/murray.ts';
 import type { Spec } from '../spec/types.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
@@ -22,9 +24,52 @@ export function tubeWeights(builder: ForestBuilder, spec: Spec): Float64Array {
       weight[row] = factor * flowWeight(flow);
       continue;
     }
-    const radius = builder.radius(row);
-    const square = radius * radius;
-    weight[row] = (8 * viscosity * flow * flow) / (Math.PI * square * square) + maintenance * Math.PI * square;
+    weight[row] = powerPerLength(flow, builder.radius(row), viscosity, maintenance);
   }
   return weight;
+}
+
+/**
+ * Power per length (W/m) as a function of load, for moves that change flows. Exact where a tube's radius follows from
+ * its flow alone; where it follows from the whole tree (`pressure-matched`) radii are taken as if it did, and who uses it
+ * must look at the true cost afterwards.
+ */
+export function powerOfLoad(builder: ForestBuilder, spec: Spec): PerLength {
+  const viscosity = spec.blood.viscosity.value;
+  const { maintenance } = spec.blood;
+  const { exponent } = builder;
+  const wholes = builder.roots.map((root) => builder.load[builder.child[2 * root]!] ?? 0);
+  const flows = spec.trees.map((tree) => tree.inlet.flow);
+  if (spec.sizing.rule === 'least-power') {
+    const factor = leastPowerCostFactor(viscosity, maintenance);
+    const scale = flows.map((flow, t) => factor * flowWeight(flow / wholes[t]!));
+    return (load, tree) => scale[tree]! * flowWeight(load);
+  }
+  const first = builder.inletRadius.map((radius, t) => powerPerLength(flows[t]!, radius, viscosity, maintenance));
+  if (exponent === 3) return (load, tree) => first[tree]! * flowWeight(load / wholes[tree]!);
+  return (load, tree) => {
+    const part = load / wholes[tree]!;
+    const radius = builder.inletRadius[tree]! * rootOf(part, exponent);
+    return powerPerLength(flows[tree]! * part, radius, viscosity, maintenance);
+  };
+}
+
+/** W; Σ w L over all tubes. */
+export function costOf(builder: ForestBuilder, weight: Float64Array): number {
+  let sum = 0;
+  const p = builder.position;
+  for (let row = 0; row < builder.count; row++) {
+    const parent = builder.parent[row]!;
+    if (parent < 0) continue;
+    const dx = p[3 * row]! - p[3 * parent]!;
+    const dy = p[3 * row + 1]! - p[3 * parent + 1]!;
+    const dz = p[3 * row + 2]! - p[3 * parent + 2]!;
+    sum += weight[row]! * Math.sqrt(dx * dx + dy * dy + dz * dz);
+  }
+  return sum;
+}
+
+function powerPerLength(flow: number, radius: number, viscosity: number, maintenance: number): number {
+  const square = radius * radius;
+  return (8 * viscosity * flow * flow) / (Math.PI * square * square) + maintenance * Math.PI * square;
 }

@@ -101,7 +101,7 @@ export const JUNCTION_FIELDS = {
 } as const;
 
 const refineError = ({ input }: { readonly input?: unknown }) =>
-  `got ${describeValue(input)}, expected "none", "quick", "thorough" or a whole number of sweeps from 0 to 10000`;
+  `got ${describeValue(input)}, expected "none", "quick", "thorough", "annealed" or a whole number of steps from 0 to 10000`;
 const seedError = ({ input }: { readonly input?: unknown }) =>
   `got ${describeValue(input)}, expected a number, or one line of 1 to 200 characters`;
 const formatError = ({ input }: { readonly input?: unknown }) =>
@@ -162,11 +162,13 @@ export const SPEC_FIELDS = {
   }),
   refine: value(
     z
-      .union([z.enum(['none', 'quick', 'thorough'], { error: refineError }), whole(0, 10_000)], { error: refineError })
+      .union([z.enum(['none', 'quick', 'thorough', 'annealed'], { error: refineError }), whole(0, 10_000)], {
+        error: refineError,
+      })
       .default('quick'),
     {
-      doc: 'How hard the grown tree is improved: a word, or a number of sweeps.',
-      range: '"none", "quick", "thorough" or 0 to 10000',
+      doc: 'How hard the grown tree is improved: a word, or a number of steps of "thorough".',
+      range: '"none", "quick", "thorough", "annealed" or 0 to 10000',
       fallback: '"quick"',
     },
   ),

@@ -73,7 +73,7 @@ export type SizingSpec =
   | { readonly rule: 'pressure-matched'; readonly exponent: number };
 
 /** `none`, `quick`, `thorough`, or a number of sweeps (what a budget in seconds came to, so that it can be repeated). */
-export type RefineSpec = 'none' | 'quick' | 'thorough' | number;
+export type RefineSpec = 'none' | 'quick' | 'thorough' | 'annealed' | number;
 
 /** A spec with every default filled in, in SI. */
 export interface Spec {
