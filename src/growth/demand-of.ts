@@ -4,9 +4,9 @@ import { fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
 import type { Spec, TreeSpec } from '../spec/types.ts';
 import { createSites } from '../tissue/sites.ts';
 import { spacedSites } from '../tissue/spaced-sites.ts';
-import { measureTerritories } from '../tissue/territories.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { Demand } from './demand.ts';
+import { ForeseenSites, sharesOf } from './foreseen-sites.ts';
 import { farthestFirst } from './point-order.ts';
 
 /**
@@ -34,32 +34,21 @@ export function demandOf(
   };
   if (terminals.by === 'count') {
     const wanted = Math.min(terminals.count, most);
-    return new Demand(
-      'count',
-      wanted,
-      createSites(tissue, random),
-      null,
-      null,
-      1.05 * radiusOf(terminals.count),
-      byTerritory,
-    );
+    const even = createSites(tissue, random);
+    const sites = byTerritory ? new ForeseenSites(tissue, even, wanted) : even;
+    return new Demand('count', wanted, sites, null, null, 1.05 * radiusOf(terminals.count), byTerritory);
   }
   if (terminals.by === 'spacing') {
     const count = Math.max(1, tissue.perfusion.whole / (terminals.spacing * terminals.spacing * terminals.spacing));
     const sites = spacedSites(tissue, random, terminals.spacing, 1.05 * radiusOf(count));
-    return new Demand('spacing', Math.min(sites.length / 3, most), null, sites, null, 0, byTerritory);
+    const share = byTerritory ? sharesOf(tissue, sites) : null;
+    return new Demand('spacing', Math.min(sites.length / 3, most), null, sites, share, 0, byTerritory);
   }
   const order = farthestFirst(tree, salt === 0 ? null : randomStream(spec.seed, `points ${index} ${salt}`), first);
   const list = new Float64Array(3 * order.length);
   order.forEach((k, i) => {
     list.set(terminals.points[k]!, 3 * i);
   });
-  const share = byTerritory ? overMean(measureTerritories(tissue, list)) : order.map((k) => terminals.share[k]!);
+  const share = byTerritory ? sharesOf(tissue, list) : order.map((k) => terminals.share[k]!);
   return new Demand('points', Math.min(order.length, most), null, list, share, 0, byTerritory);
-}
-
-/** Territories over their mean: what shares come to where all points are served. */
-function overMean(territory: Float64Array): number[] {
-  const mean = territory.reduce((sum, one) => sum + one, 0) / territory.length;
-  return Array.from(territory, (one) => one / mean);
 }

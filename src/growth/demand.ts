@@ -7,6 +7,8 @@ export interface SiteStream {
   readonly x: number;
   readonly y: number;
   readonly z: number;
+  /** Flow share of the site; 1 where left out. */
+  readonly share?: number;
 }
 
 /** Tries a site gets before it counts as unreachable. */
@@ -64,7 +66,7 @@ export class Demand {
     wanted: number,
     stream: SiteStream | null,
     list: ArrayLike<number> | null,
-    share: readonly number[] | null,
+    share: ArrayLike<number> | null,
     minDepth: number,
     byTerritory = false,
   ) {
@@ -89,7 +91,7 @@ export class Demand {
       if (this.fresh < this.x.length) return this.take(this.fresh++);
     } else if (this.hasPlaces() && this.stream.next(this.minDepth)) {
       this.places++;
-      return this.take(this.addSite(this.stream.x, this.stream.y, this.stream.z, 1));
+      return this.take(this.addSite(this.stream.x, this.stream.y, this.stream.z, this.stream.share ?? 1));
     }
     if (this.waiting.length > 0) return this.take(this.waiting.shift()!);
     return false;
