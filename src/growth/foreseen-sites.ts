@@ -5,8 +5,10 @@ import type { SiteStream } from './demand.ts';
 /**
  * A stream of sites of which the first so many come with the share their territory would have if just they were served.
  *
- * Hung with these, terminals are near their final radii from the start; where all hang with equal shares and get their own
- * at the end, a tenth of 20,000 terminals at 6.7 % vessel volume no longer fitted, and growth did not come to rest.
+ * Hung with these, terminals are near their final radii from the start. Lab notes, on 20,000 terminals at 6.5 % vessel
+ * volume where a ball demands six times as much: with equal shares until the end a tenth of them no longer fitted, and growth
+ * did not come to rest in ten minutes; with foreseen shares it did after 15 rounds; with shares measured anew at each
+ * doubling too, so that branches carry what they will, in 7 s (10,000: evicted at the end 92, not 652).
  * Sites that stand in for others have a share of 1.
  */
 export class ForeseenSites implements SiteStream {

@@ -33,6 +33,8 @@ const PLACE_SLACK = 1.2;
 const KEEP = 4;
 /** Growth between two sizings of trees whose radii depend on all their lengths. */
 const RESIZE = 1.15;
+/** Growth between two measurings of territories, where they share the flow: branches then carry what they will. */
+const SHARE = 2;
 /** Growth between two sweeps that move nodes to their best places. */
 const RELAX = 1.15;
 /** Radii over today's that a moved node leaves room for, so that the tubes at it can still gain flow. */
@@ -94,6 +96,7 @@ export class Grower {
   private relaxed = 0;
   private nextRefresh = 2;
   private nextResize = 2;
+  private nextShare = 64;
 
   /**
    * @param demands one a tree of the spec, in its order
@@ -248,8 +251,8 @@ export class Grower {
   }
 
   /** Sets a tree's shares by the territories of its terminals, where that is asked. */
-  shareByTerritory(t: number): void {
-    shareByTerritory(this.builder, t, this.tissue, this.trees[t]!.demand, (row) => this.siteOf[row]!);
+  shareByTerritory(t: number): boolean {
+    return shareByTerritory(this.builder, t, this.tissue, this.trees[t]!.demand, (row) => this.siteOf[row]!);
   }
 
   /** Takes sites in hand, from the tree that has served the least part of its demand first. */
@@ -365,9 +368,13 @@ export class Grower {
     let changed = false;
     const due = served >= this.nextResize;
     if (due) this.nextResize = Math.max(served + 1, Math.ceil(served * RESIZE));
+    const share = served >= this.nextShare;
+    if (share) this.nextShare = SHARE * served;
     for (let t = 0; t < this.trees.length; t++) {
       if (this.trees[t]!.demand.served === 0) continue;
-      if (due && this.trees[t]!.resized) {
+      const shared = share && this.shareByTerritory(t);
+      changed ||= shared;
+      if ((due || shared) && this.trees[t]!.resized) {
         this.resize(t, false);
         changed = true;
       }
