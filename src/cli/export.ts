@@ -51,9 +51,9 @@ function exportTree(path: string, options: ExportArguments, talk: Talk): number 
   }
   for (const file of files) refuseRunFile(file);
   if (files.some((file) => existsSync(file))) refuseOther(format, files);
-  const encoded = format.encode(tree.record).map(({ suffix, bytes }, k) => ({
-    path: files[k] ?? stem + suffix,
-    content: bytes,
+  const encoded = format.encode(tree.record).map((file, k) => ({
+    path: files[k] ?? stem + file.suffix,
+    content: file.pieces ?? file.bytes,
   }));
   writeFiles(encoded, talk.writing('--to'));
   talk.say(`written: ${encoded.map((file) => file.path).join(', ')}`);

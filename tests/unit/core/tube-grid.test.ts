@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { randomStream } from '../../../src/core/random.ts';
+import { type Random, randomStream } from '../../../src/core/random.ts';
 import { squaredDistanceBetweenSegments, squaredDistanceToSegment } from '../../../src/core/segments.ts';
 import { TubeGrid } from '../../../src/core/tube-grid.ts';
 
@@ -47,39 +47,118 @@ describe('segment distances', () => {
   });
 });
 
+/** A grid of many tubes, and the tubes: some wholly or partly outside the box, some fat, some pointlike. */
+function fill(grid: TubeGrid, random: Random, from: number, count: number): { tubes: Segment[]; radii: number[] } {
+  const tubes: Segment[] = [];
+  const radii: number[] = [];
+  for (let i = 0; i < count; i++) {
+    const draw = () => 1.4 * random.next() - 0.2;
+    const a = [draw(), draw(), draw()] as const;
+    const far = random.next() < 0.2 ? 0 : 0.6 * random.next();
+    const b = a.map((x) => x + far * (2 * random.next() - 1)) as unknown as [number, number, number];
+    tubes.push([...a, ...b]);
+    radii.push(random.next() < 0.1 ? 0.2 : 0.02 * random.next());
+    grid.add(from + i, ...a, ...b, radii[i]!);
+  }
+  return { tubes, radii };
+}
+
+/** Segments to ask about, each with a reach. */
+function queries(random: Random, count: number): { at: Segment; reach: number }[] {
+  return Array.from({ length: count }, () => {
+    const draw = () => 1.2 * random.next() - 0.1;
+    return { at: [draw(), draw(), draw(), draw(), draw(), draw()] as Segment, reach: 0.1 * random.next() };
+  });
+}
+
+function found(grid: TubeGrid, { at, reach }: { at: Segment; reach: number }): number[] {
+  const count = grid.gather(...at, reach);
+  return Array.from(grid.found.subarray(0, count));
+}
+const sorted = (rows: readonly number[]) => [...rows].sort((a, b) => a - b);
+
 describe('tube grid', () => {
   it('finds every tube that comes within reach, wherever it was listed', () => {
     const random = randomStream('grid', 'test');
     for (const cell of [0.05, 0.13, 0.4]) {
       const grid = new TubeGrid([0, 0, 0], [1, 1, 1], cell);
-      const tubes: Segment[] = [];
-      const radii: number[] = [];
-      for (let i = 0; i < 150; i++) {
-        // Some lie partly or wholly outside the box, some are fat, some pointlike.
-        const draw = () => 1.4 * random.next() - 0.2;
-        const a = [draw(), draw(), draw()] as const;
-        const far = random.next() < 0.2 ? 0 : 0.6 * random.next();
-        const b = a.map((x) => x + far * (2 * random.next() - 1)) as unknown as [number, number, number];
-        tubes.push([...a, ...b]);
-        radii.push(random.next() < 0.1 ? 0.2 : 0.02 * random.next());
-        grid.add(i, ...a, ...b, radii[i]!);
-      }
+      const { tubes, radii } = fill(grid, random, 0, 150);
       let met = 0;
-      for (let q = 0; q < 200; q++) {
-        const draw = () => 1.2 * random.next() - 0.1;
-        const query: Segment = [draw(), draw(), draw(), draw(), draw(), draw()];
-        const reach = 0.1 * random.next();
-        const count = grid.gather(...query, reach);
-        const found = new Set(grid.found.subarray(0, count));
-        expect(found.size).toBe(count);
+      queries(random, 200).forEach((query, q) => {
+        const rows = found(grid, query);
+        const known = new Set(rows);
+        expect(known.size).toBe(rows.length);
         for (let i = 0; i < tubes.length; i++) {
-          const distance = Math.sqrt(squaredDistanceBetweenSegments(...query, ...tubes[i]!));
-          if (distance > reach + radii[i]!) continue;
+          const distance = Math.sqrt(squaredDistanceBetweenSegments(...query.at, ...tubes[i]!));
+          if (distance > query.reach + radii[i]!) continue;
           met++;
-          expect(found.has(i), `cell ${cell}, query ${q}, tube ${i}`).toBe(true);
+          expect(known.has(i), `cell ${cell}, query ${q}, tube ${i}`).toBe(true);
         }
-      }
+      });
       expect(met).toBeGreaterThan(500);
     }
+  });
+
+  it('finds the same rows packed as loose, and what is added afterwards too, however often it is packed', () => {
+    const random = randomStream('grid', 'packed');
+    const loose = new TubeGrid([0, 0, 0], [1, 1, 1], 0.13);
+    const packed = new TubeGrid([0, 0, 0], [1, 1, 1], 0.13);
+    const asked = queries(random, 100);
+    let from = 0;
+    for (const stage of ['empty', 'first', 'second', 'third']) {
+      const before = asked.map((query) => found(packed, query));
+      packed.pack();
+      // Within each cell the order is kept, so that who looks at a packed grid sees what others see in a loose one.
+      const after = asked.map((query) => found(packed, query));
+      expect(after, stage).toEqual(before);
+      expect(after.map(sorted)).toEqual(asked.map((query) => sorted(found(loose, query))));
+      // The same tubes into both; the packed one holds older ones in its other columns.
+      const seed = `tubes ${stage}`;
+      fill(packed, randomStream(seed, 'x'), from, 60);
+      fill(loose, randomStream(seed, 'x'), from, 60);
+      from += 60;
+      expect(asked.map((query) => sorted(found(packed, query)))).toEqual(
+        asked.map((query) => sorted(found(loose, query))),
+      );
+    }
+    expect(asked.reduce((sum, query) => sum + found(packed, query).length, 0)).toBeGreaterThan(2000);
+  });
+
+  it('lists a row again after it has moved: found at both places, once a look', () => {
+    const grid = new TubeGrid([0, 0, 0], [1, 1, 1], 0.1);
+    grid.add(7, 0.1, 0.1, 0.1, 0.15, 0.1, 0.1, 0.01);
+    grid.pack();
+    grid.add(7, 0.9, 0.9, 0.9, 0.85, 0.9, 0.9, 0.01);
+    const near = (x: number) => found(grid, { at: [x, x, x, x, x, x], reach: 0.02 });
+    expect([near(0.1), near(0.9), near(0.5)]).toEqual([[7], [7], []]);
+    expect(found(grid, { at: [0, 0, 0, 1, 1, 1], reach: 0.2 })).toEqual([7]);
+  });
+
+  it('answers another grid that reads its columns as itself, before and after rows and cells have changed', () => {
+    const random = randomStream('grid', 'view');
+    const reader = new TubeGrid([0, 0, 0], [1, 1, 1], Number.MAX_VALUE);
+    const asked = queries(random, 60);
+    let rows = 0;
+    for (const [cell, count] of [
+      [0.3, 40],
+      [0.07, 900],
+      [0.2, 30],
+      [0.11, 3000],
+    ] as const) {
+      const grid = new TubeGrid([-0.1, 0, 0.05], [1, 1.1, 0.9], cell);
+      fill(grid, random, 0, count);
+      reader.adopt(grid.view());
+      expect(reader.cell).toBe(grid.cell);
+      for (const query of asked) expect(found(reader, query)).toEqual(found(grid, query));
+      grid.pack();
+      fill(grid, random, count, 20);
+      reader.adopt(grid.view());
+      for (const query of asked) {
+        const own = found(grid, query);
+        expect(found(reader, query)).toEqual(own);
+        rows += own.length;
+      }
+    }
+    expect(rows).toBeGreaterThan(10_000);
   });
 });
