@@ -1,0 +1,69 @@
+import type { ForestBuilder } from '../../src/tree/builder.ts';
+
+/**
+ * The plain twin of all that moves keep up to date: a forest as it follows from who hangs on whom, where nodes are and
+ * what the terminals draw, each thing computed anew from nothing else.
+ */
+export interface PlainForest {
+  /** Rows of tubes, ascending. */
+  readonly rows: number[];
+  /** (rows of the builder) sums over the terminals at and below. */
+  readonly load: Float64Array;
+  readonly weight: Float64Array;
+  /** m; inlet radius · (weight / weight of the tree's first tube)^(1/γ). */
+  readonly radius: Float64Array;
+  readonly length: Float64Array;
+}
+
+export function plainForest(builder: ForestBuilder): PlainForest {
+  const { parent, child, position: p, exponent } = builder;
+  const n = builder.count;
+  const rows: number[] = [];
+  const load = new Float64Array(n);
+  const weight = new Float64Array(n);
+  const radius = new Float64Array(n);
+  const length = new Float64Array(n);
+  for (let row = 0; row < n; row++) {
+    const above = parent[row]!;
+    if (above < 0) continue;
+    rows.push(row);
+    length[row] = Math.hypot(
+      p[3 * row]! - p[3 * above]!,
+      p[3 * row + 1]! - p[3 * above + 1]!,
+      p[3 * row + 2]! - p[3 * above + 2]!,
+    );
+    if (child[2 * row]! >= 0) continue;
+    for (let at = row; at >= 0; at = parent[at]!) {
+      load[at]! += builder.load[row]!;
+      weight[at]! += builder.weight[row]!;
+    }
+  }
+  for (const row of rows) {
+    const tree = builder.tree[row]!;
+    const whole = weight[builder.roots[tree]!]!;
+    radius[row] = builder.inletRadius[tree]! * Math.exp(Math.log(weight[row]! / whole) / exponent);
+  }
+  return { rows, load, weight, radius, length };
+}
+
+/** Σ f(load) · length over all tubes of all trees. */
+export function plainForestCost(builder: ForestBuilder, perLength: (load: number, tree: number) => number): number {
+  const { rows, load, length } = plainForest(builder);
+  let cost = 0;
+  for (const row of rows) cost += perLength(load[row]!, builder.tree[row]!) * length[row]!;
+  return cost;
+}
+
+/** Every column of the rows in use, and which rows are not, to compare with `toEqual`. */
+export function columnsOf(builder: ForestBuilder) {
+  const { count, parent, child, tree, position, load, weight } = builder;
+  let end = count;
+  // Rows at the end that were taken and given back count for nothing.
+  while (end > 0 && parent[end - 1] === -2) end--;
+  const used = (k: number) => parent[k]! !== -2;
+  return Array.from({ length: end }, (_, k) =>
+    used(k)
+      ? [parent[k], child[2 * k], child[2 * k + 1], tree[k], ...position.slice(3 * k, 3 * k + 3), load[k], weight[k]]
+      : null,
+  );
+}
