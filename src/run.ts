@@ -9,6 +9,7 @@ import type { GrowthOptions } from './growth/crew.ts';
 import { freezeWithTerritories } from './growth/freeze.ts';
 import { type Growth, growForest } from './growth/grow.ts';
 import type { Stopped } from './growth/grower.ts';
+import { saveGrown } from './growth/snapshot.ts';
 import { type Budget, type RefineResult, refineForest } from './refine/refine.ts';
 import type { Spec, TreeSpec } from './spec/types.ts';
 import { specToJson } from './spec/write.ts';
@@ -145,6 +146,12 @@ function refineGrowth(growth: Growth, spec: Spec, options: GrowOptions): RefineR
     budget: timed ? { kind: 'steps', steps: MOST_STEPS } : budgetOf(spec),
     onProgress: options.onProgress,
     signal: options.signal,
+    onMoment: (save) =>
+      options.onMoment?.((out) => {
+        saveGrown(out, growth.grower, growth, growth.stopped);
+        save(out.within('refiner'));
+      }),
+    resume: growth.restored ? options.resume?.within('refiner') : undefined,
     enough: (_, cost) => {
       options.onCost?.('refine', cost);
       return options.refineEnough?.() ?? false;
@@ -165,20 +172,22 @@ function budgetOf(spec: Spec): Budget {
 function growBest(spec: Spec, tissue: Tissue, options: GrowOptions): { growth: Growth; refine: RefineResult | null } {
   const points = spec.trees.map((tree) => (tree.terminals.by === 'points' ? tree.terminals.points.length : 0));
   const few = !points.includes(0) && points.reduce((a, b) => a + b, 0) <= FEW_POINTS;
-  let growth = growForest(spec, tissue, options);
-  if (!points.some((count) => count > 0)) return { growth, refine: null };
+  // What is tried and compared is not saved: these growths are begun again, from the first one where that is large.
+  const unsaved: GrowOptions = { ...options, onMoment: undefined, resume: undefined };
+  let growth = growForest(spec, tissue, few ? { ...options, onMoment: undefined } : options);
+  if (growth.restored || !points.some((count) => count > 0)) return { growth, refine: null };
   for (let again = 0; again < SECOND_TRIES && growth.stopped === 'no-room'; again++) {
-    const next = growForest(spec, tissue, options, 0, leftOut(growth, spec));
+    const next = growForest(spec, tissue, unsaved, 0, leftOut(growth, spec));
     if (next.grower.served > growth.grower.served) growth = next;
   }
   if (!few || growth.stopped === 'cancelled') return { growth, refine: null };
   // A time or a number of sweeps is for the tree that is kept; the choice itself must come out the same again.
   const counted = options.refineEnough !== undefined || typeof spec.refine === 'number';
   const trial: Spec = counted ? { ...spec, refine: 'quick' } : spec;
-  const trialOptions: GrowOptions = { ...options, refineEnough: undefined };
+  const trialOptions: GrowOptions = { ...unsaved, refineEnough: undefined };
   let refine = refineGrowth(growth, trial, trialOptions);
   for (let salt = 1; salt < ORDERS; salt++) {
-    const next = growForest(spec, tissue, options, salt);
+    const next = growForest(spec, tissue, unsaved, salt);
     if (next.stopped === 'cancelled') break;
     const relaxed = refineGrowth(next, trial, trialOptions);
     const served = next.grower.served - growth.grower.served;

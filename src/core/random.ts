@@ -4,6 +4,10 @@ import seedrandom from 'seedrandom';
 export interface Random {
   /** @returns uniform in [0, 1) */
   next(): number;
+  /** Four numbers from which `resume` goes on. */
+  state(): number[];
+  /** Goes on as the stream whose state this was. */
+  resume(state: ArrayLike<number>): void;
 }
 
 /**
@@ -14,6 +18,15 @@ export interface Random {
  * Source: Alea generator as shipped by seedrandom; the same on every engine (integer and dyadic arithmetic only).
  */
 export function randomStream(seed: string, stream: string): Random {
-  const draw = seedrandom.alea(`${stream}\u0000${seed}`);
-  return { next: () => draw() };
+  let draw = seedrandom.alea(`${stream}\u0000${seed}`, { state: true });
+  return {
+    next: () => draw(),
+    state() {
+      const { c, s0, s1, s2 } = draw.state();
+      return [c, s0, s1, s2];
+    },
+    resume(state) {
+      draw = seedrandom.alea('', { state: { c: state[0]!, s0: state[1]!, s1: state[2]!, s2: state[3]! } });
+    },
+  };
 }

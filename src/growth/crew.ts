@@ -1,5 +1,6 @@
 import type { Memory } from '../core/memory.ts';
 import type { Watch } from '../core/progress.ts';
+import type { StateIn, StateOut } from '../core/state.ts';
 import { Potential } from '../moves/potential.ts';
 import { type ProposeOptions, Proposer } from '../moves/proposer.ts';
 import { Room, type RoomLimits, type RoomView } from '../room/room.ts';
@@ -41,7 +42,16 @@ export interface Crew {
   work(task: ProposalTask, mine: (from: number, end: number) => void): void;
 }
 
+/**
+ * Told at each moment at which the work could be saved, with what saves it; that must be used before this comes back.
+ * Whether it is used never changes the result.
+ */
+export type OnMoment = (save: (out: StateOut) => void) => void;
+
 export interface GrowthOptions extends Watch {
+  readonly onMoment?: OnMoment | undefined;
+  /** What was saved of the same work, to go on from. */
+  readonly resume?: StateIn | undefined;
   /** Threads that look for places together; none: the calling thread alone. The result is the same. */
   readonly crew?: Crew | undefined;
 }

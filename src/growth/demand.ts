@@ -1,3 +1,4 @@
+import type { StateIn, StateOut } from '../core/state.ts';
 import type { TerminalsSpec } from '../spec/types.ts';
 
 /** A stream of well-spread points, as the tissue gives it. */
@@ -9,6 +10,10 @@ export interface SiteStream {
   readonly z: number;
   /** Flow share of the site; 1 where left out. */
   readonly share?: number;
+  /** Saves what `restore` needs beside the places of the sites found. */
+  save(out: StateOut): void;
+  /** Goes on as the stream that was saved; `places` (3n) m, those of the sites it had given. */
+  restore(from: StateIn, places: Float64Array): void;
 }
 
 /** Tries a site gets before it counts as unreachable. */
@@ -164,6 +169,49 @@ export class Demand {
     this.territory = unit;
     this.measured = sites;
     for (let i = 0; i < sites.length; i++) this.shares[sites[i]!] = territory[i]! / unit;
+  }
+
+  /** Saves all that is to be known of the sites and of what was tried. */
+  save(out: StateOut): void {
+    const { served, site, territory, fresh, places, failures } = this;
+    out.list('asked', 'f64', [this.wanted, this.minDepth]);
+    out.list('numbers', 'f64', [served, site, territory, fresh, places, failures]);
+    out.list('waiting', 'i32', this.waiting);
+    out.list('dropped', 'i32', this.dropped);
+    out.list('due', 'i32', this.due);
+    out.list('tries', 'i32', this.tries);
+    out.list('x', 'f64', this.x);
+    out.list('y', 'f64', this.y);
+    out.list('z', 'f64', this.z);
+    out.list('shares', 'f64', this.shares);
+    if (this.measured !== null) out.put('measured', this.measured);
+    this.stream?.save(out.within('stream'));
+  }
+
+  /** Becomes the demand that was saved, which had as many wanted and the same depth. */
+  restore(from: StateIn): void {
+    [this.served, this.site, this.territory, this.fresh, this.places, this.failures] = from.reals(
+      'numbers',
+    ) as unknown as [number, number, number, number, number, number];
+    this.waiting.splice(0);
+    for (const site of from.wholes('waiting')) this.waiting.push(site);
+    this.dropped.splice(0);
+    for (const site of from.wholes('dropped')) this.dropped.push(site);
+    this.due = Array.from(from.wholes('due'));
+    this.tries = Array.from(from.wholes('tries'));
+    this.x = Array.from(from.reals('x'));
+    this.y = Array.from(from.reals('y'));
+    this.z = Array.from(from.reals('z'));
+    this.shares = Array.from(from.reals('shares'));
+    this.measured = from.hasWholes('measured') ? from.wholes('measured') : null;
+    if (this.stream === null) return;
+    const places = new Float64Array(3 * this.x.length);
+    for (let k = 0; k < this.x.length; k++) {
+      places[3 * k] = this.x[k]!;
+      places[3 * k + 1] = this.y[k]!;
+      places[3 * k + 2] = this.z[k]!;
+    }
+    this.stream.restore(from.within('stream'), places);
   }
 
   get siteCount(): number {

@@ -1,3 +1,4 @@
+import type { StateIn, StateOut } from '../core/state.ts';
 import { measureTerritories } from '../tissue/territories.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import type { SiteStream } from './demand.ts';
@@ -46,6 +47,26 @@ export class ForeseenSites implements SiteStream {
     this.z = this.stream.z;
     this.share = 1;
     return true;
+  }
+
+  save(out: StateOut): void {
+    out.list('at', 'i32', [this.points === null ? -1 : this.at]);
+    out.put('points', this.points ?? new Float64Array(0));
+    out.put('shares', this.shares);
+    this.stream.save(out.within('stream'));
+  }
+
+  restore(from: StateIn, places: Float64Array): void {
+    const [at] = from.wholes('at') as unknown as [number];
+    const points = from.reals('points');
+    this.at = Math.max(at, 0);
+    this.points = at < 0 ? null : points;
+    this.shares = from.reals('shares');
+    // What came beyond the foreseen sites was found after them.
+    const found = new Float64Array(Math.max(points.length, places.length));
+    found.set(places);
+    found.set(points);
+    this.stream.restore(from.within('stream'), found);
   }
 
   private foresee(minDepth: number): Float64Array {

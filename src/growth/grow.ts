@@ -5,15 +5,18 @@ import type { GrowthOptions } from './crew.ts';
 import type { Demand } from './demand.ts';
 import { demandOf } from './demand-of.ts';
 import { firstGuess, Grower, SPARE, type Stopped } from './grower.ts';
+import { type Begun, restoreGrowth, withMoments } from './snapshot.ts';
 
 /** Terminals of the small tree that is grown first where radii depend on the tree's lengths; a twentieth if that is more. */
 const REHEARSAL = 200;
 /** Times a tree is grown anew because its first vessel came out wider than planted. */
 const RESTARTS = 6;
 
-export interface Growth {
+export interface Growth extends Begun {
   readonly grower: Grower;
   readonly stopped: Stopped;
+  /** True where it was saved after its end: what was under way is not growth. */
+  readonly restored: boolean;
 }
 
 /**
@@ -31,19 +34,35 @@ export function growForest(
   first: readonly (readonly number[])[] = [],
 ): Growth {
   const unknown = spec.trees.map((tree) => Number.isNaN(fixedInletRadius(spec, tree, 1)));
-  let guess: number[] | null = null;
-  if (unknown.includes(true)) guess = rehearse(spec, tissue, unknown, salt);
-  for (let attempt = 0; ; attempt++) {
-    const demands = spec.trees.map((tree, t) => demandOf(spec, tree, t, tissue, guess, salt, first[t] ?? [], Infinity));
-    const grower = new Grower(spec, tissue, demands, guess, options);
+  let saved = options.resume === undefined ? null : restoreGrowth(spec, tissue, options, options.resume);
+  let guess = saved === null ? null : saved.guess;
+  if (saved === null && unknown.includes(true)) guess = rehearse(spec, tissue, unknown, salt);
+  for (let attempt = saved?.attempt ?? 0; ; attempt++) {
+    const grower: Grower = saved?.grower ?? plantForest(spec, tissue, options, { guess, attempt }, salt, first);
+    const grown = { grower, guess, attempt, restored: false };
+    if (saved !== null && saved.stopped !== null) return { ...grown, stopped: saved.stopped, restored: true };
+    saved = null;
     let stopped = grower.grow();
     if (stopped !== 'cancelled') stopped = grower.finish();
-    if (stopped === 'cancelled' || guess === null || attempt >= RESTARTS) return { grower, stopped };
-    if (!grower.cramped && attempt >= 1) return { grower, stopped };
-    if (!grower.cramped && (stopped === 'complete' || grower.misfits().length === 0)) return { grower, stopped };
-    const needed = grower.foresee(demands.map((demand) => demand.wanted));
+    if (stopped === 'cancelled' || guess === null || attempt >= RESTARTS) return { ...grown, stopped };
+    if (!grower.cramped && attempt >= 1) return { ...grown, stopped };
+    if (!grower.cramped && (stopped === 'complete' || grower.misfits().length === 0)) return { ...grown, stopped };
+    const needed = grower.foresee(grower.trees.map(({ demand }) => demand.wanted));
     guess = guess.map((radius, t) => (unknown[t]! ? Math.max(SPARE * needed[t]!, 1.05 * radius) : radius));
   }
+}
+
+function plantForest(
+  spec: Spec,
+  tissue: Tissue,
+  options: GrowthOptions,
+  begun: Begun,
+  salt: number,
+  first: readonly (readonly number[])[],
+): Grower {
+  const { guess } = begun;
+  const demands = spec.trees.map((tree, t) => demandOf(spec, tree, t, tissue, guess, salt, first[t] ?? [], Infinity));
+  return new Grower(spec, tissue, demands, guess, withMoments(options, begun));
 }
 
 /** Grows small trees to foresee the first vessels' radii. */

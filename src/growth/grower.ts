@@ -1,6 +1,7 @@
 import { inputError } from '../core/errors.ts';
 import { ownMemory } from '../core/memory.ts';
 import type { Watch } from '../core/progress.ts';
+import type { StateIn, StateOut } from '../core/state.ts';
 import { Attacher, type AttachOptions, type TerminalWeight } from '../moves/attach.ts';
 import { NodeMover } from '../moves/move-node.ts';
 import { Rehanger } from '../moves/rehang.ts';
@@ -82,7 +83,7 @@ export class Grower {
   private readonly watch: Watch;
   private readonly wanted: number;
   /** (rows) site of a terminal's row in its tree's demand; −1 elsewhere. */
-  private siteOf = new Int32Array(1024).fill(-1);
+  private siteOf: Int32Array = new Int32Array(1024).fill(-1);
   /** Set when a first vessel needs a wider stub than was planted: the tree must be planted anew. */
   cramped = false;
   /** Vessels that were made to fit by moving a node. */
@@ -97,6 +98,11 @@ export class Grower {
   private nextRefresh = 2;
   private nextResize = 2;
   private nextShare = 64;
+  /** Times that `finish` was begun. */
+  private finishes = 0;
+  /** Set when the forest was saved in the middle of a refresh, which is then to be ended first. */
+  private owesRefresh = false;
+  private readonly onMoment: GrowthOptions['onMoment'];
 
   /**
    * @param demands one a tree of the spec, in its order
@@ -113,6 +119,7 @@ export class Grower {
     this.tissue = tissue;
     this.watch = options;
     this.crew = options.crew ?? null;
+    this.onMoment = options.onMoment;
     const memory = this.crew?.memory ?? ownMemory;
     this.wanted = demands.reduce((sum, demand) => sum + demand.wanted, 0);
     const builder = new ForestBuilder(junctionExponent(spec), Math.max(64, Math.min(4 * this.wanted, 1 << 20)), memory);
@@ -165,6 +172,7 @@ export class Grower {
   /** Serves what is wanted, as far as there is room. */
   grow(stage = 'growth'): Stopped {
     const { batch } = this;
+    if (this.owesRefresh) this.endRefresh();
     for (let told = this.served; ; ) {
       if (this.watch.signal?.aborted) return 'cancelled';
       if (this.cramped) return 'no-room';
@@ -199,6 +207,12 @@ export class Grower {
   finish(): Stopped {
     // What is still out of reach after two calm rounds stays so, for all that a third might find one more.
     let patience = 2;
+    if (!this.cramped) {
+      this.room.rebuild(this.cell());
+      this.refreshPotentials();
+      if (this.finishes === 0) this.onMoment?.((out) => this.save(out));
+    }
+    this.finishes++;
     for (let round = 0; ; round++) {
       if (this.watch.signal?.aborted) return 'cancelled';
       if (this.cramped) return 'no-room';
@@ -300,6 +314,8 @@ export class Grower {
     const { batch } = this;
     const { proposer, potential } = this.attacher;
     potential.follow();
+    // Members of a crew do not see what a transaction that failed has left behind, so nobody may.
+    this.room.begin();
     const { tree, count } = batch;
     // A bare tree has no tube to hang on; its first terminal comes alone.
     if (count === 0 || this.trees[tree[0]!]!.demand.served === 0) return;
@@ -364,7 +380,16 @@ export class Grower {
     if (served >= this.nextRelax) {
       this.nextRelax = RELAX * served;
       this.relax();
+      this.owesRefresh = true;
+      if (this.finishes === 0) this.onMoment?.((out) => this.save(out));
     }
+    this.endRefresh();
+  }
+
+  /** What a refresh does after nodes were moved. */
+  private endRefresh(): void {
+    const served = this.served;
+    this.owesRefresh = false;
     let changed = false;
     const due = served >= this.nextResize;
     if (due) this.nextResize = Math.max(served + 1, Math.ceil(served * RESIZE));
@@ -382,6 +407,10 @@ export class Grower {
     if (changed && this.settleAll(true) > 0) {
       for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.demand.served > 0) this.straightenAll(t);
     }
+    this.refreshPotentials();
+  }
+
+  private refreshPotentials(): void {
     for (let t = 0; t < this.trees.length; t++) {
       const { demand, seedling } = this.trees[t]!;
       if (demand.served === 0) continue;
@@ -399,7 +428,54 @@ export class Grower {
     for (let row = 0; row < builder.count; row++) this.mover.move(row, weight, RELAX_GAIN);
     if (++this.relaxed % 2 === 0) this.rehangCoarse();
     room.slack = 1;
-    room.rebuild(CELL * Math.cbrt(this.tissue.volume / this.served));
+    room.rebuild(this.cell());
+  }
+
+  /** m; edge of a grid cell for as many terminals as there are. */
+  private cell(): number {
+    return CELL * Math.cbrt(this.tissue.volume / this.served);
+  }
+
+  /**
+   * Saves all from which growth goes on as if it had never stopped. Only right after `room.rebuild`, with no site in hand;
+   * potentials and what else is refreshed before its next use is not in it.
+   */
+  save(out: StateOut): void {
+    const { mended, relaxed, nextRelax, nextRefresh, nextResize, nextShare, finishes } = this;
+    const flags = [this.cramped, this.owesRefresh].map(Number);
+    const numbers = [mended, relaxed, nextRelax, nextRefresh, nextResize, nextShare, finishes, ...flags];
+    out.list('numbers', 'f64', numbers);
+    out.put('siteOf', this.siteOf.subarray(0, this.builder.count));
+    this.builder.save(out.within('builder'));
+    this.room.save(out.within('room'));
+    this.trees.forEach(({ demand, resizer, full }, t) => {
+      const part = out.within(`trees[${t}]`);
+      part.list('full', 'i32', [Number(full)]);
+      demand.save(part.within('demand'));
+      resizer.save(part.within('resizer'));
+    });
+  }
+
+  /** Becomes the grower that was saved; made of the same spec, guess and, restored already, demands. */
+  restore(from: StateIn): void {
+    const numbers = from.reals('numbers');
+    this.mended = numbers[0]!;
+    this.relaxed = numbers[1]!;
+    this.nextRelax = numbers[2]!;
+    this.nextRefresh = numbers[3]!;
+    this.nextResize = numbers[4]!;
+    this.nextShare = numbers[5]!;
+    this.finishes = numbers[6]!;
+    this.cramped = numbers[7] === 1;
+    this.owesRefresh = numbers[8] === 1;
+    this.builder.restore(from.within('builder'));
+    this.room.restore(from.within('room'));
+    this.siteOf = from.wholes('siteOf', new Int32Array(this.builder.capacity).fill(-1));
+    this.trees.forEach((tree, t) => {
+      const part = from.within(`trees[${t}]`);
+      tree.full = part.wholes('full')[0] === 1;
+      tree.resizer.restore(part.within('resizer'));
+    });
   }
 
   /** Hangs each subtree that carries a fair part of its tree anew where that is cheaper: what is coarse is cheap to mend. */

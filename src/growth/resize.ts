@@ -1,3 +1,4 @@
+import type { StateIn, StateOut } from '../core/state.ts';
 import { powerOf } from '../physics/junction.ts';
 import { radiusForDrop } from '../physics/poiseuille.ts';
 import { askedDrop, sizeTree } from '../sizing/size-tree.ts';
@@ -20,7 +21,7 @@ export class Resizer {
   private readonly drop: number;
   private exact = 0;
   /** (capacity) Pa from the root at a row, for the exact radii of the last sizing. */
-  private fall = new Float64Array(0);
+  private fall: Float64Array = new Float64Array(0);
   private rise = EARLY_RISE;
   private history: { logCount: number; fourth: number }[] = [];
 
@@ -94,6 +95,28 @@ export class Resizer {
     const above = this.fall[builder.parent[junction]!]!;
     this.fall[junction] = 0.5 * (above + Math.max(above, this.fall[row]!));
     this.fall[site] = this.drop;
+  }
+
+  /** Saves all that sizings have left behind. */
+  save(out: StateOut): void {
+    out.list('numbers', 'f64', [this.exact, this.rise]);
+    // Its length too says something: rows beyond it have no pressure yet.
+    out.put('fall', this.fall);
+    out.list(
+      'history',
+      'f64',
+      this.history.flatMap(({ logCount, fourth }) => [logCount, fourth]),
+    );
+  }
+
+  restore(from: StateIn): void {
+    [this.exact, this.rise] = from.reals('numbers') as unknown as [number, number];
+    this.fall = from.reals('fall');
+    const history = from.reals('history');
+    this.history = [];
+    for (let k = 0; k < history.length; k += 2) {
+      this.history.push({ logCount: history[k]!, fourth: history[k + 1]! });
+    }
   }
 
   private dropAlong(builder: ForestBuilder, row: number, flow: number, radius: number): number {

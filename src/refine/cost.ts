@@ -33,12 +33,17 @@ export function tubeWeights(builder: ForestBuilder, spec: Spec): Float64Array {
  * Power per length (W/m) as a function of load, for moves that change flows. Exact where a tube's radius follows from
  * its flow alone; where it follows from the whole tree (`pressure-matched`) radii are taken as if it did, and who uses it
  * must look at the true cost afterwards.
+ *
+ * @param wholes (trees) load that the whole flow of a tree stands for
  */
-export function powerOfLoad(builder: ForestBuilder, spec: Spec): PerLength {
+export function powerOfLoad(
+  builder: ForestBuilder,
+  spec: Spec,
+  wholes: readonly number[] = wholeLoads(builder),
+): PerLength {
   const viscosity = spec.blood.viscosity.value;
   const { maintenance } = spec.blood;
   const { exponent } = builder;
-  const wholes = builder.roots.map((root) => builder.load[builder.child[2 * root]!] ?? 0);
   const flows = spec.trees.map((tree) => tree.inlet.flow);
   if (spec.sizing.rule === 'least-power') {
     const factor = leastPowerCostFactor(viscosity, maintenance);
@@ -52,6 +57,11 @@ export function powerOfLoad(builder: ForestBuilder, spec: Spec): PerLength {
     const radius = builder.inletRadius[tree]! * rootOf(part, exponent);
     return powerPerLength(flows[tree]! * part, radius, viscosity, maintenance);
   };
+}
+
+/** (trees) load of each first vessel. */
+export function wholeLoads(builder: ForestBuilder): number[] {
+  return builder.roots.map((root) => builder.load[builder.child[2 * root]!] ?? 0);
 }
 
 /** W; Σ w L over all tubes. */

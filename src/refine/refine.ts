@@ -1,5 +1,6 @@
 import type { Watch } from '../core/progress.ts';
 import type { Random } from '../core/random.ts';
+import type { StateIn, StateOut } from '../core/state.ts';
 import { Exchanger } from '../moves/exchange.ts';
 import { NodeMover } from '../moves/move-node.ts';
 import { Potential } from '../moves/potential.ts';
@@ -7,7 +8,8 @@ import { Rehanger } from '../moves/rehang.ts';
 import type { Room } from '../room/room.ts';
 import type { Spec } from '../spec/types.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
-import { costOf, powerOfLoad, tubeWeights } from './cost.ts';
+import { costOf, powerOfLoad, tubeWeights, wholeLoads } from './cost.ts';
+import { Course } from './course.ts';
 
 /** Rows whose subtrees are looked at in one step, so that a budget in seconds is kept on large trees. */
 const ROWS_A_STEP = 20_000;
@@ -20,6 +22,13 @@ const SWEEPS_A_ROUND = 3;
 /** Gain of a round, as a share of the cost, below which topology is left alone. */
 const ROUND_GAIN = 1e-5;
 const MOST_ROUNDS = 60;
+/**
+ * Work after which the room's grid is made anew, and with it the state fit to be saved: in sweeps of node moves, about as
+ * much of which a look at all subtrees for other places comes to, and for exchanges.
+ */
+const FRESH = 3;
+const SWEEPS_A_HANG = 8;
+const SWEEPS_AN_EXCHANGE = 4;
 
 /** How hard a tree is refined. */
 export type Budget =
@@ -37,6 +46,9 @@ export interface RefineOptions extends Watch {
   readonly budget: Budget;
   /** Looked at after each step with the cost so far (W); true ends the work. */
   readonly enough?: ((step: number, cost: number) => boolean) | undefined;
+  /** Told at each moment at which the work could be saved, beside its forest and room, from which `resume` goes on. */
+  readonly onMoment?: ((save: (out: StateOut) => void) => void) | undefined;
+  readonly resume?: StateIn | undefined;
 }
 
 export interface RefineResult {
@@ -76,6 +88,12 @@ class Refiner {
   private stopped: RefineResult['stopped'] = 'converged';
   /** Progress, in steps. */
   private expected = 1;
+  private readonly course: Course;
+  /** (trees) first vessels' loads, and rows, at the beginning. */
+  private readonly wholes: readonly number[];
+  private readonly rowsBefore: number;
+  /** Done since the grid was made anew, in sweeps. */
+  private work = 0;
 
   constructor(builder: ForestBuilder, room: Room, spec: Spec, options: RefineOptions) {
     this.builder = builder;
@@ -83,14 +101,40 @@ class Refiner {
     this.spec = spec;
     this.options = options;
     this.mover = new NodeMover(builder, room, STEPS);
-    const perLength = powerOfLoad(builder, spec);
+    const { resume = null, budget } = options;
+    this.course = new Course(resume);
+    this.wholes = resume === null ? wholeLoads(builder) : Array.from(resume.reals('wholes'));
+    const perLength = powerOfLoad(builder, spec, this.wholes);
     this.potential = new Potential(builder, undefined, perLength);
     this.rehanger = new Rehanger(builder, room, this.potential, perLength);
     this.exchanger = new Exchanger(builder, room, perLength);
-    room.settle();
+    if (resume === null) room.settle();
     this.weight = tubeWeights(builder, spec);
-    this.cost = costOf(builder, this.weight);
-    this.before = this.cost;
+    this.before = resume === null ? costOf(builder, this.weight) : resume.reals('before')[0]!;
+    this.cost = this.before;
+    this.rowsBefore = resume === null ? builder.count : resume.reals('before')[1]!;
+    if (budget.kind === 'annealed' && resume !== null) budget.random.resume(resume.reals('random'));
+    if (resume === null) this.freshen();
+  }
+
+  private save(out: StateOut): void {
+    const { budget } = this.options;
+    out.list('wholes', 'f64', this.wholes);
+    out.list('before', 'f64', [this.before, this.rowsBefore]);
+    if (budget.kind === 'annealed') out.list('random', 'f64', budget.random.state());
+    this.course.save(out);
+  }
+
+  /** Makes the grid anew; what is to come then follows from forest, reserves and course. */
+  private freshen(): void {
+    this.work = 0;
+    this.room.rebuild(this.room.cell);
+    this.options.onMoment?.((out) => this.save(out));
+  }
+
+  /** Whether the next step was done before the state was saved that this goes on from. */
+  private isPast(): boolean {
+    return this.course.isPast(this.steps);
   }
 
   result(): RefineResult {
@@ -142,7 +186,6 @@ class Refiner {
         const some = rows.subarray(part * ROWS_A_STEP, (part + 1) * ROWS_A_STEP);
         if (!this.hangStep(some) || !this.exchangeStep(some)) return;
       }
-      this.room.rebuild(this.room.cell);
       if (cost - this.cost <= least * cost) return;
     }
   }
@@ -158,12 +201,16 @@ class Refiner {
   }
 
   private sweepStep(): boolean {
+    if (this.isPast()) return this.endStep();
     const { builder, mover, weight } = this;
+    this.work++;
     for (let row = 0; row < builder.count; row++) mover.move(row, weight, 0);
     return this.endStep();
   }
 
   private hangStep(rows: Int32Array): boolean {
+    if (this.isPast()) return this.endStep();
+    this.work += (SWEEPS_A_HANG * rows.length) / this.builder.count;
     this.refreshPotentials();
     for (const row of rows) if (this.builder.parent[row]! >= 0) this.rehanger.rehang(row, LEAST_GAIN);
     this.weight = tubeWeights(this.builder, this.spec);
@@ -171,6 +218,8 @@ class Refiner {
   }
 
   private exchangeStep(rows: Int32Array): boolean {
+    if (this.isPast()) return this.endStep();
+    this.work += (SWEEPS_AN_EXCHANGE * rows.length) / this.builder.count;
     for (const row of rows) if (this.builder.parent[row]! >= 0) this.exchanger.exchange(row, LEAST_GAIN);
     this.weight = tubeWeights(this.builder, this.spec);
     return this.endStep();
@@ -184,31 +233,43 @@ class Refiner {
   private anneal(random: Random): boolean {
     const { builder } = this;
     const rounds = 12;
-    const hot = (0.1 * this.cost) / builder.count;
+    const hot = (0.1 * this.before) / this.rowsBefore;
     this.expected = 4 * rounds;
     for (let round = 0; round < rounds; round++) {
       const temperature = hot * Math.exp((-round * Math.log(100)) / (rounds - 1));
       const rows = this.heaviest(builder.count);
-      this.refreshPotentials();
-      const tries = rows.length;
-      for (let k = 0; k < tries; k++) {
-        const row = rows[Math.floor(random.next() * rows.length)]!;
-        const spare = -temperature * Math.log(1 - random.next());
-        if (builder.parent[row]! >= 0) this.rehanger.rehang(row, 0, spare);
-      }
-      this.weight = tubeWeights(builder, this.spec);
-      if (!this.endStep()) return false;
+      if (!this.annealStep(rows, temperature, random)) return false;
       for (let k = 0; k < SWEEPS_A_ROUND; k++) if (!this.sweepStep()) return false;
-      this.room.rebuild(this.room.cell);
     }
     return true;
+  }
+
+  private annealStep(rows: Int32Array, temperature: number, random: Random): boolean {
+    if (this.isPast()) return this.endStep();
+    const { builder } = this;
+    this.work += SWEEPS_A_HANG;
+    this.refreshPotentials();
+    const tries = rows.length;
+    for (let k = 0; k < tries; k++) {
+      const row = rows[Math.floor(random.next() * rows.length)]!;
+      const spare = -temperature * Math.log(1 - random.next());
+      if (builder.parent[row]! >= 0) this.rehanger.rehang(row, 0, spare);
+    }
+    this.weight = tubeWeights(builder, this.spec);
+    return this.endStep();
   }
 
   /** Counts a step; false where the budget is spent or the work is to stop. */
   private endStep(): boolean {
     const { options } = this;
+    const past = this.isPast();
     this.steps++;
+    if (past) {
+      this.cost = this.course.costAfter(this.steps);
+      return true;
+    }
     this.cost = costOf(this.builder, this.weight);
+    this.course.addStep(this.cost);
     options.onProgress?.({
       stage: 'refine',
       done: Math.min(this.steps, this.expected),
@@ -224,16 +285,20 @@ class Refiner {
       this.sumUp();
       return false;
     }
+    if (this.work >= FRESH) this.freshen();
     return true;
   }
 
   /** Rows of the tubes that carry most, the most first, ties by row. */
   private heaviest(most: number): Int32Array {
     const { builder } = this;
+    if (this.isPast()) return this.course.pastLook();
     const rows: number[] = [];
     for (let row = 0; row < builder.count; row++) if (builder.parent[row]! >= 0) rows.push(row);
     const sorted = Int32Array.from(rows).sort((a, b) => builder.load[b]! - builder.load[a]! || a - b);
-    return sorted.subarray(0, most);
+    const heaviest = sorted.subarray(0, most);
+    this.course.addLook(heaviest);
+    return heaviest;
   }
 
   private refreshPotentials(): void {

@@ -1,5 +1,6 @@
 import { type Memory, ownMemory } from '../core/memory.ts';
 import { squaredDistanceBetweenSegments } from '../core/segments.ts';
+import type { StateIn, StateOut } from '../core/state.ts';
 import { TubeGrid, type TubeGridView } from '../core/tube-grid.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { tubeInside } from '../tissue/tube.ts';
@@ -106,12 +107,36 @@ export class Room {
     if (this.stamp.length < view.reserve.length) this.stamp = new Int32Array(view.reserve.length);
   }
 
-  /** Lists every living tube anew, in a grid of another cell. */
+  /**
+   * Lists every living tube anew, in a grid of another cell, and forgets a transaction that was not committed: what the
+   * room answers from here on follows from the forest, the reserves and the cell alone.
+   */
   rebuild(cell: number): void {
-    this.follow();
+    this.begin();
     this.grid = new TubeGrid(this.tissue.min, this.tissue.max, cell, MOST_CELLS, this.memory);
-    for (let row = 0; row < this.builder.count; row++) if (this.builder.parent[row]! >= 0) this.list(row);
+    for (let row = 0; row < this.builder.count; row++) {
+      if (this.builder.parent[row]! >= 0) this.list(row);
+      else this.listed[row] = 0;
+    }
     this.grid.pack();
+  }
+
+  /** Saves what `restore` needs; to be asked right after `rebuild`. */
+  save(out: StateOut): void {
+    out.list('cell', 'f64', [this.cell]);
+    out.put('reserve', this.reserve.subarray(0, this.builder.count));
+  }
+
+  /** Becomes the room that was saved, of the builder that was saved with it. */
+  restore(from: StateIn): void {
+    const n = this.builder.capacity;
+    this.reserve = new Float64Array(this.memory(8 * n));
+    this.listed = new Float64Array(n);
+    this.pending = new Float64Array(n);
+    this.stamp = new Int32Array(n);
+    this.round = 1;
+    from.reals('reserve', this.reserve);
+    this.rebuild(from.reals('cell')[0]!);
   }
 
   begin(): void {

@@ -1,4 +1,5 @@
 import type { Random } from '../core/random.ts';
+import type { StateIn, StateOut } from '../core/state.ts';
 import { createDarts, reachFactor } from './darts.ts';
 import { halfDiagonal } from './region.ts';
 import { createSiteGrid } from './site-grid.ts';
@@ -43,6 +44,14 @@ export interface Sites {
    * @returns false where the stream ends: no place that deep was hit by 200,000 darts, or `reach` is at its floor
    */
   next(minDepth: number): boolean;
+  /** Saves what `restore` needs beside the places of the sites found. */
+  save(out: StateOut): void;
+  /**
+   * Goes on as the stream that was saved.
+   *
+   * @param places (3·count) m; of the sites that it had found, in order
+   */
+  restore(from: StateIn, places: Float64Array): void;
 }
 
 /**
@@ -58,7 +67,7 @@ export function createSites(tissue: Tissue, random: Random, floor = 0): Sites {
   const throwDart = createDarts(tissue, random);
   const [least, most] = [reachFactor(tissue.perfusion.most), reachFactor(tissue.perfusion.least)];
   let reach = (2 * halfDiagonal(max[0] - min[0], max[1] - min[1], max[2] - min[2])) / least;
-  const grid = createSiteGrid(reach, least, most);
+  let grid = createSiteGrid(reach, least, most);
   const dart = new Float64Array(4);
 
   /** Throws darts until one is deep enough; its place is left in `dart`. */
@@ -97,6 +106,21 @@ export function createSites(tissue: Tissue, random: Random, floor = 0): Sites {
         if (smaller < floor) return false;
         reach = smaller;
         grid.shrink(reach);
+      }
+    },
+    save(out) {
+      out.list('reach', 'f64', [reach]);
+      out.list('random', 'f64', random.state());
+    },
+    restore(from, places) {
+      reach = from.reals('reach')[0]!;
+      random.resume(from.reals('random'));
+      // Cells of another edge than they had give the same answers.
+      grid = createSiteGrid(reach, least, most);
+      const { perfusion } = tissue;
+      for (let at = 0; at < places.length; at += 3) {
+        const [x, y, z] = [places[at]!, places[at + 1]!, places[at + 2]!];
+        grid.add(x, y, z, perfusion.cells === null ? 1 : reachFactor(perfusion.at(x, y, z)));
       }
     },
   };

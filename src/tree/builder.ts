@@ -1,5 +1,6 @@
 import { InvariantError } from '../core/errors.ts';
 import { type Memory, ownMemory } from '../core/memory.ts';
+import type { StateIn, StateOut } from '../core/state.ts';
 
 /** A row that an eviction has given back. */
 export const FREED = -2;
@@ -84,6 +85,38 @@ export class ForestBuilder {
     this.weight = view.weight;
     this.roots.splice(0, this.roots.length, ...view.roots);
     this.inletRadius.splice(0, this.inletRadius.length, ...view.inletRadius);
+  }
+
+  /** Saves all that is to be known of the forest; not while a subtree is cut. */
+  save(out: StateOut): void {
+    const { count } = this;
+    out.list('size', 'i32', [count, this.capacity]);
+    out.list('roots', 'i32', this.roots);
+    out.list('inletRadius', 'f64', this.inletRadius);
+    out.list('free', 'i32', this.free);
+    out.put('parent', this.parent.subarray(0, count));
+    out.put('child', this.child.subarray(0, 2 * count));
+    out.put('tree', this.tree.subarray(0, count));
+    out.put('position', this.position.subarray(0, 3 * count));
+    out.put('load', this.load.subarray(0, count));
+    out.put('weight', this.weight.subarray(0, count));
+  }
+
+  /** Becomes the forest that was saved. Room for rows is as it was: columns elsewhere are as long. */
+  restore(from: StateIn): void {
+    const [count, capacity] = from.wholes('size') as unknown as [number, number];
+    this.count = count;
+    this.allocate(capacity);
+    this.roots.splice(0, this.roots.length, ...from.wholes('roots'));
+    this.inletRadius.splice(0, this.inletRadius.length, ...from.reals('inletRadius'));
+    this.free.length = 0;
+    for (const row of from.wholes('free')) this.free.push(row);
+    from.wholes('parent', this.parent);
+    from.wholes('child', this.child);
+    from.wholes('tree', this.tree);
+    from.reals('position', this.position);
+    from.reals('load', this.load);
+    from.reals('weight', this.weight);
   }
 
   get capacity(): number {
@@ -279,6 +312,16 @@ export class ForestBuilder {
     this.position = widened(this.position, new Float64Array(memory(24 * capacity)));
     this.load = widened(this.load, new Float64Array(memory(8 * capacity)));
     this.weight = widened(this.weight, new Float64Array(memory(8 * capacity)));
+  }
+
+  private allocate(capacity: number): void {
+    const { memory } = this;
+    this.parent = new Int32Array(memory(4 * capacity));
+    this.child = new Int32Array(memory(8 * capacity));
+    this.tree = new Int32Array(memory(4 * capacity));
+    this.position = new Float64Array(memory(24 * capacity));
+    this.load = new Float64Array(memory(8 * capacity));
+    this.weight = new Float64Array(memory(8 * capacity));
   }
 }
 

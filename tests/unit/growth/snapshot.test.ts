@@ -1,0 +1,106 @@
+import { describe, expect, test } from 'vitest';
+import { splitTreePath } from '../../../src/formats/tree-formats.ts';
+import { type GrowOptions, growRun } from '../../../src/run.ts';
+import { specFromValue } from '../../../src/spec/parse.ts';
+import type { Spec } from '../../../src/spec/types.ts';
+import { openBytes, savedBytes } from '../../support/saved-states.ts';
+
+/* Saved at any moment and gone on with from its bytes alone, a run comes to the same tree file as one that never stopped. */
+
+const BOX = { shape: 'box', min_mm: [0, 0, 0], max_mm: [10, 8, 6] };
+const LEFT = { position_mm: [0, 4, 3], direction: [1, 0, 0], flow_mL_min: 0.4, pressure_mmHg: 60 };
+const RIGHT = { position_mm: [10, 4, 3], direction: [-1, 0, 0], flow_mL_min: 0.4, pressure_mmHg: 5 };
+
+function points(count: number): number[][] {
+  const list: number[][] = [];
+  for (let k = 1; k <= count; k++) {
+    list.push([9.2 * ((k * 0.8191725) % 1) + 0.4, 7.2 * ((k * 0.6710436) % 1) + 0.4, 5.2 * ((k * 0.5497) % 1) + 0.4]);
+  }
+  return list;
+}
+
+const SPECS: Record<string, unknown> = {
+  'a count, least power': {
+    tissue: BOX,
+    trees: [{ inlet: LEFT, terminals: { count: 160 } }],
+  },
+  'a spacing, mean pressure': {
+    tissue: BOX,
+    trees: [{ inlet: LEFT, terminals: { spacing_mm: 1.1, pressure_mmHg: 20 } }],
+    sizing: { rule: 'junction-exponent', junction_exponent: 2.7 },
+    clearance: { gap_um: 20 },
+  },
+  'points, pressure matched': {
+    tissue: BOX,
+    trees: [{ inlet: LEFT, terminals: { points_mm: points(90), pressure_mmHg: 25 } }],
+    sizing: { rule: 'pressure-matched' },
+  },
+  'two trees, demand and territories, annealed': {
+    tissue: { ...BOX, demand: [{ shape: 'sphere', center_mm: [6, 4, 3], radius_mm: 2, weight: 5 }] },
+    trees: [
+      { name: 'in', inlet: LEFT, terminals: { count: 70, flow_share: 'territory', pressure_mmHg: 25 } },
+      {
+        name: 'out',
+        kind: 'drain',
+        inlet: RIGHT,
+        terminals: { count: 80, flow_share: 'territory', pressure_mmHg: 15 },
+      },
+    ],
+    sizing: { rule: 'pressure-matched' },
+  },
+  'a hollow tissue, many sweeps': {
+    tissue: {
+      shape: 'difference',
+      of: { shape: 'sphere', center_mm: [5, 4, 3], radius_mm: 5 },
+      minus: [{ shape: 'sphere', center_mm: [5, 4, 3], radius_mm: 2.5 }],
+    },
+    trees: [
+      { inlet: { position_mm: [0, 4, 3], flow_mL_min: 0.3 }, terminals: { count: 120, flow_share: 'territory' } },
+    ],
+    refine: 40,
+  },
+};
+
+function grow(spec: Spec, options: GrowOptions = {}): Uint8Array {
+  const { record } = growRun(spec, new Map(), options);
+  return splitTreePath('tree.vtp', 'tree.vtp').format.encode(record)[0]!.bytes;
+}
+
+describe.each(Object.keys(SPECS))('%s', (name) => {
+  const refine = name.endsWith('annealed') ? 'annealed' : name.startsWith('a count') ? 'thorough' : undefined;
+  const spec = specFromValue({ refine, ...(SPECS[name] as object) });
+  const whole = grow(spec);
+  const states: Uint8Array[] = [];
+  const watched = grow(spec, { onMoment: (save) => states.push(savedBytes(save)) });
+
+  test('being saved changes nothing', () => {
+    expect(states.length).toBeGreaterThan(8);
+    expect(Buffer.compare(watched, whole)).toBe(0);
+  });
+
+  test('from each moment it comes to the same bytes', () => {
+    // All of them take long; some of growth, the beginning of refinement, and some of refinement.
+    const chosen = states.filter((_, k) => k % Math.ceil(states.length / 8) === 0 || k === states.length - 1);
+    for (const state of chosen) {
+      const resumed = grow(spec, { resume: openBytes(state) });
+      expect([states.indexOf(state), Buffer.compare(resumed, whole)]).toEqual([states.indexOf(state), 0]);
+    }
+  });
+
+  test('saved again on the way, as often as one likes', () => {
+    let state = states[0]!;
+    for (let times = 0; ; times++) {
+      let moments = 0;
+      let next: Uint8Array | null = null;
+      const resumed = grow(spec, {
+        resume: openBytes(state),
+        onMoment: (save) => {
+          if (++moments === 7) next = savedBytes(save);
+        },
+      });
+      expect([times, Buffer.compare(resumed, whole)]).toEqual([times, 0]);
+      if (next === null) break;
+      state = next;
+    }
+  });
+});
