@@ -2,7 +2,7 @@
  * How much longer than the two balls at its ends a vessel must be for its junctions to be meshed without a word:
  * length ≥ FIT_MARGIN · (ρ of one end + ρ of the other).
  */
-export const FIT_MARGIN = 1.15;
+export const FIT_MARGIN = 1.05;
 /** What stands for ρ at a root or a terminal, in radii: the straight stretch before the cap. */
 export const RUN_OUT = 2;
 

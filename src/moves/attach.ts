@@ -3,7 +3,7 @@ import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 import { BEND_PLACES, BendPlaces } from './bend-places.ts';
 import { Potential } from './potential.ts';
-import { type ProposeOptions, Proposer } from './proposer.ts';
+import { isAtBend, type ProposeOptions, Proposer } from './proposer.ts';
 import { span } from './span.ts';
 import { Trial } from './trial.ts';
 
@@ -152,11 +152,12 @@ export class Attacher {
   ): number {
     const { builder, room } = this;
     this.tally.tried++;
-    const parent = builder.parent[row]!;
-    const junction = builder.insertAbove(row, jx, jy, jz);
+    const atBend = isAtBend(builder, row, jx, jy, jz);
+    const junction = atBend ? builder.parent[row]! : builder.insertAbove(row, jx, jy, jz);
     const bend = via === null ? -1 : builder.addChild(junction, via[0]!, via[1]!, via[2]!);
     const site = builder.addChild(bend < 0 ? junction : bend, x, y, z);
     builder.load[site] = share;
+    const parent = builder.parent[junction]!;
     const p = builder.position;
     const ax = p[3 * parent]! - jx;
     const ay = p[3 * parent + 1]! - jy;
@@ -177,7 +178,7 @@ export class Attacher {
     this.trial.lower();
     builder.removeTerminal(site);
     if (bend >= 0) builder.removeTerminal(bend);
-    builder.spliceOut(junction);
+    if (!atBend) builder.spliceOut(junction);
     return -1;
   }
 

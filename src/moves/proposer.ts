@@ -1,4 +1,4 @@
-import { FIT_MARGIN, RUN_OUT } from '../room/reach.ts';
+import { FIT_MARGIN, RUN_OUT, separationReach } from '../room/reach.ts';
 import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 import { Candidates } from './candidates.ts';
@@ -26,6 +26,19 @@ export interface ProposeOptions {
   readonly slack: number;
 }
 
+/** Whether a junction place is that of the bend above a tube, which then becomes the junction. */
+export function isAtBend(builder: ForestBuilder, row: number, x: number, y: number, z: number): boolean {
+  const bend = builder.parent[row]!;
+  const p = builder.position;
+  return (
+    builder.childCount(bend) === 1 &&
+    builder.parent[bend]! >= 0 &&
+    p[3 * bend] === x &&
+    p[3 * bend + 1] === y &&
+    p[3 * bend + 2] === z
+  );
+}
+
 /**
  * Finds where a terminal or a subtree might hang: tubes near by, those first that add least power, and on each the
  * junction places at which everything looked at would fit. Changes nothing; the forest may be shared and frozen.
@@ -33,7 +46,10 @@ export interface ProposeOptions {
  * What it cannot know is whether the way up has room for the added flow; whoever makes the change asks that.
  */
 export class Proposer {
-  /** (keep) rows of the tubes proposed, cheapest first, and (keep, 3) m, the places of their junctions. */
+  /**
+   * (keep) rows of the tubes proposed, cheapest first, and (keep, 3) m, the places of their junctions; the very place of
+   * a bend above the tube means that the bend itself becomes the junction.
+   */
   readonly row = new Int32Array(MOST_PROPOSED);
   readonly at = new Float64Array(3 * MOST_PROPOSED);
   readonly candidates: Candidates;
@@ -151,6 +167,12 @@ export class Proposer {
     for (let c = from; c < end && count < options.keep; c++) {
       const row = candidates.rows[c]!;
       this.tally.candidates++;
+      if (this.bendLooksWell(row, x, y, z, share, top, run, shrink)) {
+        const bend = this.builder.parent[row]!;
+        this.row[count] = row;
+        for (let i = 0; i < 3; i++) this.at[3 * count + i] = this.builder.position[3 * bend + i]!;
+        if (++count === options.keep) break;
+      }
       const found = places.find(row, x, y, z, share, run, shrink);
       let onRow = 0;
       for (let k = 0; k < found && onRow < MOST_ON_TUBE && count < options.keep; k++) {
@@ -166,6 +188,60 @@ export class Proposer {
     }
     this.preview.shrink = 1;
     return count;
+  }
+
+  /** Whether the node above a tube is a bend, not a root, at which the new vessel would fit as a second child. */
+  private bendLooksWell(
+    row: number,
+    x: number,
+    y: number,
+    z: number,
+    share: number,
+    top: number,
+    run: number,
+    shrink: number,
+  ): boolean {
+    const { builder, room, preview } = this;
+    const bend = builder.parent[row]!;
+    const above = builder.parent[bend]!;
+    if (above < 0 || builder.child[2 * bend + 1]! >= 0) return false;
+    const p = builder.position;
+    const bx = p[3 * bend]!;
+    const by = p[3 * bend + 1]!;
+    const bz = p[3 * bend + 2]!;
+    const load = builder.load[row]!;
+    const below = shrink * builder.radius(row);
+    const wide = below * this.rootOf((load + share) / load);
+    const own = below * this.rootOf(share / load);
+    const ux = p[3 * above]! - bx;
+    const uy = p[3 * above + 1]! - by;
+    const uz = p[3 * above + 2]! - bz;
+    const vx = p[3 * row]! - bx;
+    const vy = p[3 * row + 1]! - by;
+    const vz = p[3 * row + 2]! - bz;
+    const wx = x - bx;
+    const wy = y - by;
+    const wz = z - bz;
+    const u = span(ux, uy, uz);
+    const v = span(vx, vy, vz);
+    const w = span(wx, wy, wz);
+    const uv = (ux * vx + uy * vy + uz * vz) / (u * v);
+    const uw = (ux * wx + uy * wy + uz * wz) / (u * w);
+    const vw = (vx * wx + vy * wy + vz * wz) / (v * w);
+    const least = room.limits.cosMinAngle;
+    if (!(uv <= least && uw <= least && vw <= least)) return false;
+    const ball = Math.max(
+      separationReach(wide, below, uv),
+      separationReach(wide, own, uw),
+      separationReach(below, own, vw),
+    );
+    preview.shrink = shrink;
+    if (w < this.places.slack * FIT_MARGIN * (ball + run * own)) return false;
+    const ballU = preview.ballWith(above, bend, bx, by, bz, wide);
+    if (ballU < 0 || u < LENIENT * FIT_MARGIN * (ball + ballU)) return false;
+    const ballV = preview.ballWith(row, bend, bx, by, bz, below);
+    if (ballV < 0 || v < LENIENT * FIT_MARGIN * (ball + ballV)) return false;
+    return preview.clear(bx, by, bz, x, y, z, own, -1, bend, top) && preview.inside(bx, by, bz, x, y, z, own);
   }
 
   private rootOf(ratio: number): number {

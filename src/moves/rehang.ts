@@ -2,7 +2,7 @@ import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 import { leastPowerPerLength, type PerLength } from './per-length.ts';
 import type { Potential } from './potential.ts';
-import { MOST_PROPOSED, Proposer } from './proposer.ts';
+import { isAtBend, MOST_PROPOSED, Proposer } from './proposer.ts';
 import { Trial } from './trial.ts';
 
 /*
@@ -126,8 +126,12 @@ export class Rehanger {
     weight: number,
   ): boolean {
     const { builder, room, trial, proposer } = this;
-    const parent = builder.parent[row]!;
-    const junction = builder.insertAbove(row, proposer.at[3 * k]!, proposer.at[3 * k + 1]!, proposer.at[3 * k + 2]!);
+    const x = proposer.at[3 * k]!;
+    const y = proposer.at[3 * k + 1]!;
+    const z = proposer.at[3 * k + 2]!;
+    const atBend = isAtBend(builder, row, x, y, z);
+    const junction = atBend ? builder.parent[row]! : builder.insertAbove(row, x, y, z);
+    const parent = builder.parent[junction]!;
     builder.hang(top, junction);
     trial.raise(junction, share, weight);
     // Hung on its own sibling, the straight tube is parted again and has been looked at as one of the two.
@@ -141,7 +145,7 @@ export class Rehanger {
     }
     trial.lower();
     builder.unhang(top, loose);
-    builder.spliceOut(junction);
+    if (!atBend) builder.spliceOut(junction);
     return false;
   }
 

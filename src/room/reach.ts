@@ -1,5 +1,5 @@
 /** Tubes must be this much longer than the two balls at their ends, so that a mesh has a stretch of plain tube between. */
-export const FIT_MARGIN = 1.15;
+export const FIT_MARGIN = 1.05;
 /** Straight run-out at a root or a terminal, in radii, counted like a ball. */
 export const RUN_OUT = 2;
 
