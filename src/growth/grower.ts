@@ -41,7 +41,7 @@ const RELAX = 1.15;
 /** Radii over today's that a moved node leaves room for, so that the tubes at it can still gain flow. */
 const RELAX_SLACK = 1.2;
 /** Subtrees that carry at least this part of their tree are hung anew now and then while it grows. */
-const COARSE = 500;
+const COARSE = 1000;
 /** Gain, as a share of the cost of its tubes, for which a node is moved. */
 const RELAX_GAIN = 1e-3;
 /** Edge of a grid cell over the spacing of terminals. */
@@ -142,7 +142,7 @@ export class Grower {
       this.trees.push({ seedling, demand, resizer: new Resizer(spec, tree), resized, full: false });
     }
     this.batch = new Batch(tissue, MOST_BATCH, KEEP, memory);
-    this.mover = new NodeMover(builder, room);
+    this.mover = new NodeMover(builder, room, undefined, true);
     this.options = {
       first: 8,
       second: 24,

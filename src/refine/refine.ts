@@ -100,7 +100,7 @@ class Refiner {
     this.room = room;
     this.spec = spec;
     this.options = options;
-    this.mover = new NodeMover(builder, room, STEPS);
+    this.mover = new NodeMover(builder, room, STEPS, true);
     const { resume = null, budget } = options;
     this.course = new Course(resume);
     this.wholes = resume === null ? wholeLoads(builder) : Array.from(resume.reals('wholes'));
