@@ -11,14 +11,16 @@ export { DEFAULT_TOLERANCE, parseTolerance, type Tolerance } from './compare/tol
 export { type Fault, InputError, InvariantError, inputError } from './core/errors.ts';
 export { type Memory, ownMemory } from './core/memory.ts';
 export type { Progress, Watch } from './core/progress.ts';
+export { StateIn, StateOut } from './core/state.ts';
 export type { TriangleSurface } from './core/surface.ts';
 export { fromSi, toSi, UNITS, type Unit } from './core/units.ts';
 export { decodeTree } from './formats/decode-tree.ts';
 export type { ByteSource, DecodedTree, NamedBytes, TreeFormat } from './formats/format.ts';
 export { MESH_UNITS, type MeshUnit } from './formats/mesh/length-unit.ts';
+export { encodeState, openState, type StateHead } from './formats/state-file.ts';
 export { decodeSurface } from './formats/surface/surface-formats.ts';
 export { splitTreePath, TREE_FORMATS } from './formats/tree-formats.ts';
-export { CHUNK, type Crew, Desk, type ProposalTask } from './growth/crew.ts';
+export { CHUNK, type Crew, Desk, type OnMoment, type ProposalTask } from './growth/crew.ts';
 export { LUMEN_DEFAULTS } from './mesh/build-lumen.ts';
 export type { LumenMesh } from './mesh/lumen.ts';
 export { CAUTION } from './report/caution.ts';

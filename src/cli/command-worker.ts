@@ -33,6 +33,7 @@ const io: Io = {
     tell({ kind: 'until-interrupted' });
     return new Promise(() => {});
   },
+  resumable: (path) => tell({ kind: 'resumable', path }),
   temporary: (path) => tell({ kind: 'temporary', path }),
   commit: (step) => {
     // Once the end has begun, this thread waits for it here.

@@ -1,7 +1,16 @@
+import { existsSync } from 'node:fs';
 import { join } from 'node:path';
 import type { Command } from 'commander';
 import { CAUTION, inputError, parseSpec, type Spec, specToJson } from '../index.ts';
-import { type GrownFolder, growToFolder, placeForFolder, RUN_FOLDER, readSpec } from '../node/index.ts';
+import {
+  type GrownFolder,
+  growToFolder,
+  placeForFolder,
+  RUN_FOLDER,
+  readSpec,
+  type SnapshotOptions,
+  snapshotPath,
+} from '../node/index.ts';
 import { addCommonOptions, addExample, addRequired, type Context, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
@@ -11,6 +20,9 @@ import { formatPower, formatShare } from './printed.ts';
 
 /** Most terminals of a tree that a spec may ask for. */
 const MOST_TERMINALS = 2e7;
+/** s between two snapshots of a run, and until the first; and what says otherwise, for tests. */
+const SNAPSHOT_PAUSE = 20;
+const PAUSE_VARIABLE = 'VESSELWRIGHT_SNAPSHOT_SECONDS';
 
 interface GrowArguments extends CommonOptions {
   readonly out: string;
@@ -18,6 +30,7 @@ interface GrowArguments extends CommonOptions {
   readonly terminals?: string;
   readonly workers?: string;
   readonly refine?: string;
+  readonly resume?: boolean;
 }
 
 export function addGrow(program: Command, context: Context): void {
@@ -35,6 +48,7 @@ export function addGrow(program: Command, context: Context): void {
     .option('--terminals <count>', 'number of terminals a tree, in place of the spec’s count')
     .option('--workers <count>', 'threads that grow, one for each core by default; the result never depends on it')
     .option('--refine <budget>', 'none, quick, thorough, annealed, or a time such as 20s, in place of the spec’s');
+  command.option('--resume', 'go on from <run>.snapshot, which the same command has left when it was interrupted');
   addCommonOptions(command, 'print the summary as one JSON document');
   addExample(
     command,
@@ -57,7 +71,12 @@ function grow(given: string, options: GrowArguments, talk: Talk): number {
   const grown = growToFolder(
     { ...read, spec },
     options.out,
-    { workers, onProgress: clock.onProgress, refineEnough: budget === null ? undefined : clock.enough },
+    {
+      workers,
+      onProgress: clock.onProgress,
+      refineEnough: budget === null ? undefined : clock.enough,
+      snapshot: snapshotOf(options, clock, talk),
+    },
     talk.writing('--out'),
   );
   talk.settle();
@@ -68,6 +87,22 @@ function grow(given: string, options: GrowArguments, talk: Talk): number {
     () => JSON.stringify(summariseRun(grown, options.out, held), null, 2),
   );
   return held ? EXIT.held : EXIT.broken;
+}
+
+/** A run that takes long is saved on its way, so that it can go on after an interruption. */
+function snapshotOf(options: GrowArguments, clock: RefineClock, talk: Talk): SnapshotOptions {
+  const path = snapshotPath(options.out);
+  const resume = options.resume ?? false;
+  if (!resume && existsSync(path))
+    talk.note(`${path} of an interrupted run is there; this run begins anew all the same`);
+  const asked = process.env[PAUSE_VARIABLE];
+  return {
+    every: asked === undefined ? SNAPSHOT_PAUSE : Number(asked),
+    resume,
+    onReady: (ready) => talk.io.resumable?.(ready),
+    onTrouble: (why) => talk.note(why),
+    clock,
+  };
 }
 
 /** The spec with what the command line says instead; judged as if it had said so itself. */
@@ -98,6 +133,7 @@ class RefineClock {
   readonly #budget: number | null;
   readonly #talk: Talk;
   #begin: number | null = null;
+  #before = 0;
 
   constructor(budget: number | null, talk: Talk) {
     this.#budget = budget;
@@ -111,11 +147,21 @@ class RefineClock {
 
   readonly enough = (): boolean => this.#spent() >= (this.#budget ?? 0);
 
-  /** s since it was first asked. */
+  /** s so far; 0 where refinement has not begun. */
+  spent(): number {
+    return this.#begin === null ? this.#before : this.#spent();
+  }
+
+  /** Counts time that an interrupted run has spent. */
+  goOn(spent: number): void {
+    this.#before = spent;
+  }
+
+  /** s since it was first asked, and before. */
   #spent(): number {
     const now = performance.now();
     this.#begin ??= now;
-    return (now - this.#begin) / 1000;
+    return this.#before + (now - this.#begin) / 1000;
   }
 }
 

@@ -19,6 +19,7 @@ const { port1: port, port2: workerPort } = new MessageChannel();
 const temporaries = new Set<string>();
 const watched = process.stderr.isTTY === true;
 let bar: ProgressBar | null = null;
+let resumable: string | null = null;
 let endsByInterrupt = false;
 let code: number | null = null;
 let interrupted = false;
@@ -53,6 +54,9 @@ function hear(message: WorkerMessage): void {
     case 'temporary':
       temporaries.add(message.path);
       break;
+    case 'resumable':
+      resumable = message.path;
+      break;
     case 'until-interrupted':
       endsByInterrupt = true;
       break;
@@ -79,7 +83,8 @@ async function interrupt(): Promise<void> {
   await worker.terminate();
   settle();
   if (endsByInterrupt) process.exit(EXIT.held);
-  process.stderr.write('interrupted: nothing is half-written\n');
+  const goOn = resumable === null ? '' : `; the same command with --resume goes on from ${resumable}`;
+  process.stderr.write(`interrupted: nothing is half-written${goOn}\n`);
   process.exit(EXIT.interrupted);
 }
 

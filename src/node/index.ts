@@ -4,6 +4,7 @@ export { isMeshFolder, readMesh } from './read-mesh.ts';
 export { readSpec, readSurfaces, type SpecFiles, useBaseNames } from './read-spec.ts';
 export { claimedCost, readTree, specOfTree, surfacesOfTree, type TreeFiles } from './read-tree.ts';
 export { type GrownFolder, growToFolder, writeRun } from './run-folder.ts';
+export { type SnapshotOptions, snapshotPath } from './snapshot-file.ts';
 export { isSystemError, withFiles } from './system-faults.ts';
 export { clearStale, type WriteGuard, type WriteOptions } from './temporary.ts';
 export { startViewServer, type ViewedRun, type ViewServer, type ViewServerOptions } from './view-server.ts';

@@ -7,6 +7,7 @@ import {
   renderReport,
   reportRun,
   type Spec,
+  type StateIn,
   splitTreePath,
   type TreeRecord,
   withResources,
@@ -15,6 +16,7 @@ import { startCrew } from './crew.ts';
 import { Meter } from './meter.ts';
 import { placeForFolder, RUN_FOLDER } from './out-folder.ts';
 import { type SpecFiles, useBaseNames } from './read-spec.ts';
+import { SnapshotFile, type SnapshotOptions, workOf } from './snapshot-file.ts';
 import type { WriteOptions } from './temporary.ts';
 import { type OutFile, writeFolder } from './write-folder.ts';
 
@@ -29,35 +31,45 @@ export interface GrownFolder {
  * Grows a spec into a run folder. Surfaces are copied beside the tree and named by their base names before growth
  * begins, so that growing `spec.json` of the folder again gives the same `tree.vtp`.
  *
- * @param options `workers`: threads that grow, ≥ 1, one for each core where it is not given; the tree is the same
+ * @param options `workers`: threads that grow, ≥ 1, one for each core where it is not given; `snapshot`: whether and how
+ *                the run is saved on its way; the tree is the same
  * @throws InputError for what is wrong with spec, surfaces or place; nothing is written then
  */
 export function growToFolder(
   read: SpecFiles,
   out: string,
-  options: Omit<GrowOptions, 'crew'> & { readonly workers?: number | undefined },
+  options: Omit<GrowOptions, 'crew' | 'onMoment' | 'resume'> & {
+    readonly workers?: number | undefined;
+    readonly snapshot?: SnapshotOptions | undefined;
+  },
   writing: WriteOptions,
 ): GrownFolder {
   placeForFolder(out, RUN_FOLDER, writing.where);
   const home = useBaseNames(read);
   const meter = new Meter();
   meter.see({ stage: 'tissue' });
-  const { workers = availableParallelism(), ...rest } = options;
+  const { workers = availableParallelism(), snapshot, ...rest } = options;
+  const head = workOf(home.spec, home.bytes, options.refineEnough !== undefined);
+  const file = snapshot === undefined ? null : new SnapshotFile(out, head, snapshot, writing);
   const crew = workers > 1 && isLarge(home.spec) ? startCrew(workers, home.spec, home.surfaces) : undefined;
   let result: GrowResult;
   try {
-    result = growRun(home.spec, home.surfaces, {
-      ...rest,
-      crew,
-      onProgress: (progress) => {
-        meter.see(progress);
-        options.onProgress?.(progress);
-      },
-      onCost: (stage, cost) => {
-        meter.cost(stage, cost);
-        options.onCost?.(stage, cost);
-      },
-    });
+    const grow = (resume: StateIn | undefined): GrowResult =>
+      growRun(home.spec, home.surfaces, {
+        ...rest,
+        crew,
+        resume,
+        onMoment: file?.onMoment,
+        onProgress: (progress) => {
+          meter.see(progress);
+          options.onProgress?.(progress);
+        },
+        onCost: (stage, cost) => {
+          meter.cost(stage, cost);
+          options.onCost?.(stage, cost);
+        },
+      });
+    result = file === null ? grow(undefined) : file.withSaved(grow);
   } finally {
     crew?.close();
   }
@@ -70,6 +82,7 @@ export function growToFolder(
     return report;
   });
   writeFolder(out, RUN_FOLDER, files, writing);
+  file?.remove();
   return { result, report, files: files.map((file) => file.name) };
 }
 

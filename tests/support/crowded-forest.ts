@@ -67,6 +67,8 @@ export function growCrowded(options: CrowdedOptions): { spec: Spec; grower: Grow
       get share() {
         return 0.5 + 1.5 * shares.next();
       },
+      save: (out) => sites.save(out),
+      restore: (from, places) => sites.restore(from, places),
     };
     return new Demand('count', terminals, stream, null, null, 0.1 * metres);
   });

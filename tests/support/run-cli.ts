@@ -41,6 +41,8 @@ export interface Scratch {
   path(...names: readonly string[]): string;
   /** Names in it, hidden ones too, sorted. */
   names(): string[];
+  /** Removes one thing in it. */
+  clear(name: string): void;
   remove(): void;
 }
 
@@ -50,6 +52,7 @@ export function makeScratch(): Scratch {
     folder,
     path: (...names) => join(folder, ...names),
     names: () => readdirSync(folder).sort(),
+    clear: (name) => rmSync(join(folder, name), { recursive: true, force: true }),
     remove: () => rmSync(folder, { recursive: true, force: true }),
   };
 }
