@@ -9,7 +9,9 @@ export const CREW = {
   next: 1,
   /** Chunks of the task that are done. */
   done: 2,
-  slots: 3,
+  /** Number of the last task of which a member could not do a chunk that it had taken. */
+  failed: 3,
+  slots: 4,
 } as const;
 /** Bits of `next` that count chunks. */
 export const CHUNK_BITS = 16;
@@ -87,6 +89,7 @@ export function startCrew(workers: number, spec: Spec, surfaces: ReadonlyMap<str
       for (let done = Atomics.load(words, CREW.done); done < chunks; done = Atomics.load(words, CREW.done)) {
         Atomics.wait(words, CREW.done, done, 1000);
       }
+      if (Atomics.load(words, CREW.failed) === id) mine(0, count);
     },
     close() {
       Atomics.store(words, CREW.task, -1);

@@ -12,13 +12,15 @@ import { afterAll, beforeAll, describe, expect, it } from 'vitest';
 
 const MAIN = new URL('../../dist/cli/main.js', import.meta.url).pathname;
 const VERSIONS = ['20.19.5', '22', '24'];
-const PRESETS = [
-  ['gel-block', '400'],
-  ['lobe', '200'],
-  ['hollow-wall', '200'],
-  ['bean', '100'],
-  ['explicit-points', null],
-] as const;
+const CASES: readonly (readonly [string, ...string[]])[] = [
+  ['gel-block', '--terminals', '400'],
+  ['lobe', '--terminals', '200'],
+  ['hollow-wall', '--terminals', '200'],
+  ['bean', '--terminals', '100'],
+  ['explicit-points'],
+  // Large enough for several threads, one of which is the only one elsewhere.
+  ['gel-block', '--terminals', '9000', '--refine', 'quick', '--workers', '3'],
+];
 
 describe('the same bytes', () => {
   const scratch = mkdtempSync(join(tmpdir(), 'nodes-'));
@@ -41,13 +43,14 @@ describe('the same bytes', () => {
   });
   afterAll(() => rmSync(scratch, { recursive: true, force: true }));
 
-  for (const [preset, terminals] of PRESETS) {
-    it(preset, () => {
+  for (const argv of CASES) {
+    const name = argv.join(' ');
+    it(name, () => {
       const sums = new Map<string, string>();
       for (const [version, binary] of binaries) {
-        const out = join(scratch, `${preset}-${version}`);
-        const count = terminals === null ? [] : ['--terminals', terminals];
-        const run = spawnSync(binary, [MAIN, 'grow', preset, ...count, '--out', out, '--quiet'], { encoding: 'utf8' });
+        const out = join(scratch, `${name}-${version}`);
+        const last = version === 'this' && argv.includes('--workers') ? ['--workers', '1'] : [];
+        const run = spawnSync(binary, [MAIN, 'grow', ...argv, ...last, '--out', out, '--quiet'], { encoding: 'utf8' });
         expect(run.status, `${version}: ${run.stderr}`).toBe(0);
         sums.set(
           version,
