@@ -18,11 +18,11 @@ const { instances } = JSON.parse(
 ) as { instances: Instance[] };
 
 /** First vessels a thousandth of the instance's size, so that no length or clearance binds (but where branchings collapse). */
-function steinerSpec(instance: Instance, refine: string) {
+function steinerSpec(instance: Instance, refine: string, seed = '1') {
   const radius = 1e-5;
   return specFromValue({
     name: instance.id,
-    seed: '1',
+    seed,
     tissue: { shape: 'box', min_mm: [-10, -20, -20], max_mm: [25, 20, 20] },
     trees: [
       {
@@ -66,10 +66,13 @@ describe('explicit terminals against exact branching optima', () => {
       expect(cost).toBeLessThanOrEqual(instance.optimalCost * 1.03);
     });
 
-    it(`${instance.id}: thorough is within a thousandth`, () => {
-      const cost = steinerCost(growRun(steinerSpec(instance, 'thorough'), new Map()).record.forest, total);
+    // Asked: within 10⁻⁶ for five of the six, within a thousandth for all, never below. G5d is the sixth: its collapsed
+    // branchings stay apart by what a junction needs to be meshed.
+    it.each(['1', '2', '3', '4'])(`${instance.id}: thorough is at the optimum, seed %s`, (seed) => {
+      const result = growRun(steinerSpec(instance, 'thorough', seed), new Map());
+      expect(result.check.held).toBe(true);
+      const cost = steinerCost(result.record.forest, total);
       expect(cost).toBeGreaterThanOrEqual(instance.optimalCost * (1 - 1e-9));
-      // Collapsed branchings (G5d) stay apart by what a junction needs to be meshed.
       expect(cost).toBeLessThanOrEqual(instance.optimalCost * (instance.id === 'G5d' ? 1.001 : 1 + 1e-6));
     });
   }
