@@ -1,14 +1,16 @@
 import type { Memory } from '../core/memory.ts';
 import type { Watch } from '../core/progress.ts';
 import type { StateIn, StateOut } from '../core/state.ts';
+import { NodeLook } from '../moves/node-look.ts';
 import { Potential } from '../moves/potential.ts';
 import { type ProposeOptions, Proposer } from '../moves/proposer.ts';
 import { Room, type RoomLimits, type RoomView } from '../room/room.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { type BuilderView, ForestBuilder } from '../tree/builder.ts';
 import type { Batch } from './batch.ts';
+import { LOOK_SLACK, lookAll, type MoveColumns } from './relaxer.ts';
 
-/** Sites looked at in one go by one member of a crew. */
+/** Sites or nodes looked at in one go by one member of a crew. */
 export const CHUNK = 32;
 
 /** Columns of a batch that proposals are read from and written to. */
@@ -24,7 +26,8 @@ export interface ProposalTask {
   readonly builder: BuilderView;
   readonly room: RoomView;
   readonly potential: Float64Array;
-  readonly batch: BatchColumns;
+  /** Sites to propose places for, or nodes to look for better places for. */
+  readonly work: { readonly sites: BatchColumns } | { readonly moves: MoveColumns };
 }
 
 /**
@@ -37,9 +40,10 @@ export interface Crew {
   /**
    * Has every chunk of a task worked on, and comes back when all are done.
    *
-   * @param mine works on the sites from … end − 1 of the batch's order, in the calling thread
+   * @param count sites or nodes of the task
+   * @param mine  works on those from … end − 1, in the calling thread
    */
-  work(task: ProposalTask, mine: (from: number, end: number) => void): void;
+  work(task: ProposalTask, count: number, mine: (from: number, end: number) => void): void;
 }
 
 /**
@@ -59,8 +63,8 @@ export interface GrowthOptions extends Watch {
 /** A member's own reader of a forest that another thread grows. */
 export class Desk {
   private readonly tissue: Tissue;
-  private reader: { builder: ForestBuilder; room: Room; potential: Potential; proposer: Proposer } | null = null;
-  private batch: BatchColumns | null = null;
+  private reader: Reader | null = null;
+  private work: ProposalTask['work'] | null = null;
 
   /** @param tissue the same as the grower's, built anew in this thread */
   constructor(tissue: Tissue) {
@@ -73,18 +77,30 @@ export class Desk {
       const builder = new ForestBuilder(task.builder.exponent, 1);
       const room = new Room(builder, this.tissue, task.limits, Number.MAX_VALUE);
       const potential = new Potential(builder);
-      this.reader = { builder, room, potential, proposer: new Proposer(builder, room, potential, task.options) };
+      const proposer = new Proposer(builder, room, potential, task.options);
+      this.reader = { builder, room, potential, proposer, look: new NodeLook(builder, room, LOOK_SLACK) };
     }
     this.reader.builder.adopt(task.builder);
     this.reader.room.adopt(task.room);
     this.reader.potential.values = task.potential;
-    this.batch = task.batch;
+    this.work = task.work;
   }
 
-  /** Proposes for the sites from … end − 1 of the task's order. */
+  /** Works on the sites or nodes from … end − 1 of the task. */
   propose(from: number, end: number): void {
-    proposeAll(this.reader!.proposer, this.batch!, from, end);
+    const { proposer, look, builder } = this.reader!;
+    const work = this.work!;
+    if ('sites' in work) proposeAll(proposer, work.sites, from, end);
+    else lookAll(look, builder, work.moves, from, end);
   }
+}
+
+interface Reader {
+  readonly builder: ForestBuilder;
+  readonly room: Room;
+  readonly potential: Potential;
+  readonly proposer: Proposer;
+  readonly look: NodeLook;
 }
 
 /** Looks for places for the sites from … end − 1 of a batch's order and writes what is found beside them. */

@@ -3,10 +3,8 @@ import { ownMemory } from '../core/memory.ts';
 import type { Watch } from '../core/progress.ts';
 import type { StateIn, StateOut } from '../core/state.ts';
 import { Attacher, type AttachOptions, type TerminalWeight } from '../moves/attach.ts';
-import { NodeMover } from '../moves/move-node.ts';
 import { Rehanger } from '../moves/rehang.ts';
 import { straighten } from '../moves/straighten.ts';
-import { flowWeight } from '../physics/murray.ts';
 import { Room } from '../room/room.ts';
 import { askedDrop, fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
 import type { Spec } from '../spec/types.ts';
@@ -17,6 +15,7 @@ import { type Crew, type GrowthOptions, type ProposalTask, proposeAll } from './
 import type { Demand } from './demand.ts';
 import { evict } from './evict.ts';
 import { mendByMoving } from './mend.ts';
+import { lookAll, Relaxer } from './relaxer.ts';
 import { Resizer } from './resize.ts';
 import { hangFirst, plant, type Seedling } from './seedling.ts';
 import { shareByTerritory } from './territories.ts';
@@ -38,12 +37,10 @@ const RESIZE = 1.15;
 const SHARE = 2;
 /** Growth between two sweeps that move nodes to their best places. */
 const RELAX = 1.15;
-/** Radii over today's that a moved node leaves room for, so that the tubes at it can still gain flow. */
-const RELAX_SLACK = 1.2;
 /** Subtrees that carry at least this part of their tree are hung anew now and then while it grows. */
 const COARSE = 1000;
-/** Gain, as a share of the cost of its tubes, for which a node is moved. */
-const RELAX_GAIN = 1e-3;
+/** Radii over today's that a subtree which is hung anew leaves room for. */
+const COARSE_SLACK = 1.2;
 /** Edge of a grid cell over the spacing of terminals. */
 const CELL = 0.9;
 /** Radius certified over radius needed. */
@@ -91,7 +88,7 @@ export class Grower {
   private readonly batch: Batch;
   private readonly options: AttachOptions;
   private readonly crew: Crew | null;
-  private readonly mover: NodeMover;
+  private readonly relaxer: Relaxer;
   private readonly rehanger: Rehanger;
   private nextRelax = 8;
   private relaxed = 0;
@@ -142,7 +139,7 @@ export class Grower {
       this.trees.push({ seedling, demand, resizer: new Resizer(spec, tree), resized, full: false });
     }
     this.batch = new Batch(tissue, MOST_BATCH, KEEP, memory);
-    this.mover = new NodeMover(builder, room, undefined, true);
+    this.relaxer = new Relaxer(builder, room, memory);
     this.options = {
       first: 8,
       second: 24,
@@ -319,22 +316,21 @@ export class Grower {
     const { tree, count } = batch;
     // A bare tree has no tube to hang on; its first terminal comes alone.
     if (count === 0 || this.trees[tree[0]!]!.demand.served === 0) return;
-    const mine = (from: number, end: number) => proposeAll(proposer, batch, from, end);
+    const { keep, order, share, position, proposed, row, at } = batch;
+    const sites = { count, keep, order, tree, share, position, proposed, row, at };
+    this.together({ sites }, count, (from, end) => proposeAll(proposer, batch, from, end));
+  }
+
+  /** Has a task worked on by all of the crew, or by this thread alone. */
+  private together(work: ProposalTask['work'], count: number, mine: (from: number, end: number) => void): void {
     if (this.crew === null || count < SHARED_BATCH) {
       mine(0, count);
       return;
     }
-    const { builder, room } = this;
-    const { keep, order, share, position, proposed, row, at } = batch;
-    const task: ProposalTask = {
-      options: this.options,
-      limits: room.limits,
-      builder: builder.view(),
-      room: room.view(),
-      potential: potential.values,
-      batch: { count, keep, order, tree, share, position, proposed, row, at },
-    };
-    this.crew.work(task, mine);
+    const { builder, room, options } = this;
+    const potential = this.attacher.potential.values;
+    const task = { options, limits: room.limits, builder: builder.view(), room: room.view(), potential, work };
+    this.crew.work(task, count, mine);
   }
 
   /** Hangs one of the sites in hand, or gives it back. */
@@ -422,10 +418,11 @@ export class Grower {
   /** Moves every node once; each tree is weighed as if its tubes had their least-power radii. */
   private relax(): void {
     const { builder, room } = this;
-    const weight = new Float64Array(builder.capacity);
-    for (let row = 0; row < builder.count; row++) weight[row] = flowWeight(builder.load[row]!);
-    room.slack = RELAX_SLACK;
-    for (let row = 0; row < builder.count; row++) this.mover.move(row, weight, RELAX_GAIN);
+    const { look } = this.relaxer.mover;
+    this.relaxer.sweep((moves) =>
+      this.together({ moves }, moves.count, (from, end) => lookAll(look, builder, moves, from, end)),
+    );
+    room.slack = COARSE_SLACK;
     if (++this.relaxed % 2 === 0) this.rehangCoarse();
     room.slack = 1;
     room.rebuild(this.cell());

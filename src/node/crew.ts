@@ -72,8 +72,7 @@ export function startCrew(workers: number, spec: Spec, surfaces: ReadonlyMap<str
   let id = 0;
   return {
     memory,
-    work(task, mine) {
-      const { count } = task.batch;
+    work(task, count, mine) {
       const chunks = Math.ceil(count / CHUNK);
       id++;
       Atomics.store(words, CREW.done, 0);

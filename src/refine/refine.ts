@@ -13,8 +13,6 @@ import { Course } from './course.ts';
 
 /** Rows whose subtrees are looked at in one step, so that a budget in seconds is kept on large trees. */
 const ROWS_A_STEP = 20_000;
-/** Shares of the way to its best place that a node tries. */
-const STEPS = [1, 0.5, 0.25, 0.1] as const;
 /** Gain of a change of topology over what it replaces, below which it is not made. */
 const LEAST_GAIN = 1e-6;
 /** Sweeps of node moves after each round of changes. */
@@ -100,7 +98,7 @@ class Refiner {
     this.room = room;
     this.spec = spec;
     this.options = options;
-    this.mover = new NodeMover(builder, room, STEPS, true);
+    this.mover = new NodeMover(builder, room);
     const { resume = null, budget } = options;
     this.course = new Course(resume);
     this.wholes = resume === null ? wholeLoads(builder) : Array.from(resume.reals('wholes'));
@@ -204,7 +202,8 @@ class Refiner {
     if (this.isPast()) return this.endStep();
     const { builder, mover, weight } = this;
     this.work++;
-    for (let row = 0; row < builder.count; row++) mover.move(row, weight, 0);
+    const weigh = (row: number) => weight[row]!;
+    for (let row = 0; row < builder.count; row++) mover.move(row, weigh, 0);
     return this.endStep();
   }
 
