@@ -1,4 +1,4 @@
-import type { ForestBuilder } from '../../src/tree/builder.ts';
+import { type ForestBuilder, FREED } from '../../src/tree/builder.ts';
 
 /**
  * The plain twin of all that moves keep up to date: a forest as it follows from who hangs on whom, where nodes are and
@@ -54,16 +54,25 @@ export function plainForestCost(builder: ForestBuilder, perLength: (load: number
   return cost;
 }
 
-/** Every column of the rows in use, and which rows are not, to compare with `toEqual`. */
-export function columnsOf(builder: ForestBuilder) {
+/** Numbers of a row in `columnsOf`. */
+const COLUMNS = 9;
+
+/** Every column of the rows in use, row by row; rows that are not in use are left blank, those at the end left out. */
+export function columnsOf(builder: ForestBuilder): Float64Array {
   const { count, parent, child, tree, position, load, weight } = builder;
   let end = count;
-  // Rows at the end that were taken and given back count for nothing.
-  while (end > 0 && parent[end - 1] === -2) end--;
-  const used = (k: number) => parent[k]! !== -2;
-  return Array.from({ length: end }, (_, k) =>
-    used(k)
-      ? [parent[k], child[2 * k], child[2 * k + 1], tree[k], ...position.slice(3 * k, 3 * k + 3), load[k], weight[k]]
-      : null,
-  );
+  while (end > 0 && parent[end - 1] === FREED) end--;
+  const columns = new Float64Array(COLUMNS * end);
+  for (let k = 0; k < end; k++) {
+    if (parent[k] === FREED) continue;
+    const row = [parent[k]!, child[2 * k]!, child[2 * k + 1]!, tree[k]!, load[k]!, weight[k]!];
+    columns.set(row, COLUMNS * k);
+    for (let i = 0; i < 3; i++) columns[COLUMNS * k + row.length + i] = position[3 * k + i]!;
+  }
+  return columns;
+}
+
+/** Whether two forests' columns are the same, bit for bit. */
+export function sameColumns(a: Float64Array, b: Float64Array): boolean {
+  return a.length === b.length && a.every((value, k) => Object.is(value, b[k]));
 }

@@ -2,7 +2,7 @@ import type { Room } from '../../src/room/room.ts';
 import { junctionExponent } from '../../src/sizing/size-tree.ts';
 import type { Spec } from '../../src/spec/types.ts';
 import { judgeForest } from './forest-judge.ts';
-import { columnsOf, plainForest, plainForestCost } from './plain-forest.ts';
+import { columnsOf, plainForest, plainForestCost, sameColumns } from './plain-forest.ts';
 
 /**
  * Power per length (W/m) of a load, written out: least-power radii from the flow, others from the inlet's radius by the
@@ -44,13 +44,13 @@ export function watchMoves(room: Room, spec: Spec, count: number, move: (k: numb
   const { builder } = room;
   const perLength = plainPowerPerLength(room, spec);
   const watched: Watched = { accepted: 0, refused: 0, faults: [], cost: plainForestCost(builder, perLength) };
-  let columns = JSON.stringify(columnsOf(builder));
+  let columns = columnsOf(builder);
   for (let k = 0; k < count && watched.faults.length === 0; k++) {
     const gain = move(k);
-    const after = JSON.stringify(columnsOf(builder));
+    const after = columnsOf(builder);
     if (gain === 0) {
       watched.refused++;
-      if (after !== columns) watched.faults.push(`move ${k}: refused, but the forest has changed`);
+      if (!sameColumns(after, columns)) watched.faults.push(`move ${k}: refused, but the forest has changed`);
       continue;
     }
     watched.accepted++;

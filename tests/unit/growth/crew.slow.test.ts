@@ -48,19 +48,21 @@ describe('a crew', () => {
     const lot = randomStream('who', 'lot');
     const desks = [0, 1].map(() => new Desk(buildTissue(SPEC.tissue, new Map())));
     let chunks = 0;
+    const tasks = { sites: 0, moves: 0 };
     const shared = grow((grower) => ({
       memory: (bytes) => new SharedArrayBuffer(bytes),
-      work(task, mine) {
+      work(task, count, mine) {
         const { room, builder } = grower();
+        tasks['sites' in task.work ? 'sites' : 'moves']++;
         let seen = 0;
         for (let row = 0; row < builder.count; row++) if (task.room.reserve[row] === room.reserveOf(row)) seen++;
         expect(seen, 'a change that was tried is still open').toBe(builder.count);
         for (const desk of desks) desk.open(task);
-        const order = Array.from({ length: Math.ceil(task.batch.count / CHUNK) }, (_, k) => k);
+        const order = Array.from({ length: Math.ceil(count / CHUNK) }, (_, k) => k);
         while (order.length > 0) {
           const [chunk] = order.splice(Math.floor(lot.next() * order.length), 1);
           const from = chunk! * CHUNK;
-          const end = Math.min(task.batch.count, from + CHUNK);
+          const end = Math.min(count, from + CHUNK);
           const who = Math.floor(3 * lot.next());
           if (who === 2) mine(from, end);
           else desks[who]!.propose(from, end);
@@ -69,6 +71,7 @@ describe('a crew', () => {
       },
     }));
     expect(chunks).toBeGreaterThan(20);
+    expect(Math.min(tasks.sites, tasks.moves)).toBeGreaterThan(3);
     expect(shared.count).toBe(alone.count);
     for (const column of ['parent', 'position', 'flow', 'radius'] as const)
       expect(Buffer.compare(bytesOf(shared[column]), bytesOf(alone[column])), column).toBe(0);

@@ -22,7 +22,7 @@ const CASES = [
 ] as const;
 
 /** Moves of a kind until enough of them were made. */
-const ENOUGH = 40;
+const ENOUGH = 25;
 
 function stage(exponent: (typeof CASES)[number][0], crowding: (typeof CASES)[number][1]) {
   const { grower, spec } = growCrowded({ exponent, crowding, terminals: 70 });
@@ -40,17 +40,15 @@ function expectHeld(watched: Watched, least: number): void {
 
 describe.each(CASES)('%s, %s', (exponent, crowding) => {
   it.each([
-    ['straight to its place', false, 1],
-    ['slipping aside', true, 1],
-    ['with room to grow left', true, 1.2],
-  ] as const)('a node moved %s', (_, aside, slack) => {
+    ['where it costs less', 1],
+    ['with room left for growth', 1.2],
+  ] as const)('a node moved %s', (_, slack) => {
     const { builder, room, spec, rows } = stage(exponent, crowding);
-    const mover = new NodeMover(builder, room, [1, 0.5, 0.25, 0.1], aside);
+    const mover = new NodeMover(builder, room, slack);
     const weight = tubeWeights(builder, spec);
-    room.slack = slack;
     let moved = 0;
     const watched = watchMoves(room, spec, rows.length, (k) => {
-      if (moved >= ENOUGH || !mover.move(rows[k]!, weight, 0)) return 0;
+      if (moved >= ENOUGH || !mover.move(rows[k]!, (row) => weight[row]!, 0)) return 0;
       moved++;
       return 'saved';
     });

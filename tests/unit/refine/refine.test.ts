@@ -31,7 +31,7 @@ function refine(kind: Kind, options: CrowdedOptions, stopAt = Number.POSITIVE_IN
       return step >= stopAt;
     },
   });
-  return { result, costs, faults, before, after: cost(), columns: JSON.stringify(columnsOf(builder)) };
+  return { result, costs, faults, before, after: cost(), columns: columnsOf(builder) };
 }
 
 const FORESTS: readonly CrowdedOptions[] = [
@@ -59,7 +59,7 @@ describe.each(FORESTS)('refining a forest ($exponent, $crowding)', (options) => 
     }
     expect(result.stopped).toBe(kind === 'steps' ? 'budget' : 'converged');
     if (kind === 'steps') expect(result.steps).toBe(7);
-    expect(refine(kind, options).columns).toBe(columns);
+    expect(refine(kind, options).columns).toEqual(columns);
   });
 
   it('ends after the step that was enough, and as many steps asked for come to the same', () => {
@@ -67,7 +67,7 @@ describe.each(FORESTS)('refining a forest ($exponent, $crowding)', (options) => 
     expect(stopped.result).toMatchObject({ steps: 4, stopped: 'budget' });
     const thorough = refine('thorough', options, 4);
     expect(thorough.result.steps).toBe(4);
-    expect(refine('steps', options, 4).columns).toBe(stopped.columns);
+    expect(refine('steps', options, 4).columns).toEqual(stopped.columns);
   });
 
   it('harder budgets are not dearer by more than luck', () => {
@@ -88,10 +88,10 @@ const SIZINGS = [
 ] as const;
 
 describe.each(SIZINGS)('a run with %s radii', (_, sizing, most) => {
-  const run = (refine: string | number, seed = 'a') => {
+  const run = (refine: string | number) => {
     const result = growRun(
       specFromValue({
-        seed,
+        seed: 'a',
         tissue: { shape: 'box', min_mm: [0, 0, 0], max_mm: [12, 12, 6] },
         trees: [
           {
@@ -111,10 +111,10 @@ describe.each(SIZINGS)('a run with %s radii', (_, sizing, most) => {
     return { result, forest, cost: pumping + keeping };
   };
 
-  it.each(['a', 'b'])('holds every promise and costs no more, whatever the budget, seed %s', (seed) => {
-    const grown = run('none', seed);
+  it('holds every promise and costs no more, whatever the budget', () => {
+    const grown = run('none');
     for (const refine of ['quick', 'thorough', 'annealed', 5]) {
-      const refined = run(refine, seed);
+      const refined = run(refine);
       expect(refined.result.check.promises.filter(({ held }) => held === false)).toEqual([]);
       expect(refined.result.stopped).toBe('complete');
       expect(refined.cost / grown.cost, String(refine)).toBeLessThan(most);
