@@ -4,7 +4,6 @@ import type { Watch } from '../core/progress.ts';
 import type { StateIn, StateOut } from '../core/state.ts';
 import { Attacher, type AttachOptions, type TerminalWeight } from '../moves/attach.ts';
 import { Rehanger } from '../moves/rehang.ts';
-import { straighten } from '../moves/straighten.ts';
 import { Room } from '../room/room.ts';
 import { askedDrop, fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
 import type { Spec } from '../spec/types.ts';
@@ -13,11 +12,11 @@ import { ForestBuilder } from '../tree/builder.ts';
 import { Batch } from './batch.ts';
 import { type Crew, type GrowthOptions, type ProposalTask, proposeAll } from './crew.ts';
 import type { Demand } from './demand.ts';
-import { evict } from './evict.ts';
-import { mendByMoving } from './mend.ts';
 import { lookAll, Relaxer } from './relaxer.ts';
 import { Resizer } from './resize.ts';
 import { hangFirst, plant, type Seedling } from './seedling.ts';
+import { Settler } from './settler.ts';
+import { takeSites } from './take-sites.ts';
 import { shareByTerritory } from './territories.ts';
 
 /** Growth of the whole forest between two refreshes of potentials and sizes. */
@@ -83,8 +82,7 @@ export class Grower {
   private siteOf: Int32Array = new Int32Array(1024).fill(-1);
   /** Set when a first vessel needs a wider stub than was planted: the tree must be planted anew. */
   cramped = false;
-  /** Vessels that were made to fit by moving a node. */
-  private mended = 0;
+  private readonly settler: Settler;
   private readonly batch: Batch;
   private readonly options: AttachOptions;
   private readonly crew: Crew | null;
@@ -139,6 +137,7 @@ export class Grower {
       this.trees.push({ seedling, demand, resizer: new Resizer(spec, tree), resized, full: false });
     }
     this.batch = new Batch(tissue, MOST_BATCH, KEEP, memory);
+    this.settler = new Settler(builder, room, HEADROOM);
     this.relaxer = new Relaxer(builder, room, memory);
     this.options = {
       first: 8,
@@ -173,7 +172,7 @@ export class Grower {
     for (let told = this.served; ; ) {
       if (this.watch.signal?.aborted) return 'cancelled';
       if (this.cramped) return 'no-room';
-      this.fillBatch();
+      takeSites(batch, this.trees, Math.min(Math.max(1, Math.floor(BATCH * this.served)), MOST_BATCH));
       if (batch.count === 0) break;
       batch.sort();
       this.propose();
@@ -216,10 +215,10 @@ export class Grower {
       for (let t = 0; t < this.trees.length; t++) this.shareByTerritory(t);
       for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.resized) this.resize(t, true);
       const again = round < ROUNDS;
-      const moved = this.mended;
+      const moved = this.settler.mended;
       const evicted = this.settleAll(again);
       // A node that was moved has changed lengths, and with them radii: only a sizing that changes nothing is the last.
-      const calm = evicted === 0 && this.mended === moved;
+      const calm = evicted === 0 && this.settler.mended === moved;
       if ((calm && (this.served === this.wanted || !again || patience === 0)) || round >= MOST_ROUNDS) break;
       if (!again) continue;
       const before = this.served;
@@ -241,7 +240,7 @@ export class Grower {
   misfits(): number[] {
     const rows: number[] = [];
     for (let row = 0; row < this.builder.count; row++) {
-      if (this.builder.parent[row]! >= 0 && this.room.outgrown(row) && !this.settle(row)) rows.push(row);
+      if (this.builder.parent[row]! >= 0 && this.room.outgrown(row) && !this.settler.settle(row)) rows.push(row);
     }
     return rows;
   }
@@ -266,53 +265,11 @@ export class Grower {
     return shareByTerritory(this.builder, t, this.tissue, this.trees[t]!.demand, (row) => this.siteOf[row]!);
   }
 
-  /** Takes sites in hand, from the tree that has served the least part of its demand first. */
-  private fillBatch(): void {
-    const { batch } = this;
-    batch.clear();
-    const inHand = new Int32Array(this.trees.length);
-    const most = Math.min(Math.max(1, Math.floor(BATCH * this.served)), MOST_BATCH);
-    while (batch.count < most) {
-      const t = this.hungriest(inHand);
-      if (t < 0) return;
-      const { demand } = this.trees[t]!;
-      // A tree's first terminal is hung alone: there is no tube yet that another could be proposed for.
-      if (demand.served === 0 && batch.count > 0) return;
-      if (!demand.next()) {
-        this.trees[t]!.full = true;
-        continue;
-      }
-      const { site } = demand;
-      inHand[t]!++;
-      batch.add(t, site, demand.siteX(site), demand.siteY(site), demand.siteZ(site), demand.siteShare(site));
-      if (demand.served === 0) return;
-    }
-  }
-
-  /** Index of the tree that has served the least part of its demand, or −1 when all are full or served. */
-  private hungriest(inHand: Int32Array): number {
-    let best = -1;
-    let least = Infinity;
-    for (let t = 0; t < this.trees.length; t++) {
-      const { demand, full } = this.trees[t]!;
-      const taken = demand.served + inHand[t]!;
-      if (full || taken >= demand.wanted) continue;
-      const part = taken / demand.wanted;
-      if (part < least) {
-        least = part;
-        best = t;
-      }
-    }
-    return best;
-  }
-
   /** Looks for places for all sites in hand, against the forest as it stands. */
   private propose(): void {
     const { batch } = this;
     const { proposer, potential } = this.attacher;
     potential.follow();
-    // Members of a crew do not see what a transaction that failed has left behind, so nobody may.
-    this.room.begin();
     const { tree, count } = batch;
     // A bare tree has no tube to hang on; its first terminal comes alone.
     if (count === 0 || this.trees[tree[0]!]!.demand.served === 0) return;
@@ -323,6 +280,8 @@ export class Grower {
 
   /** Has a task worked on by all of the crew, or by this thread alone. */
   private together(work: ProposalTask['work'], count: number, mine: (from: number, end: number) => void): void {
+    // Members of a crew do not see what a transaction that failed has left behind, so nobody may.
+    this.room.begin();
     if (this.crew === null || count < SHARED_BATCH) {
       mine(0, count);
       return;
@@ -401,7 +360,8 @@ export class Grower {
       }
     }
     if (changed && this.settleAll(true) > 0) {
-      for (let t = 0; t < this.trees.length; t++) if (this.trees[t]!.demand.served > 0) this.straightenAll(t);
+      for (let t = 0; t < this.trees.length; t++)
+        if (this.trees[t]!.demand.served > 0) this.settler.straightenAll(this.builder.preorder(t));
     }
     this.refreshPotentials();
   }
@@ -438,7 +398,8 @@ export class Grower {
    * potentials and what else is refreshed before its next use is not in it.
    */
   save(out: StateOut): void {
-    const { mended, relaxed, nextRelax, nextRefresh, nextResize, nextShare, finishes } = this;
+    const { mended } = this.settler;
+    const { relaxed, nextRelax, nextRefresh, nextResize, nextShare, finishes } = this;
     const flags = [this.cramped, this.owesRefresh].map(Number);
     const numbers = [mended, relaxed, nextRelax, nextRefresh, nextResize, nextShare, finishes, ...flags];
     out.list('numbers', 'f64', numbers);
@@ -456,7 +417,7 @@ export class Grower {
   /** Becomes the grower that was saved; made of the same spec, guess and, restored already, demands. */
   restore(from: StateIn): void {
     const numbers = from.reals('numbers');
-    this.mended = numbers[0]!;
+    this.settler.mended = numbers[0]!;
     this.relaxed = numbers[1]!;
     this.nextRelax = numbers[2]!;
     this.nextRefresh = numbers[3]!;
@@ -497,89 +458,20 @@ export class Grower {
     this.builder.inletRadius[t] = final ? exact : planted / SPARE;
   }
 
-  /**
-   * Certifies every vessel that has outgrown its reserve and evicts what does not fit.
-   *
-   * @param again whether evicted sites are to be tried again
-   * @returns number of terminals evicted
-   */
+  /** Makes all vessels fit with their present radii; evicted sites are tried again or given up. */
   private settleAll(again: boolean): number {
     let evicted = 0;
     for (let t = 0; t < this.trees.length; t++) {
-      if (this.trees[t]!.demand.served === 0) continue;
-      const order = this.builder.preorder(t);
-      for (let k = 1; k < order.length; k++) {
-        const row = order[k]!;
-        // An eviction further up may have taken the row, or given it to another place.
-        for (let tries = 0; tries < 8 && this.builder.parent[row]! >= 0 && this.room.outgrown(row); tries++) {
-          if (this.settle(row)) break;
-          if (mendByMoving(this.builder, this.room, row, HEADROOM)) {
-            this.mended++;
-            break;
-          }
-          this.settle(row);
-          const gone = this.evictFor(row, again);
-          if (gone === 0) break;
-          evicted += gone;
-        }
-      }
+      const { demand } = this.trees[t]!;
+      if (demand.served === 0) continue;
+      evicted += this.settler.settleAll(this.builder.preorder(t), (terminal) => {
+        const { demand: theirs } = this.trees[this.builder.tree[terminal]!]!;
+        if (again) theirs.giveBack(this.siteOf[terminal]!, true);
+        else theirs.served--;
+        this.siteOf[terminal] = -1;
+      });
     }
     return evicted;
-  }
-
-  private settle(row: number): boolean {
-    const { room, builder } = this;
-    room.begin();
-    if (!room.certify(row, HEADROOM)) return false;
-    if (!room.fits(row) || !room.fits(builder.parent[row]!)) return false;
-    room.commit();
-    return true;
-  }
-
-  /** Evicts the smaller of the vessels that a refused row stands against. */
-  private evictFor(row: number, again: boolean): number {
-    const { room, builder } = this;
-    const victim = this.lightest(row);
-    let count = 0;
-    const t = builder.tree[victim]!;
-    const { demand } = this.trees[t]!;
-    evict(builder, room, victim, (terminal) => {
-      count++;
-      if (again) demand.giveBack(this.siteOf[terminal]!, true);
-      else demand.served--;
-      this.siteOf[terminal] = -1;
-    });
-    return count;
-  }
-
-  /** The least vessel whose going could make room for a refused row: itself, what blocks it, or a side branch near by. */
-  private lightest(row: number): number {
-    const { room, builder } = this;
-    const { blocker } = room;
-    if (room.refusal === 'vessel') return builder.load[blocker]! < builder.load[row]! ? blocker : row;
-    if (room.refusal !== 'junction') return row;
-    let best = -1;
-    const consider = (node: number) => {
-      const b = node < 0 ? -1 : builder.child[2 * node + 1]!;
-      if (b < 0) return;
-      const a = builder.child[2 * node]!;
-      const lesser = builder.load[a]! <= builder.load[b]! ? a : b;
-      if (best < 0 || builder.load[lesser]! < builder.load[best]!) best = lesser;
-    };
-    // A tube is too short for the balls at its ends, or an angle too small: a side branch at either end makes them so.
-    consider(blocker);
-    consider(builder.parent[blocker]!);
-    for (let k = 0; k < 2; k++) consider(builder.child[2 * blocker + k]!);
-    if (best < 0) return row;
-    return builder.load[best]! <= builder.load[row]! ? best : row;
-  }
-
-  /** Straightens bends that evictions have left, where the straight vessel fits. */
-  private straightenAll(t: number): void {
-    for (const row of this.builder.preorder(t)) {
-      if (this.builder.parent[row]! >= 0 && this.builder.childCount(row) === 1)
-        straighten(this.builder, this.room, row);
-    }
   }
 
   private keepSite(row: number, site: number): void {
