@@ -99,7 +99,7 @@ function snapshotOf(options: GrowArguments, clock: RefineClock, talk: Talk): Sna
   return {
     every: asked === undefined ? SNAPSHOT_PAUSE : Number(asked),
     resume,
-    onReady: (ready) => talk.io.resumable?.(ready),
+    onPlace: (place) => talk.io.resumable?.(place),
     onTrouble: (why) => talk.note(why),
     clock,
   };

@@ -9,7 +9,7 @@ export interface Io extends WriteGuard {
   err(text: string): void;
   /** Shows how far work has come, if anybody is watching; null takes the display away. */
   progress(progress: Progress | null): void;
-  /** Told where a snapshot lies from which the command could go on, were it interrupted now. */
+  /** Told where a snapshot lies, or is about to, from which the command could go on, were it interrupted. */
   resumable?(path: string): void;
   /** Comes back when the user ends a command that runs until then. */
   untilInterrupted(): Promise<void>;

@@ -1,5 +1,5 @@
 #!/usr/bin/env node
-import { rmSync } from 'node:fs';
+import { existsSync, rmSync } from 'node:fs';
 import { MessageChannel, receiveMessageOnPort, Worker } from 'node:worker_threads';
 import { EXIT } from './exit-codes.ts';
 import { TURN, type WorkerMessage, type WorkerStart } from './messages.ts';
@@ -83,7 +83,8 @@ async function interrupt(): Promise<void> {
   await worker.terminate();
   settle();
   if (endsByInterrupt) process.exit(EXIT.held);
-  const goOn = resumable === null ? '' : `; the same command with --resume goes on from ${resumable}`;
+  const goOn =
+    resumable === null || !existsSync(resumable) ? '' : `; the same command with --resume goes on from ${resumable}`;
   process.stderr.write(`interrupted: nothing is half-written${goOn}\n`);
   process.exit(EXIT.interrupted);
 }

@@ -10,7 +10,7 @@ export type WorkerMessage =
   | { readonly kind: 'progress'; readonly progress: Progress | null }
   /** A path that is to be removed should the work be cut short. */
   | { readonly kind: 'temporary'; readonly path: string }
-  /** A snapshot from which the work could go on lies at this path. */
+  /** A snapshot from which the work could go on lies at this path, or is about to. */
   | { readonly kind: 'resumable'; readonly path: string }
   /** From now on Ctrl-C is the normal end. */
   | { readonly kind: 'until-interrupted' }

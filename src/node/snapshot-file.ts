@@ -28,8 +28,8 @@ export interface SnapshotOptions {
   readonly every: number;
   /** Whether to go on from the snapshot that is there. */
   readonly resume: boolean;
-  /** Told when a snapshot is there to go on from. */
-  readonly onReady?: ((path: string) => void) | undefined;
+  /** Told where a snapshot to go on from lies, or is about to. */
+  readonly onPlace?: ((path: string) => void) | undefined;
   /** Told once why no snapshot can be written; the run goes on without. */
   readonly onTrouble?: ((why: string) => void) | undefined;
   /** Time spent that a budget counts: asked when the run is saved, told when it goes on. */
@@ -73,7 +73,7 @@ export class SnapshotFile {
    * @throws InputError where there is no snapshot, or it is broken or of other work
    */
   withSaved<T>(step: (saved: StateIn | undefined) => T): T {
-    const { resume, clock, onReady } = this.#options;
+    const { resume, clock, onPlace } = this.#options;
     if (!resume) return step(undefined);
     const path = this.#path;
     if (!existsSync(path) || !statSync(path).isFile()) {
@@ -81,10 +81,10 @@ export class SnapshotFile {
       throw inputError('snapshot', '--resume', message);
     }
     withFiles('--resume', path, 'a snapshot', () => accessSync(path, constants.R_OK));
+    onPlace?.(path);
     return withSource(path, path, (source) => {
       const saved = new StateIn(openState(source, this.#head));
       clock?.goOn(saved.reals('clock')[0]!);
-      onReady?.(path);
       return step(saved);
     });
   }
@@ -96,9 +96,9 @@ export class SnapshotFile {
     const out = new StateOut();
     out.list('clock', 'f64', [this.#options.clock?.spent() ?? 0]);
     save(out);
+    this.#options.onPlace?.(this.#path);
     try {
       writeFiles([{ path: this.#path, content: () => encodeState(this.#head, out.columns) }], this.#writing);
-      this.#options.onReady?.(this.#path);
     } catch (error) {
       if (!(error instanceof InputError)) throw error;
       this.#broken = true;

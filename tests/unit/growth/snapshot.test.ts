@@ -1,8 +1,10 @@
 import { describe, expect, test } from 'vitest';
 import { splitTreePath } from '../../../src/formats/tree-formats.ts';
+import { growForest } from '../../../src/growth/grow.ts';
 import { type GrowOptions, growRun } from '../../../src/run.ts';
 import { specFromValue } from '../../../src/spec/parse.ts';
 import type { Spec } from '../../../src/spec/types.ts';
+import { buildTissue } from '../../../src/tissue/build-tissue.ts';
 import { openBytes, savedBytes } from '../../support/saved-states.ts';
 
 /* Saved at any moment and gone on with from its bytes alone, a run comes to the same tree file as one that never stopped. */
@@ -102,5 +104,45 @@ describe.each(Object.keys(SPECS))('%s', (name) => {
       if (next === null) break;
       state = next;
     }
+  });
+});
+
+/**
+ * Fields of what is saved. A field whose value outlives a step must be in the state; who adds one decides here where it
+ * belongs, and saves it if it must be.
+ */
+const SAVED = {
+  grower:
+    'builder room trees cramped settler siteOf relaxed nextRelax nextRefresh nextResize nextShare finishes owesRefresh',
+  settler: 'mended',
+  builder: 'count parent child tree position load weight roots inletRadius free',
+  room: 'reserve',
+  demand: `wanted served site territory stream waiting dropped due tries x y z shares fresh places failures measured
+    minDepth`,
+  resizer: 'exact fall rise history',
+};
+/** Made again from spec, guess and tissue, or filled anew before each use. */
+const FOLLOWS = {
+  grower: 'planted attacher tissue watch wanted batch options crew sweeper rehanger onMoment onForest',
+  settler: 'builder room headroom',
+  builder: 'exponent memory cutTree cutWhole',
+  room: `builder tissue limits refusal blocker pinned exempt slack listed pending stamp round touched fresh memory grid
+    floor wall span`,
+  demand: 'by byTerritory',
+  resizer: 'spec tree drop',
+};
+
+describe('every field is saved or follows from what is', () => {
+  const spec = specFromValue({ tissue: BOX, trees: [{ inlet: LEFT, terminals: { count: 20 } }] });
+  const { grower } = growForest(spec, buildTissue(spec.tissue, new Map()));
+  const { demand, resizer } = grower.trees[0]!;
+  const settler = (grower as unknown as { settler: object }).settler;
+  const things = { grower, settler, builder: grower.builder, room: grower.room, demand, resizer };
+  test.each(Object.keys(SAVED) as (keyof typeof SAVED)[])('of the %s', (kind) => {
+    const fields = Object.keys(things[kind]);
+    const saved = SAVED[kind].split(/\s+/);
+    const follows = FOLLOWS[kind].split(/\s+/);
+    expect(fields.filter((field) => !saved.includes(field) && !follows.includes(field))).toEqual([]);
+    expect(saved.filter((field) => !fields.includes(field))).toEqual([]);
   });
 });
