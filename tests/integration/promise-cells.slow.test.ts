@@ -1,0 +1,24 @@
+import { describe, expect, test } from 'vitest';
+import { findSize, RULES, runCell, TISSUES, type TissueName } from '../support/promise-cells.ts';
+
+/* A slice of `npm run bench promises`: every tissue, rule and vessel volume, but few terminals and two seeds. */
+
+const TERMINALS = 600;
+
+describe.each(Object.keys(TISSUES) as TissueName[])('%s', (tissue) => {
+  test.each(RULES.flatMap((rule) => [0.01, 0.05, 0.1].map((volume) => ({ rule, volume }))))(
+    '$rule at $volume vessel: every promise holds, and all but a few terminals are served',
+    ({ rule, volume }) => {
+      const cell = { tissue, rule, volume };
+      const size = findSize(cell, 300);
+      for (const seed of ['1', '2']) {
+        for (const refine of seed === '1' ? ['none'] : ['quick']) {
+          const run = runCell(cell, size, TERMINALS, seed, refine);
+          expect(run.broken, `seed ${seed}, ${refine}, size ${size}`).toEqual([]);
+          expect(run.volume / volume).toBeGreaterThan(0.5);
+          if (volume < 0.1) expect(run.served / TERMINALS).toBeGreaterThanOrEqual(0.995);
+        }
+      }
+    },
+  );
+});
