@@ -5,11 +5,12 @@ import { randomStream } from './core/random.ts';
 import type { Reals } from './core/reals.ts';
 import type { TriangleSurface } from './core/surface.ts';
 import { solveFlow } from './flow/solve.ts';
-import type { GrowthOptions } from './growth/crew.ts';
 import { freezeWithTerritories } from './growth/freeze.ts';
 import { type Growth, growForest } from './growth/grow.ts';
 import type { Stopped } from './growth/grower.ts';
+import type { GrowthOptions } from './growth/options.ts';
 import { saveGrown } from './growth/snapshot.ts';
+import { costOf, tubeWeights } from './refine/cost.ts';
 import { type Budget, type RefineResult, refineForest } from './refine/refine.ts';
 import type { Spec, TreeSpec } from './spec/types.ts';
 import { specToJson } from './spec/write.ts';
@@ -60,7 +61,10 @@ export function growRun(
 ): GrowResult {
   const tissue = buildTissue(spec.tissue, surfaces, spec.forbidden, spec.demand);
   refusePointsOutside(spec, tissue);
-  const best = growBest(spec, tissue, options);
+  const best = growBest(spec, tissue, {
+    ...options,
+    onForest: (builder) => options.onCost?.('growth', costOf(builder, tubeWeights(builder, spec))),
+  });
   const { grower } = best.growth;
   let stopped = best.growth.stopped;
   let refine: RefineResult | null = best.refine;
@@ -70,8 +74,10 @@ export function growRun(
   }
   if (stopped !== 'cancelled') stopped = grower.finish();
   const used: Spec = options.refineEnough !== undefined && refine !== null ? { ...spec, refine: refine.steps } : spec;
+  options.onProgress?.({ stage: 'flow', done: 0, total: 1 });
   const { forest, territory } = freezeWithTerritories(grower, spec);
   const record = solveRecord(forest, used, territory);
+  options.onProgress?.({ stage: 'check', done: 0, total: 1 });
   const check = checkTree(record, used, surfaces);
   const shortfalls = spec.trees.flatMap((tree, t) => tellUnserved(tree, t, grower));
   return { spec: used, record, tissue, check, stopped, shortfalls };
@@ -144,6 +150,7 @@ function refineGrowth(growth: Growth, spec: Spec, options: GrowOptions): RefineR
   const timed = options.refineEnough !== undefined;
   return refineForest(builder, room, spec, {
     budget: timed ? { kind: 'steps', steps: MOST_STEPS } : budgetOf(spec),
+    crew: options.crew,
     onProgress: options.onProgress,
     signal: options.signal,
     onMoment: (save) =>

@@ -1,10 +1,10 @@
 import { fixedInletRadius } from '../sizing/size-tree.ts';
 import type { Spec, TreeSpec } from '../spec/types.ts';
 import type { Tissue } from '../tissue/tissue.ts';
-import type { GrowthOptions } from './crew.ts';
 import type { Demand } from './demand.ts';
 import { demandOf } from './demand-of.ts';
 import { firstGuess, Grower, SPARE, type Stopped } from './grower.ts';
+import type { GrowthOptions } from './options.ts';
 import { type Begun, restoreGrowth, withMoments } from './snapshot.ts';
 
 /** Terminals of the small tree that is grown first where radii depend on the tree's lengths; a twentieth if that is more. */

@@ -3,16 +3,18 @@ import { ownMemory } from '../core/memory.ts';
 import type { Watch } from '../core/progress.ts';
 import type { StateIn, StateOut } from '../core/state.ts';
 import { Attacher, type AttachOptions, type TerminalWeight } from '../moves/attach.ts';
+import { type Crew, workTogether } from '../moves/crew.ts';
+import { proposeAll } from '../moves/propose-all.ts';
 import { Rehanger } from '../moves/rehang.ts';
+import { Sweeper } from '../moves/sweeper.ts';
 import { Room } from '../room/room.ts';
 import { askedDrop, fixedInletRadius, junctionExponent } from '../sizing/size-tree.ts';
 import type { Spec } from '../spec/types.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import { ForestBuilder } from '../tree/builder.ts';
 import { Batch } from './batch.ts';
-import { type Crew, type GrowthOptions, type ProposalTask, proposeAll } from './crew.ts';
 import type { Demand } from './demand.ts';
-import { lookAll, Relaxer } from './relaxer.ts';
+import type { GrowthOptions } from './options.ts';
 import { Resizer } from './resize.ts';
 import { hangFirst, plant, type Seedling } from './seedling.ts';
 import { Settler } from './settler.ts';
@@ -24,8 +26,6 @@ const REFRESH = 1.05;
 /** Sites in hand at once, as a share of the terminals served, and at most. */
 const BATCH = 0.02;
 const MOST_BATCH = 8192;
-/** Sites in hand from which on a crew is worth calling. */
-const SHARED_BATCH = 128;
 /** Lengths at a new junction over those that would just do. */
 const PLACE_SLACK = 1.2;
 /** Placements proposed for each. */
@@ -38,6 +38,10 @@ const SHARE = 2;
 const RELAX = 1.15;
 /** Subtrees that carry at least this part of their tree are hung anew now and then while it grows. */
 const COARSE = 1000;
+/** Radii over today's that a moved node leaves room for, so that the tubes at it can still gain flow. */
+const SWEEP_SLACK = 1.2;
+/** Gain, as a share of the cost of its tubes, for which a node is moved. */
+const SWEEP_GAIN = 1e-3;
 /** Radii over today's that a subtree which is hung anew leaves room for. */
 const COARSE_SLACK = 1.2;
 /** Edge of a grid cell over the spacing of terminals. */
@@ -86,7 +90,7 @@ export class Grower {
   private readonly batch: Batch;
   private readonly options: AttachOptions;
   private readonly crew: Crew | null;
-  private readonly relaxer: Relaxer;
+  private readonly sweeper: Sweeper;
   private readonly rehanger: Rehanger;
   private nextRelax = 8;
   private relaxed = 0;
@@ -98,6 +102,7 @@ export class Grower {
   /** Set when the forest was saved in the middle of a refresh, which is then to be ended first. */
   private owesRefresh = false;
   private readonly onMoment: GrowthOptions['onMoment'];
+  private readonly onForest: GrowthOptions['onForest'];
 
   /**
    * @param demands one a tree of the spec, in its order
@@ -115,6 +120,7 @@ export class Grower {
     this.watch = options;
     this.crew = options.crew ?? null;
     this.onMoment = options.onMoment;
+    this.onForest = options.onForest;
     const memory = this.crew?.memory ?? ownMemory;
     this.wanted = demands.reduce((sum, demand) => sum + demand.wanted, 0);
     const builder = new ForestBuilder(junctionExponent(spec), Math.max(64, Math.min(4 * this.wanted, 1 << 20)), memory);
@@ -138,7 +144,7 @@ export class Grower {
     }
     this.batch = new Batch(tissue, MOST_BATCH, KEEP, memory);
     this.settler = new Settler(builder, room, HEADROOM);
-    this.relaxer = new Relaxer(builder, room, memory);
+    this.sweeper = new Sweeper(builder, room, this.crew, SWEEP_SLACK, SWEEP_GAIN);
     this.options = {
       first: 8,
       second: 24,
@@ -275,21 +281,16 @@ export class Grower {
     if (count === 0 || this.trees[tree[0]!]!.demand.served === 0) return;
     const { keep, order, share, position, proposed, row, at } = batch;
     const sites = { count, keep, order, tree, share, position, proposed, row, at };
-    this.together({ sites }, count, (from, end) => proposeAll(proposer, batch, from, end));
-  }
-
-  /** Has a task worked on by all of the crew, or by this thread alone. */
-  private together(work: ProposalTask['work'], count: number, mine: (from: number, end: number) => void): void {
-    // Members of a crew do not see what a transaction that failed has left behind, so nobody may.
-    this.room.begin();
-    if (this.crew === null || count < SHARED_BATCH) {
-      mine(0, count);
-      return;
-    }
-    const { builder, room, options } = this;
-    const potential = this.attacher.potential.values;
-    const task = { options, limits: room.limits, builder: builder.view(), room: room.view(), potential, work };
-    this.crew.work(task, count, mine);
+    workTogether(
+      this.crew,
+      this.builder,
+      this.room,
+      { sites },
+      count,
+      (from, end) => proposeAll(proposer, sites, from, end),
+      potential,
+      this.options,
+    );
   }
 
   /** Hangs one of the sites in hand, or gives it back. */
@@ -377,15 +378,13 @@ export class Grower {
 
   /** Moves every node once; each tree is weighed as if its tubes had their least-power radii. */
   private relax(): void {
-    const { builder, room } = this;
-    const { look } = this.relaxer.mover;
-    this.relaxer.sweep((moves) =>
-      this.together({ moves }, moves.count, (from, end) => lookAll(look, builder, moves, from, end)),
-    );
+    const { room } = this;
+    this.sweeper.sweep(null);
     room.slack = COARSE_SLACK;
     if (++this.relaxed % 2 === 0) this.rehangCoarse();
     room.slack = 1;
     room.rebuild(this.cell());
+    this.onForest?.(this.builder);
   }
 
   /** m; edge of a grid cell for as many terminals as there are. */

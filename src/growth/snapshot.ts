@@ -1,9 +1,9 @@
 import type { StateIn, StateOut } from '../core/state.ts';
 import type { Spec } from '../spec/types.ts';
 import type { Tissue } from '../tissue/tissue.ts';
-import type { GrowthOptions } from './crew.ts';
 import { restoredDemand } from './demand-of.ts';
 import { Grower, type Stopped } from './grower.ts';
+import type { GrowthOptions } from './options.ts';
 
 /*
  * What of a growth is saved, so that going on from it gives the same bytes as never having stopped.

@@ -1,3 +1,4 @@
+import { type Memory, ownMemory } from '../core/memory.ts';
 import type { PerLength } from '../moves/per-length.ts';
 import { rootOf } from '../physics/junction.ts';
 import { flowWeight, leastPowerCostFactor } from '../physics/murray.ts';
@@ -7,11 +8,12 @@ import type { ForestBuilder } from '../tree/builder.ts';
 /**
  * Power per length of every tube at its present radius, 8μQ²/(πr⁴) + mπr²; with least-power radii that is K Q^(2/3).
  *
+ * @param memory where the result is kept
  * @returns (capacity) W/m
  * Cost: O(rows)
  */
-export function tubeWeights(builder: ForestBuilder, spec: Spec): Float64Array {
-  const weight = new Float64Array(builder.capacity);
+export function tubeWeights(builder: ForestBuilder, spec: Spec, memory: Memory = ownMemory): Float64Array {
+  const weight = new Float64Array(memory(8 * builder.capacity));
   const viscosity = spec.blood.viscosity.value;
   const { maintenance } = spec.blood;
   const factor = leastPowerCostFactor(viscosity, maintenance);

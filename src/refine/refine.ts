@@ -1,10 +1,12 @@
+import { type Memory, ownMemory } from '../core/memory.ts';
 import type { Watch } from '../core/progress.ts';
 import type { Random } from '../core/random.ts';
 import type { StateIn, StateOut } from '../core/state.ts';
+import type { Crew } from '../moves/crew.ts';
 import { Exchanger } from '../moves/exchange.ts';
-import { NodeMover } from '../moves/move-node.ts';
 import { Potential } from '../moves/potential.ts';
 import { Rehanger } from '../moves/rehang.ts';
+import { Sweeper } from '../moves/sweeper.ts';
 import type { Room } from '../room/room.ts';
 import type { Spec } from '../spec/types.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
@@ -20,6 +22,8 @@ const SWEEPS_A_ROUND = 3;
 /** Gain of a round, as a share of the cost, below which topology is left alone. */
 const ROUND_GAIN = 1e-5;
 const MOST_ROUNDS = 60;
+/** Rounds of which one tries exchanges too. */
+const EXCHANGE_ROUNDS = 4;
 /**
  * Work after which the room's grid is made anew, and with it the state fit to be saved: in sweeps of node moves, about as
  * much of which a look at all subtrees for other places comes to, and for exchanges.
@@ -31,7 +35,7 @@ const SWEEPS_AN_EXCHANGE = 4;
 /** How hard a tree is refined. */
 export type Budget =
   | { readonly kind: 'none' }
-  /** A few rounds on the subtrees that carry most, and sweeps until one gains less than 10⁻⁴. */
+  /** Sweeps until one gains little, with a look at the 20,000 subtrees that carry most. */
   | { readonly kind: 'quick' }
   /** Rounds over all subtrees until one gains next to nothing, then sweeps until one gains less than 10⁻⁹. */
   | { readonly kind: 'thorough' }
@@ -42,6 +46,8 @@ export type Budget =
 
 export interface RefineOptions extends Watch {
   readonly budget: Budget;
+  /** Threads that look for better places together; the result is the same. */
+  readonly crew?: Crew | undefined;
   /** Looked at after each step with the cost so far (W); true ends the work. */
   readonly enough?: ((step: number, cost: number) => boolean) | undefined;
   /** Told at each moment at which the work could be saved, beside its forest and room, from which `resume` goes on. */
@@ -75,7 +81,8 @@ class Refiner {
   private readonly room: Room;
   private readonly spec: Spec;
   private readonly options: RefineOptions;
-  private readonly mover: NodeMover;
+  private readonly sweeper: Sweeper;
+  private readonly memory: Memory;
   private readonly potential: Potential;
   private readonly rehanger: Rehanger;
   private readonly exchanger: Exchanger;
@@ -98,7 +105,8 @@ class Refiner {
     this.room = room;
     this.spec = spec;
     this.options = options;
-    this.mover = new NodeMover(builder, room);
+    this.memory = options.crew?.memory ?? ownMemory;
+    this.sweeper = new Sweeper(builder, room, options.crew ?? null, 1, 0);
     const { resume = null, budget } = options;
     this.course = new Course(resume);
     this.wholes = resume === null ? wholeLoads(builder) : Array.from(resume.reals('wholes'));
@@ -107,7 +115,7 @@ class Refiner {
     this.rehanger = new Rehanger(builder, room, this.potential, perLength);
     this.exchanger = new Exchanger(builder, room, perLength);
     if (resume === null) room.settle();
-    this.weight = tubeWeights(builder, spec);
+    this.weight = tubeWeights(builder, spec, this.memory);
     this.before = resume === null ? costOf(builder, this.weight) : resume.reals('before')[0]!;
     this.cost = this.before;
     this.rowsBefore = resume === null ? builder.count : resume.reals('before')[1]!;
@@ -145,14 +153,10 @@ class Refiner {
       case 'none':
         return;
       case 'quick': {
-        this.expected = 30;
+        this.expected = 16;
         if (!this.sweepUntil(1e-3, 6)) return;
-        for (let round = 0; round < 2; round++) {
-          const rows = this.heaviest(ROWS_A_STEP);
-          if (!this.hangStep(rows) || !this.sweepUntil(1e-3, SWEEPS_A_ROUND)) return;
-          if (!this.exchangeStep(rows)) return;
-        }
-        this.sweepUntil(1e-4, 20);
+        const rows = this.heaviest(ROWS_A_STEP);
+        if (!this.hangStep(rows) || !this.sweepUntil(2e-4, 8)) return;
         break;
       }
       case 'annealed':
@@ -179,10 +183,12 @@ class Refiner {
       for (let k = 0; k < SWEEPS_A_ROUND; k++) if (!this.sweepStep()) return;
       const rows = this.heaviest(this.builder.count);
       const parts = Math.max(1, Math.ceil(rows.length / ROWS_A_STEP));
-      if (this.options.budget.kind !== 'steps') this.expected = this.steps + 5 * (SWEEPS_A_ROUND + 2 * parts);
+      if (this.options.budget.kind !== 'steps') this.expected = this.steps + 5 * (SWEEPS_A_ROUND + parts);
       for (let part = 0; part < parts; part++) {
         const some = rows.subarray(part * ROWS_A_STEP, (part + 1) * ROWS_A_STEP);
-        if (!this.hangStep(some) || !this.exchangeStep(some)) return;
+        if (!this.hangStep(some)) return;
+        // They gain a tenth of what hanging gains, for as much work.
+        if (round % EXCHANGE_ROUNDS === EXCHANGE_ROUNDS - 1 && !this.exchangeStep(some)) return;
       }
       if (cost - this.cost <= least * cost) return;
     }
@@ -200,10 +206,7 @@ class Refiner {
 
   private sweepStep(): boolean {
     if (this.isPast()) return this.endStep();
-    const { builder, mover, weight } = this;
-    this.work++;
-    const weigh = (row: number) => weight[row]!;
-    for (let row = 0; row < builder.count; row++) mover.move(row, weigh, 0);
+    this.sweeper.sweep(this.weight);
     return this.endStep();
   }
 
@@ -212,7 +215,7 @@ class Refiner {
     this.work += (SWEEPS_A_HANG * rows.length) / this.builder.count;
     this.refreshPotentials();
     for (const row of rows) if (this.builder.parent[row]! >= 0) this.rehanger.rehang(row, LEAST_GAIN);
-    this.weight = tubeWeights(this.builder, this.spec);
+    this.weight = tubeWeights(this.builder, this.spec, this.memory);
     return this.endStep();
   }
 
@@ -220,7 +223,7 @@ class Refiner {
     if (this.isPast()) return this.endStep();
     this.work += (SWEEPS_AN_EXCHANGE * rows.length) / this.builder.count;
     for (const row of rows) if (this.builder.parent[row]! >= 0) this.exchanger.exchange(row, LEAST_GAIN);
-    this.weight = tubeWeights(this.builder, this.spec);
+    this.weight = tubeWeights(this.builder, this.spec, this.memory);
     return this.endStep();
   }
 
@@ -254,7 +257,7 @@ class Refiner {
       const spare = -temperature * Math.log(1 - random.next());
       if (builder.parent[row]! >= 0) this.rehanger.rehang(row, 0, spare);
     }
-    this.weight = tubeWeights(builder, this.spec);
+    this.weight = tubeWeights(builder, this.spec, this.memory);
     return this.endStep();
   }
 

@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { randomStream } from '../../../src/core/random.ts';
-import { CHUNK, type Crew, Desk } from '../../../src/growth/crew.ts';
+import { CHUNK, type Crew } from '../../../src/moves/crew.ts';
+import { Desk } from '../../../src/moves/desk.ts';
 import { Demand } from '../../../src/growth/demand.ts';
 import { freezeGrowth } from '../../../src/growth/freeze.ts';
 import { Grower } from '../../../src/growth/grower.ts';
