@@ -7,14 +7,6 @@ import { isAtBend, type ProposeOptions, Proposer } from './proposer.ts';
 import { span } from './span.ts';
 import { Trial } from './trial.ts';
 
-/*
- * Lab notes (box, γ = 3, one thread of a busy two-core machine, December 2026):
- * - Best junction by the closed form, four places a tube (best; on the tube at two heights; part of the way to the site),
- *   16 tubes, then 64: 20,000 terminals at 5.5 % vessel volume take about 0.25 ms each, 1 in 7 sites finds no place.
- * - Feasible at every commit (reserves, see room.ts): no overlap, no misfit at any size tried up to 10⁵. The price: at
- *   20,000 terminals Σ Q^(2/3) L is 3.52 with hair-thin vessels, 3.87 at 0.5 % and 5.72 at 6 % vessel volume.
- */
-
 /** What growth asks of an attachment search. */
 export interface AttachOptions extends ProposeOptions {
   /** Radius certified over radius needed, so that a vessel may gain a little without a new look. */

@@ -9,6 +9,11 @@ import { Trial } from './trial.ts';
  * one from K up loses it; beyond, nothing changes. The sum is exact.
  */
 
+/*
+ * Lab notes: after subtrees were hung where they cost least, exchanges gain next to nothing (50,000 terminals: less than
+ * 0.01 %; 10,000 hair-thin: nothing in 2 s), so refinement tries them in one round of four.
+ */
+
 /** Subtrees near by that one is compared with. */
 const MOST_NEAR = 24;
 

@@ -11,6 +11,14 @@ import { Trial } from './trial.ts';
  * J′→C and J′→S come, every tube above P carries q more. Both sums are exact; the potential only picks what to try.
  */
 
+/*
+ * Lab notes (ellipsoid, γ = 3, December 2026):
+ * - After growth alone, all subtrees of 10,000 terminals, 4.8 % vessel volume: 0.81, 0.16, 0.04, 0.01 % in four rounds; hair-thin
+ *   0.35, 0.08, 0.03, 0.01 %. While the tree grows, on what carries 1/500 of it and more, 2 to 14 % (see DEVELOPERS.md).
+ * - 70 µs a subtree when all tubes near by were looked at in full; 30 µs once those go that cost too much at their own tube.
+ * - The predicted gain is the gain of the whole tree to rounding, in every round.
+ */
+
 /** Tubes that carry less than this share of the subtree's flow are not looked at: a trunk does not hang on a twig. */
 const LEAST_LOAD = 0.05;
 
