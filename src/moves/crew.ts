@@ -55,6 +55,8 @@ export function workTogether(
   potential: Potential | null = null,
   options: ProposeOptions | null = null,
 ): void {
+  // A transaction that failed leaves reserves behind that members of a crew do not see, so that nobody may.
+  room.begin();
   if (crew === null || count < WORTH_CALLING) {
     mine(0, count);
     return;

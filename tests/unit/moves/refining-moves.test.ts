@@ -6,6 +6,8 @@ import { Potential } from '../../../src/moves/potential.ts';
 import { Rehanger } from '../../../src/moves/rehang.ts';
 import { powerOfLoad, tubeWeights } from '../../../src/refine/cost.ts';
 import { growCrowded } from '../../support/crowded-forest.ts';
+import { judgeForest } from '../../support/forest-judge.ts';
+import { columnsOf, sameColumns } from '../../support/plain-forest.ts';
 import { judgeReserves, type Watched, watchMoves } from '../../support/watched-moves.ts';
 
 /*
@@ -53,6 +55,28 @@ describe.each(CASES)('%s, %s', (exponent, crowding) => {
       return 'saved';
     });
     expectHeld(watched, 15);
+    expect(judgeReserves(room)).toEqual([]);
+  });
+
+  it('a node put anywhere', () => {
+    const { builder, room, rows } = stage(exponent, crowding);
+    const mover = new NodeMover(builder, room);
+    const random = randomStream('anywhere', String(exponent));
+    const faults: string[] = [];
+    let put = 0;
+    let columns = columnsOf(builder);
+    for (let k = 0; k < 6 * rows.length && put < ENOUGH && faults.length === 0; k++) {
+      const row = rows[k % rows.length]!;
+      if (builder.childCount(row) === 0 || room.pinned.has(row)) continue;
+      const place = [0, 1, 2].map((i) => builder.position[3 * row + i]! + 4e-3 * (random.next() - 0.5));
+      if (mover.put(row, ...(place as [number, number, number]))) {
+        put++;
+        columns = columnsOf(builder);
+        faults.push(...judgeForest(room));
+      } else if (!sameColumns(columnsOf(builder), columns)) faults.push(`refused at row ${row}, but changed`);
+    }
+    expect(faults).toEqual([]);
+    expect(put).toBe(ENOUGH);
     expect(judgeReserves(room)).toEqual([]);
   });
 
