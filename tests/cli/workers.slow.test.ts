@@ -11,6 +11,8 @@ beforeAll(() => {
   for (const [name, count] of [
     ['large', 10_000],
     ['smaller', 9000],
+    // From 40,000 rows on, refinement looks for better places in all threads too.
+    ['largest', 22_000],
   ] as const) {
     const spec = {
       name,
@@ -73,6 +75,11 @@ describe('threads that grow', () => {
     const [one, three] = [await grow('smaller', 1, 'thorough', 'one'), await grow('smaller', 3, 'thorough', 'three')];
     expect(three.equals(one)).toBe(true);
     expect(one.equals(tree('alone'))).toBe(false);
+  });
+
+  test('refined by several too: the same bytes as by one', async () => {
+    const [one, three] = [await grow('largest', 1, 'quick', 'first'), await grow('largest', 3, 'quick', 'third')];
+    expect(three.equals(one)).toBe(true);
   });
 
   test('a member that cannot start leaves its part to the others', async () => {

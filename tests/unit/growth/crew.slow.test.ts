@@ -1,10 +1,10 @@
 import { describe, expect, it } from 'vitest';
 import { randomStream } from '../../../src/core/random.ts';
-import { CHUNK, type Crew } from '../../../src/moves/crew.ts';
-import { Desk } from '../../../src/moves/desk.ts';
 import { Demand } from '../../../src/growth/demand.ts';
 import { freezeGrowth } from '../../../src/growth/freeze.ts';
 import { Grower } from '../../../src/growth/grower.ts';
+import { CHUNK, type Crew } from '../../../src/moves/crew.ts';
+import { Desk } from '../../../src/moves/desk.ts';
 import { specFromValue } from '../../../src/spec/parse.ts';
 import { buildTissue } from '../../../src/tissue/build-tissue.ts';
 import type { Forest } from '../../../src/tree/forest.ts';
@@ -12,13 +12,13 @@ import type { Forest } from '../../../src/tree/forest.ts';
 /* A crew that works in one thread, so that a test decides who looks at what. */
 
 const RADII = [15, 12, 10] as const;
-const COUNT = 7500;
+const COUNT = 30_000;
 // Crowded, with terminals of very unequal shares: many sites are refused, and reserves are cut back often.
 const SPEC = specFromValue({
   name: 'crew',
   tissue: { shape: 'ellipsoid', center_mm: [0, 0, 0], radii_mm: RADII },
   trees: [{ inlet: { position_mm: [-15, 0, 0], direction: [1, 0, 0], flow_mL_min: 10 }, terminals: { count: COUNT } }],
-  sizing: { rule: 'junction-exponent', junction_exponent: 3, inlet_radius_um: 1250 },
+  sizing: { rule: 'junction-exponent', junction_exponent: 3, inlet_radius_um: 1100 },
   clearance: { gap_um: 0 },
   refine: 'none',
 });
@@ -72,7 +72,8 @@ describe('a crew', () => {
       },
     }));
     expect(chunks).toBeGreaterThan(20);
-    expect(Math.min(tasks.sites, tasks.moves)).toBeGreaterThan(3);
+    expect(tasks.sites).toBeGreaterThan(20);
+    expect(tasks.moves).toBeGreaterThan(0);
     expect(shared.count).toBe(alone.count);
     for (const column of ['parent', 'position', 'flow', 'radius'] as const)
       expect(Buffer.compare(bytesOf(shared[column]), bytesOf(alone[column])), column).toBe(0);
