@@ -1,9 +1,9 @@
 import { describe, expect, it } from 'vitest';
 import { randomStream } from '../../../src/core/random.ts';
+import { Attacher } from '../../../src/moves/attach.ts';
 import { CHUNK, type ProposalTask } from '../../../src/moves/crew.ts';
 import { Desk } from '../../../src/moves/desk.ts';
 import { proposeAll } from '../../../src/moves/propose-all.ts';
-import { Attacher } from '../../../src/moves/attach.ts';
 import { buildTissue } from '../../../src/tissue/build-tissue.ts';
 import { type CrowdedOptions, growCrowded } from '../../support/crowded-forest.ts';
 import { judgeForest } from '../../support/forest-judge.ts';
