@@ -11,7 +11,7 @@ import type { GrowthOptions } from './options.ts';
  * It is saved at moments at which the room's grid follows from the forest alone: after each sweep that moves nodes, and
  * before radii become final. The refiner has moments of its own (refine/schedule.ts). Whoever holds the clock decides
  * whether a moment is used; what was saved before has no part in what comes after, and a test looks that every field of
- * what is saved is either in the state or follows from it (tests/unit/growth/snapshot.test.ts).
+ * what is saved is either in the state or follows from it (tests/unit/growth/snapshot.slow.test.ts).
  */
 
 const STOPPED: readonly Stopped[] = ['complete', 'no-room', 'cancelled'];
