@@ -35,13 +35,13 @@ const RESIZE = 1.15;
 /** Growth between two measurings of territories, where they share the flow: branches then carry what they will. */
 const SHARE = 2;
 /** Growth between two sweeps that move nodes to their best places. */
-const RELAX = 1.15;
+const RELAX = 1.3;
 /** Subtrees that carry at least this part of their tree are hung anew now and then while it grows. */
 const COARSE = 1000;
 /** Radii over today's that a moved node leaves room for, so that the tubes at it can still gain flow. */
 const SWEEP_SLACK = 1.2;
 /** Gain, as a share of the cost of its tubes, for which a node is moved. */
-const SWEEP_GAIN = 1e-3;
+const SWEEP_GAIN = 3e-3;
 /** Radii over today's that a subtree which is hung anew leaves room for. */
 const COARSE_SLACK = 1.2;
 /** Edge of a grid cell over the spacing of terminals. */
@@ -93,7 +93,6 @@ export class Grower {
   private readonly sweeper: Sweeper;
   private readonly rehanger: Rehanger;
   private nextRelax = 8;
-  private relaxed = 0;
   private nextRefresh = 2;
   private nextResize = 2;
   private nextShare = 64;
@@ -381,7 +380,7 @@ export class Grower {
     const { room } = this;
     this.sweeper.sweep(null);
     room.slack = COARSE_SLACK;
-    if (++this.relaxed % 2 === 0) this.rehangCoarse();
+    this.rehangCoarse();
     room.slack = 1;
     room.rebuild(this.cell());
     this.onForest?.(this.builder);
@@ -398,9 +397,9 @@ export class Grower {
    */
   save(out: StateOut): void {
     const { mended } = this.settler;
-    const { relaxed, nextRelax, nextRefresh, nextResize, nextShare, finishes } = this;
+    const { nextRelax, nextRefresh, nextResize, nextShare, finishes } = this;
     const flags = [this.cramped, this.owesRefresh].map(Number);
-    const numbers = [mended, relaxed, nextRelax, nextRefresh, nextResize, nextShare, finishes, ...flags];
+    const numbers = [mended, nextRelax, nextRefresh, nextResize, nextShare, finishes, ...flags];
     out.list('numbers', 'f64', numbers);
     out.put('siteOf', this.siteOf.subarray(0, this.builder.count));
     this.builder.save(out.within('builder'));
@@ -417,14 +416,13 @@ export class Grower {
   restore(from: StateIn): void {
     const numbers = from.reals('numbers');
     this.settler.mended = numbers[0]!;
-    this.relaxed = numbers[1]!;
-    this.nextRelax = numbers[2]!;
-    this.nextRefresh = numbers[3]!;
-    this.nextResize = numbers[4]!;
-    this.nextShare = numbers[5]!;
-    this.finishes = numbers[6]!;
-    this.cramped = numbers[7] === 1;
-    this.owesRefresh = numbers[8] === 1;
+    this.nextRelax = numbers[1]!;
+    this.nextRefresh = numbers[2]!;
+    this.nextResize = numbers[3]!;
+    this.nextShare = numbers[4]!;
+    this.finishes = numbers[5]!;
+    this.cramped = numbers[6] === 1;
+    this.owesRefresh = numbers[7] === 1;
     this.builder.restore(from.within('builder'));
     this.room.restore(from.within('room'));
     this.siteOf = from.wholes('siteOf', new Int32Array(this.builder.capacity).fill(-1));

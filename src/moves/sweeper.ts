@@ -28,7 +28,8 @@ export class Sweeper {
   private readonly room: Room;
   private readonly crew: Crew | null;
   private readonly slack: number;
-  private readonly gain: number;
+  /** Share of the cost of its tubes for which a node is moved, ≥ 0. */
+  gain: number;
   private readonly node: Int32Array;
   private readonly better: Int32Array;
   private readonly place: Float64Array;

@@ -10,7 +10,7 @@ import { Sweeper } from '../moves/sweeper.ts';
 import type { Room } from '../room/room.ts';
 import type { Spec } from '../spec/types.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
-import { costOf, powerOfLoad, tubeWeights, wholeLoads } from './cost.ts';
+import { costOf, powerOfLoad, pumpingPrices, tubeWeights, wholeLoads } from './cost.ts';
 import { Course } from './course.ts';
 
 /** Rows whose subtrees are looked at in one step, so that a budget in seconds is kept on large trees. */
@@ -22,6 +22,8 @@ const SWEEPS_A_ROUND = 3;
 /** Gain of a round, as a share of the cost, below which topology is left alone. */
 const ROUND_GAIN = 1e-5;
 const MOST_ROUNDS = 60;
+/** Gain, as a share of the cost of its tubes, for which `quick` moves a node. */
+const QUICK_GAIN = 1e-3;
 /** Rounds of which one tries exchanges too. */
 const EXCHANGE_ROUNDS = 4;
 /**
@@ -96,6 +98,9 @@ class Refiner {
   private readonly course: Course;
   /** (trees) first vessels' loads, and rows, at the beginning. */
   private readonly wholes: readonly number[];
+  private readonly prices: readonly number[];
+  /** W; what of the cost stays whatever is changed, beside what prices say. */
+  private readonly unpriced: number;
   private readonly rowsBefore: number;
   /** Done since the grid was made anew, in sweeps. */
   private work = 0;
@@ -110,13 +115,15 @@ class Refiner {
     const { resume = null, budget } = options;
     this.course = new Course(resume);
     this.wholes = resume === null ? wholeLoads(builder) : Array.from(resume.reals('wholes'));
-    const perLength = powerOfLoad(builder, spec, this.wholes);
+    this.prices = resume === null ? pumpingPrices(builder, spec) : Array.from(resume.reals('prices'));
+    const perLength = powerOfLoad(builder, spec, this.wholes, this.prices);
     this.potential = new Potential(builder, undefined, perLength);
     this.rehanger = new Rehanger(builder, room, this.potential, perLength);
     this.exchanger = new Exchanger(builder, room, perLength);
     if (resume === null) room.settle();
-    this.weight = tubeWeights(builder, spec, this.memory);
-    this.before = resume === null ? costOf(builder, this.weight) : resume.reals('before')[0]!;
+    this.weight = tubeWeights(builder, spec, this.prices, this.memory);
+    this.before = resume === null ? costOf(builder, tubeWeights(builder, spec)) : resume.reals('before')[0]!;
+    this.unpriced = resume === null ? this.before - costOf(builder, this.weight) : resume.reals('before')[2]!;
     this.cost = this.before;
     this.rowsBefore = resume === null ? builder.count : resume.reals('before')[1]!;
     if (budget.kind === 'annealed' && resume !== null) budget.random.resume(resume.reals('random'));
@@ -126,7 +133,8 @@ class Refiner {
   private save(out: StateOut): void {
     const { budget } = this.options;
     out.list('wholes', 'f64', this.wholes);
-    out.list('before', 'f64', [this.before, this.rowsBefore]);
+    out.list('before', 'f64', [this.before, this.rowsBefore, this.unpriced]);
+    out.list('prices', 'f64', this.prices);
     if (budget.kind === 'annealed') out.list('random', 'f64', budget.random.state());
     this.course.save(out);
   }
@@ -154,6 +162,7 @@ class Refiner {
         return;
       case 'quick': {
         this.expected = 16;
+        this.sweeper.gain = QUICK_GAIN;
         if (!this.sweepUntil(1e-3, 6)) return;
         const rows = this.heaviest(ROWS_A_STEP);
         if (!this.hangStep(rows) || !this.sweepUntil(2e-4, 8)) return;
@@ -215,7 +224,7 @@ class Refiner {
     this.work += (SWEEPS_A_HANG * rows.length) / this.builder.count;
     this.refreshPotentials();
     for (const row of rows) if (this.builder.parent[row]! >= 0) this.rehanger.rehang(row, LEAST_GAIN);
-    this.weight = tubeWeights(this.builder, this.spec, this.memory);
+    this.weight = tubeWeights(this.builder, this.spec, this.prices, this.memory);
     return this.endStep();
   }
 
@@ -223,7 +232,7 @@ class Refiner {
     if (this.isPast()) return this.endStep();
     this.work += (SWEEPS_AN_EXCHANGE * rows.length) / this.builder.count;
     for (const row of rows) if (this.builder.parent[row]! >= 0) this.exchanger.exchange(row, LEAST_GAIN);
-    this.weight = tubeWeights(this.builder, this.spec, this.memory);
+    this.weight = tubeWeights(this.builder, this.spec, this.prices, this.memory);
     return this.endStep();
   }
 
@@ -257,7 +266,7 @@ class Refiner {
       const spare = -temperature * Math.log(1 - random.next());
       if (builder.parent[row]! >= 0) this.rehanger.rehang(row, 0, spare);
     }
-    this.weight = tubeWeights(builder, this.spec, this.memory);
+    this.weight = tubeWeights(builder, this.spec, this.prices, this.memory);
     return this.endStep();
   }
 
@@ -270,7 +279,7 @@ class Refiner {
       this.cost = this.course.costAfter(this.steps);
       return true;
     }
-    this.cost = costOf(this.builder, this.weight);
+    this.cost = this.unpriced + costOf(this.builder, this.weight);
     this.course.addStep(this.cost);
     options.onProgress?.({
       stage: 'refine',

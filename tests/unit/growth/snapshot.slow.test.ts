@@ -113,7 +113,7 @@ describe.each(Object.keys(SPECS))('%s', (name) => {
  */
 const SAVED = {
   grower:
-    'builder room trees cramped settler siteOf relaxed nextRelax nextRefresh nextResize nextShare finishes owesRefresh',
+    'builder room trees cramped settler siteOf nextRelax nextRefresh nextResize nextShare finishes owesRefresh',
   settler: 'mended',
   builder: 'count parent child tree position load weight roots inletRadius free',
   room: 'reserve',

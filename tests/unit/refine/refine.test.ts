@@ -82,9 +82,8 @@ const SIZINGS = [
   ['least-power', { rule: 'least-power' }, 1],
   ['junction-exponent 2.6', { rule: 'junction-exponent', junction_exponent: 2.6, inlet_radius_um: 420 }, 1],
   ['mean pressure', { rule: 'junction-exponent', junction_exponent: 3 }, 1],
-  // Short of what is wanted: refinement takes radii as they are, but here they follow from all lengths. The pressures
-  // asked for fix the pumping, and the volume rises by 1 to 5 % where all lengths together fall by 3 to 12 %.
-  ['pressure-matched', { rule: 'pressure-matched', junction_exponent: 3 }, 1.002],
+  // Radii follow from all lengths here, so a gain is only foreseen to first order; annealing may end 0.05 % dearer.
+  ['pressure-matched', { rule: 'pressure-matched', junction_exponent: 3 }, 1.0005],
 ] as const;
 
 describe.each(SIZINGS)('a run with %s radii', (_, sizing, most) => {
