@@ -27,6 +27,9 @@ const MOST_STEPS = 10_000;
 /** Up to so many explicit points, several orders of serving them are tried and the cheapest tree is kept. */
 const FEW_POINTS = 64;
 const ORDERS = 24;
+/** Streams of sites tried anew where a growth has served less than a fair part of what was asked for. */
+const OTHER_SITES = 3;
+const FAIR_PART = 0.9;
 /** Times that explicit points which were left out are tried again, first in line. */
 const SECOND_TRIES = 4;
 
@@ -182,7 +185,17 @@ function growBest(spec: Spec, tissue: Tissue, options: GrowOptions): { growth: G
   // What is tried and compared is not saved: these growths are begun again, from the first one where that is large.
   const unsaved: GrowOptions = { ...options, onMoment: undefined, resume: undefined };
   let growth = growForest(spec, tissue, few ? { ...options, onMoment: undefined } : options);
-  if (growth.restored || !points.some((count) => count > 0)) return { growth, refine: null };
+  if (growth.restored) return { growth, refine: null };
+  if (!points.some((count) => count > 0)) {
+    // In a narrow tissue the first vessels may stand in the way of all others; other places may come first.
+    const wanted = growth.grower.trees.reduce((sum, { demand }) => sum + demand.wanted, 0);
+    for (let salt = 1; salt <= OTHER_SITES && growth.stopped === 'no-room'; salt++) {
+      if (growth.grower.served >= FAIR_PART * wanted) break;
+      const next = growForest(spec, tissue, unsaved, salt);
+      if (next.stopped === 'cancelled' || next.grower.served > growth.grower.served) growth = next;
+    }
+    return { growth, refine: null };
+  }
   for (let again = 0; again < SECOND_TRIES && growth.stopped === 'no-room'; again++) {
     const next = growForest(spec, tissue, unsaved, 0, leftOut(growth, spec));
     if (next.grower.served > growth.grower.served) growth = next;

@@ -34,12 +34,12 @@ export function demandOf(
   };
   if (terminals.by === 'count') {
     const wanted = Math.min(terminals.count, most);
-    const sites = streamOf(spec, index, tissue, wanted, byTerritory);
+    const sites = streamOf(spec, index, tissue, wanted, byTerritory, salt);
     return new Demand('count', wanted, sites, null, null, 1.05 * radiusOf(terminals.count), byTerritory);
   }
   if (terminals.by === 'spacing') {
     const count = Math.max(1, tissue.perfusion.whole / (terminals.spacing * terminals.spacing * terminals.spacing));
-    const random = siteRandom(spec, index);
+    const random = siteRandom(spec, index, salt);
     const sites = spacedSites(tissue, random, terminals.spacing, 1.05 * radiusOf(count));
     const share = byTerritory ? sharesOf(tissue, sites) : null;
     return new Demand('spacing', Math.min(sites.length / 3, most), null, sites, share, 0, byTerritory);
@@ -63,11 +63,18 @@ export function restoredDemand(spec: Spec, tree: TreeSpec, index: number, tissue
   return demand;
 }
 
-function streamOf(spec: Spec, index: number, tissue: Tissue, wanted: number, byTerritory: boolean): SiteStream {
-  const even = createSites(tissue, siteRandom(spec, index));
+function streamOf(
+  spec: Spec,
+  index: number,
+  tissue: Tissue,
+  wanted: number,
+  byTerritory: boolean,
+  salt = 0,
+): SiteStream {
+  const even = createSites(tissue, siteRandom(spec, index, salt));
   return byTerritory ? new ForeseenSites(tissue, even, wanted) : even;
 }
 
-function siteRandom(spec: Spec, index: number): Random {
-  return randomStream(spec.seed, `sites ${index}`);
+function siteRandom(spec: Spec, index: number, salt: number): Random {
+  return randomStream(spec.seed, salt === 0 ? `sites ${index}` : `sites ${index} ${salt}`);
 }
