@@ -165,7 +165,7 @@ class Refiner {
         this.sweeper.gain = QUICK_GAIN;
         if (!this.sweepUntil(1e-3, 6)) return;
         const rows = this.heaviest(ROWS_A_STEP);
-        if (!this.hangStep(rows) || !this.sweepUntil(2e-4, 8)) return;
+        if (!this.hangStep(rows) || !this.sweepUntil(5e-4, 8)) return;
         break;
       }
       case 'annealed':
