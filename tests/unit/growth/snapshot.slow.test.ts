@@ -112,8 +112,7 @@ describe.each(Object.keys(SPECS))('%s', (name) => {
  * belongs, and saves it if it must be.
  */
 const SAVED = {
-  grower:
-    'builder room trees cramped settler siteOf nextRelax nextRefresh nextResize nextShare finishes owesRefresh',
+  grower: 'builder room trees cramped settler siteOf nextRelax nextRefresh nextResize nextShare finishes owesRefresh',
   settler: 'mended',
   builder: 'count parent child tree position load weight roots inletRadius free',
   room: 'reserve',
