@@ -88,7 +88,7 @@ export class Candidates {
           }
         }
         if (reached > reach * reach || builder.tree[row] !== tree || room.pinned.has(row)) continue;
-        if (top >= 0 && (builder.load[row]! < least || isBelow(builder, row, top))) continue;
+        if (top >= 0 && (builder.load[row]! < least || builder.isBelow(row, top))) continue;
         if (found === this.rows.length) this.widen();
         this.rows[found++] = row;
       }
@@ -143,11 +143,6 @@ export class Candidates {
     local.set(this.local);
     this.local = local;
   }
-}
-
-function isBelow(builder: ForestBuilder, row: number, top: number): boolean {
-  for (let at = row; at >= 0; at = builder.parent[at]!) if (at === top) return true;
-  return false;
 }
 
 /** Insertion sort; ties keep the lower row first, so that the order does not depend on how rows were found. */

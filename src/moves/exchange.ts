@@ -60,7 +60,7 @@ export class Exchanger {
       const theirs = builder.load[other]!;
       if (theirs > 4 * load || load > 4 * theirs) continue;
       const apart = builder.parent[other]!;
-      if (apart === junction || this.isBelow(other, top) || this.isBelow(top, other)) continue;
+      if (apart === junction || this.builder.isBelow(other, top) || this.builder.isBelow(top, other)) continue;
       looked++;
       const gain = this.gainOf(top, other);
       if (gain > most) {
@@ -104,7 +104,7 @@ export class Exchanger {
     const { builder, perLength } = this;
     const tree = builder.tree[from]!;
     let sum = 0;
-    for (let at = from; builder.parent[at]! >= 0 && !this.isBelow(meets, at); at = builder.parent[at]!) {
+    for (let at = from; builder.parent[at]! >= 0 && !this.builder.isBelow(meets, at); at = builder.parent[at]!) {
       const load = builder.load[at]!;
       sum += (perLength(load + more, tree) - perLength(load, tree)) * this.distance(builder.parent[at]!, at);
     }
@@ -155,12 +155,6 @@ export class Exchanger {
     }
     for (const node of ends) if (!room.fits(node)) return false;
     return true;
-  }
-
-  private isBelow(row: number, top: number): boolean {
-    const { builder } = this;
-    for (let at = row; at >= 0; at = builder.parent[at]!) if (at === top) return true;
-    return false;
   }
 
   private distance(a: number, b: number): number {

@@ -28,7 +28,7 @@ export class Trial {
   }
 
   isBlocked(row: number): boolean {
-    for (let k = 0; k < this.blocked.length; k++) if (this.isBelow(row, this.blocked[k]!)) return true;
+    for (let k = 0; k < this.blocked.length; k++) if (this.builder.isBelow(row, this.blocked[k]!)) return true;
     return false;
   }
 
@@ -118,11 +118,5 @@ export class Trial {
       builder.load[row] = this.saved[2 * k]!;
       builder.weight[row] = this.saved[2 * k + 1]!;
     }
-  }
-
-  isBelow(row: number, top: number): boolean {
-    const { builder } = this;
-    for (let at = row; at >= 0; at = builder.parent[at]!) if (at === top) return true;
-    return false;
   }
 }

@@ -259,6 +259,12 @@ export class ForestBuilder {
     return this.inletRadius[tree]! * root;
   }
 
+  /** Whether a row is another or lies below it. Cost: O(depth). */
+  isBelow(row: number, top: number): boolean {
+    for (let at = row; at >= 0; at = this.parent[at]!) if (at === top) return true;
+    return false;
+  }
+
   /** Number of children of a row: 0 terminal, 1 bend (or root), 2 junction. */
   childCount(row: number): number {
     return this.child[2 * row]! < 0 ? 0 : this.child[2 * row + 1]! < 0 ? 1 : 2;
