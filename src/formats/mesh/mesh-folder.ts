@@ -5,7 +5,9 @@ import type { FlowField, Forest, TreeKind } from '../../tree/forest.ts';
 import type { NamedBytes } from '../format.ts';
 import type { MeshUnit } from './length-unit.ts';
 import { encodeLumenVtp } from './lumen-vtp.ts';
-import { type CutNotes, encodeMeshJson } from './mesh-json.ts';
+import { MESH_FORMATS } from './mesh-formats.ts';
+import { type CutNotes, describeFile, encodeMeshJson, type FileNotes } from './mesh-json.ts';
+import { surfaceOfLumen } from './mesh-surface.ts';
 import { encodeLumenMsh } from './msh.ts';
 import { BINARY_ABOVE, encodeBinaryStl, encodeNamedStl, encodeSingleStl } from './stl.ts';
 import { encodeBoundaryCsv, encodeNetworkCsv } from './tables.ts';
@@ -51,7 +53,7 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
         };
   const files: NamedBytes[] = [
     { name: 'lumen.stl', bytes: binary ? encodeBinaryStl(mesh, unit) : encodeNamedStl(mesh, unit) },
-    { name: 'lumen.vtp', bytes: encodeLumenVtp(mesh, forest, field, unit) },
+    { name: 'lumen.vtp', bytes: encodeLumenVtp(surfaceOfLumen(mesh, forest, field, unit)) },
     { name: 'lumen.msh', bytes: encodeLumenMsh(mesh, unit) },
     { name: 'boundary.csv', bytes: encodeBoundaryCsv(boundary) },
     { name: 'network.csv', bytes: encodeNetworkCsv(network) },
@@ -63,6 +65,7 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
         unit,
         axialStretch: input.axialStretch ?? 1,
         binary,
+        files: describeFiles(unit, binary),
         density: input.density,
         viscosity: input.viscosity,
         cut: cutNotes,
@@ -73,4 +76,14 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
   // A binary file is one solid already.
   if (!binary) files.splice(1, 0, { name: 'lumen_one_solid.stl', bytes: encodeSingleStl(mesh, unit) });
   return files;
+}
+
+/** What a folder has without being asked for more, `mesh.json` apart. */
+function describeFiles(unit: MeshUnit, binary: boolean): FileNotes[] {
+  const surfaces: FileNotes[] = MESH_FORMATS.filter(({ always }) => always).map((format) => describeFile(format, unit));
+  const [stl] = surfaces;
+  if (!binary) surfaces.splice(1, 0, { ...stl!, name: 'lumen_one_solid.stl', holds_no: ['patches', ...stl!.holds_no] });
+  else surfaces[0] = { ...stl!, holds_no: [...stl!.holds_no, 'digits beyond float32'] };
+  const tables = ['boundary.csv', 'network.csv'].map((name): FileNotes => ({ name, unit: 'm', holds_no: [] }));
+  return [...surfaces, ...tables];
 }

@@ -4,6 +4,7 @@ import { type LumenFigures, measureLumen } from '../../mesh/measure-lumen.ts';
 import type { Forest } from '../../tree/forest.ts';
 import { countVessels, tubeLength } from '../../tree/vessels.ts';
 import type { MeshUnit } from './length-unit.ts';
+import { lumenFile, type MeshFormat } from './mesh-formats.ts';
 
 /** What was left out of a mesh. */
 export interface CutNotes {
@@ -17,12 +18,25 @@ export interface CutNotes {
   readonly patches: readonly string[];
 }
 
+/** A file of the folder: its name, its unit of length, and what of the surface it cannot hold. */
+export interface FileNotes {
+  readonly name: string;
+  readonly unit: MeshUnit;
+  readonly holds_no: readonly string[];
+}
+
+export function describeFile(format: MeshFormat, unit: MeshUnit): FileNotes {
+  return { name: lumenFile(format), unit: format.unitOf(unit), holds_no: format.drops };
+}
+
 export interface MeshNotesInput {
   readonly mesh: LumenMesh;
   readonly forest: Forest;
   readonly unit: MeshUnit;
   readonly axialStretch: number;
   readonly binary: boolean;
+  /** The other files of the folder. */
+  readonly files: readonly FileNotes[];
   /** kg/m³ */
   readonly density: number;
   /** Pa·s where it is the same everywhere, else null. */
@@ -85,6 +99,7 @@ export function encodeMeshJson(input: MeshNotesInput): Uint8Array {
           },
     problems: mesh.problems.map(({ vessel, why }) => ({ vessel, why })),
     limits: LIMITS,
+    files: input.files,
   };
   return encodeText(`${JSON.stringify(notes, null, 2)}\n`);
 }

@@ -1,18 +1,15 @@
-import type { LumenMesh } from '../../mesh/lumen.ts';
 import { TextWriter } from '../text/writer.ts';
 import { type MeshUnit, positionsIn } from './length-unit.ts';
+import type { NamedTriangles } from './mesh-surface.ts';
 
 /**
  * A lumen surface as MSH 2.2 text, a physical surface with its name a patch.
  *
  * Source: Gmsh manual (public text quoting it), MSH 2.2: `id type ntags physical elementary nodes…`, type 2 a triangle.
  */
-export function encodeLumenMsh(
-  mesh: Pick<LumenMesh, 'position' | 'triangle' | 'patch' | 'patches'>,
-  unit: MeshUnit,
-): Uint8Array {
+export function encodeLumenMsh(mesh: NamedTriangles, unit: MeshUnit): Uint8Array {
   const out = new TextWriter();
-  const position = positionsIn(mesh.position, unit);
+  const position = positionsIn(mesh.position, unit, mesh.unit);
   out.add('$MeshFormat\n2.2 0 8\n$EndMeshFormat\n');
   out.add(`$Comments\nlumen surface, unit of length ${unit}\n$EndComments\n`);
   out.add(`$PhysicalNames\n${mesh.patches.length}\n`);

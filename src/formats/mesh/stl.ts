@@ -1,12 +1,10 @@
 import { inputError } from '../../core/errors.ts';
-import type { LumenMesh } from '../../mesh/lumen.ts';
 import { TextWriter } from '../text/writer.ts';
 import { type MeshUnit, positionsIn } from './length-unit.ts';
+import { type NamedTriangles, trianglesByPatch } from './mesh-surface.ts';
 
 /** Triangles above which an STL is written in binary. */
 export const BINARY_ABOVE = 5_000_000;
-
-type Surface = Pick<LumenMesh, 'position' | 'triangle' | 'patch' | 'patches'>;
 
 /**
  * A lumen surface as ASCII STL, one named solid a patch, the wall first.
@@ -16,7 +14,7 @@ type Surface = Pick<LumenMesh, 'position' | 'triangle' | 'patch' | 'patches'>;
  *
  * Source: de-facto standard of 1989, layout confirmed with an independent writer.
  */
-export function encodeNamedStl(mesh: Surface, unit: MeshUnit): Uint8Array {
+export function encodeNamedStl(mesh: NamedTriangles, unit: MeshUnit): Uint8Array {
   const out = new TextWriter();
   const lists = trianglesByPatch(mesh);
   const print = facetPrinter(mesh, unit);
@@ -30,7 +28,7 @@ export function encodeNamedStl(mesh: Surface, unit: MeshUnit): Uint8Array {
 }
 
 /** The same surface as one ASCII solid, for tools that take no more than one. */
-export function encodeSingleStl(mesh: Surface, unit: MeshUnit): Uint8Array {
+export function encodeSingleStl(mesh: NamedTriangles, unit: MeshUnit): Uint8Array {
   const out = new TextWriter();
   const print = facetPrinter(mesh, unit);
   out.add('solid lumen\n');
@@ -44,10 +42,10 @@ export function encodeSingleStl(mesh: Surface, unit: MeshUnit): Uint8Array {
  *
  * @throws InputError above 65,536 patches, which the attribute word cannot number
  */
-export function encodeBinaryStl(mesh: Surface, unit: MeshUnit): Uint8Array {
+export function encodeBinaryStl(mesh: NamedTriangles, unit: MeshUnit): Uint8Array {
   if (mesh.patches.length > 65_536)
     throw inputError('too-many-patches', 'lumen.stl', `got ${mesh.patches.length} patches, binary STL numbers 65,536`);
-  const position = Float32Array.from(positionsIn(mesh.position, unit));
+  const position = Float32Array.from(positionsIn(mesh.position, unit, mesh.unit));
   const count = mesh.triangle.length / 3;
   const bytes = new Uint8Array(84 + 50 * count);
   const view = new DataView(bytes.buffer);
@@ -69,19 +67,8 @@ export function encodeBinaryStl(mesh: Surface, unit: MeshUnit): Uint8Array {
   return bytes;
 }
 
-/** Triangles of each patch: those of patch p are list[start[p]] … list[start[p + 1] − 1]. */
-function trianglesByPatch(mesh: Surface): { start: Int32Array; list: Int32Array } {
-  const start = new Int32Array(mesh.patches.length + 1);
-  for (const p of mesh.patch) start[p + 1]!++;
-  for (let p = 0; p < mesh.patches.length; p++) start[p + 1]! += start[p]!;
-  const next = start.slice();
-  const list = new Int32Array(mesh.patch.length);
-  for (let t = 0; t < mesh.patch.length; t++) list[next[mesh.patch[t]!]!++] = t;
-  return { start, list };
-}
-
-function facetPrinter(mesh: Surface, unit: MeshUnit): (t: number) => string {
-  const position = positionsIn(mesh.position, unit);
+function facetPrinter(mesh: NamedTriangles, unit: MeshUnit): (t: number) => string {
+  const position = positionsIn(mesh.position, unit, mesh.unit);
   const corner = new Array<string>(position.length / 3);
   for (let v = 0; v < corner.length; v++)
     corner[v] = `      vertex ${position[3 * v]} ${position[3 * v + 1]} ${position[3 * v + 2]}\n`;
@@ -97,7 +84,7 @@ function facetPrinter(mesh: Surface, unit: MeshUnit): (t: number) => string {
   };
 }
 
-function normalOf(mesh: Surface, t: number): [number, number, number] {
+function normalOf(mesh: NamedTriangles, t: number): [number, number, number] {
   const p = mesh.position;
   const a = 3 * mesh.triangle[3 * t]!;
   const b = 3 * mesh.triangle[3 * t + 1]!;
