@@ -89,3 +89,31 @@ export function squaredDistanceBetweenSegments(
   const ez = wz + s * uz - t * vz;
   return ex * ex + ey * ey + ez * ez;
 }
+
+/**
+ * Whether the boxes round two segments a→b and c→d are further apart than `reach` (m) along some axis, so that the
+ * segments are too. Far cheaper than their distance.
+ */
+export function boxesApart(
+  ax: number,
+  ay: number,
+  az: number,
+  bx: number,
+  by: number,
+  bz: number,
+  cx: number,
+  cy: number,
+  cz: number,
+  dx: number,
+  dy: number,
+  dz: number,
+  reach: number,
+): boolean {
+  // Twice the distance of the middles over twice half the spans; without branches.
+  const twice = 2 * reach;
+  return (
+    Math.abs(ax + bx - cx - dx) - Math.abs(ax - bx) - Math.abs(cx - dx) > twice ||
+    Math.abs(ay + by - cy - dy) - Math.abs(ay - by) - Math.abs(cy - dy) > twice ||
+    Math.abs(az + bz - cz - dz) - Math.abs(az - bz) - Math.abs(cz - dz) > twice
+  );
+}

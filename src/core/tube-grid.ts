@@ -45,7 +45,7 @@ export class TubeGrid {
   private seen: Int32Array;
   private pass = 0;
   /** Rows that the last `gather` found; only the first `gather()` of them count. */
-  found = new Int32Array(256);
+  found: Int32Array = new Int32Array(256);
 
   /**
    * @param min, max m, box that most tubes lie in; what lies outside is filed in the cells at the edge
@@ -154,35 +154,38 @@ export class TubeGrid {
     const thin = cells > FEW_CELLS && this.inside(ax, ay, az) && this.inside(bx, by, bz);
     const near = this.nearSquared(reach);
     const pass = ++this.pass;
-    const packed = this.start.length > 0;
+    const { head, next, item, start, packed, seen, nx, ny } = this;
+    const filed = start.length > 0;
+    let found: Int32Array = this.found;
     let size = 0;
     for (let z = z0; z <= z1; z++) {
       const cz = this.minZ + (z + 0.5) * this.cell;
       for (let y = y0; y <= y1; y++) {
         const cy = this.minY + (y + 0.5) * this.cell;
+        const line = (z * ny + y) * nx;
         for (let x = x0; x <= x1; x++) {
-          const at = (z * this.ny + y) * this.nx + x;
-          let entry = this.head[at]!;
-          let from = packed ? this.start[at]! : 0;
-          const to = packed ? this.start[at + 1]! : 0;
+          const at = line + x;
+          let entry = head[at]!;
+          let from = filed ? start[at]! : 0;
+          const to = filed ? start[at + 1]! : 0;
           if (entry < 0 && from === to) continue;
           if (thin) {
             const cx = this.minX + (x + 0.5) * this.cell;
             if (squaredDistanceToSegment(cx, cy, cz, ax, ay, az, bx, by, bz) > near) continue;
           }
           for (; from < to; from++) {
-            const row = this.packed[from]!;
-            if (this.seen[row] === pass) continue;
-            this.seen[row] = pass;
-            if (size === this.found.length) this.widenFound();
-            this.found[size++] = row;
+            const row = packed[from]!;
+            if (seen[row] === pass) continue;
+            seen[row] = pass;
+            if (size === found.length) found = this.widenFound();
+            found[size++] = row;
           }
-          for (; entry >= 0; entry = this.next[entry]!) {
-            const row = this.item[entry]!;
-            if (this.seen[row] === pass) continue;
-            this.seen[row] = pass;
-            if (size === this.found.length) this.widenFound();
-            this.found[size++] = row;
+          for (; entry >= 0; entry = next[entry]!) {
+            const row = item[entry]!;
+            if (seen[row] === pass) continue;
+            seen[row] = pass;
+            if (size === found.length) found = this.widenFound();
+            found[size++] = row;
           }
         }
       }
@@ -210,10 +213,11 @@ export class TubeGrid {
     this.entries = 0;
   }
 
-  private widenFound(): void {
+  private widenFound(): Int32Array {
     const wider = new Int32Array(2 * this.found.length);
     wider.set(this.found);
     this.found = wider;
+    return wider;
   }
 
   /** Whether a point is in the box: only there does a cell's centre stand for all that is filed in it. */

@@ -36,6 +36,10 @@ const RESIZE = 1.15;
 const SHARE = 2;
 /** Growth between two sweeps that move nodes to their best places. */
 const RELAX = 1.3;
+/** Rows from which sweeps are further apart and pass over nodes that carry few terminals; how many one must carry then. */
+const MANY_ROWS = 200_000;
+const RELAX_MANY = 1.45;
+const SWEPT = 4;
 /** Subtrees that carry at least this part of their tree are hung anew now and then while it grows. */
 const COARSE = 1000;
 /** Radii over today's that a moved node leaves room for, so that the tubes at it can still gain flow. */
@@ -333,7 +337,7 @@ export class Grower {
     const served = this.served;
     this.nextRefresh = Math.max(served + 1, Math.ceil(served * REFRESH));
     if (served >= this.nextRelax) {
-      this.nextRelax = RELAX * served;
+      this.nextRelax = (this.builder.count < MANY_ROWS ? RELAX : RELAX_MANY) * served;
       this.relax();
       this.owesRefresh = true;
       if (this.finishes === 0) this.onMoment?.((out) => this.save(out));
@@ -378,7 +382,7 @@ export class Grower {
   /** Moves every node once; each tree is weighed as if its tubes had their least-power radii. */
   private relax(): void {
     const { room } = this;
-    this.sweeper.sweep(null);
+    this.sweeper.sweep(null, this.builder.count < MANY_ROWS ? 1 : SWEPT);
     room.slack = COARSE_SLACK;
     this.rehangCoarse();
     room.slack = 1;

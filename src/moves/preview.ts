@@ -1,4 +1,4 @@
-import { squaredDistanceBetweenSegments } from '../core/segments.ts';
+import { boxesApart, squaredDistanceBetweenSegments } from '../core/segments.ts';
 import { FIT_MARGIN, RUN_OUT, separationReach } from '../room/reach.ts';
 import type { Room } from '../room/room.ts';
 import { tubeInside } from '../tissue/tube.ts';
@@ -53,21 +53,15 @@ export class Preview {
       if (top < 0 || other === skip || other === this.ignored) continue;
       if (nodeA >= 0 && (other === nodeA || top === nodeA)) continue;
       if (nodeB >= 0 && (other === nodeB || top === nodeB)) continue;
-      const squared = squaredDistanceBetweenSegments(
-        ax,
-        ay,
-        az,
-        bx,
-        by,
-        bz,
-        p[3 * top]!,
-        p[3 * top + 1]!,
-        p[3 * top + 2]!,
-        p[3 * other]!,
-        p[3 * other + 1]!,
-        p[3 * other + 2]!,
-      );
+      const cx = p[3 * top]!;
+      const cy = p[3 * top + 1]!;
+      const cz = p[3 * top + 2]!;
+      const dx = p[3 * other]!;
+      const dy = p[3 * other + 1]!;
+      const dz = p[3 * other + 2]!;
       const wide = need + room.reserveOf(other);
+      if (boxesApart(ax, ay, az, bx, by, bz, cx, cy, cz, dx, dy, dz, wide)) continue;
+      const squared = squaredDistanceBetweenSegments(ax, ay, az, bx, by, bz, cx, cy, cz, dx, dy, dz);
       if (squared >= wide * wide) continue;
       const least = need + this.shrink * builder.radius(other);
       if (squared < least * least) return false;

@@ -1,5 +1,5 @@
 import { type Memory, ownMemory } from '../core/memory.ts';
-import { squaredDistanceBetweenSegments } from '../core/segments.ts';
+import { boxesApart, squaredDistanceBetweenSegments } from '../core/segments.ts';
 import type { StateIn, StateOut } from '../core/state.ts';
 import { TubeGrid, type TubeGridView } from '../core/tube-grid.ts';
 import type { Tissue } from '../tissue/tissue.ts';
@@ -239,24 +239,17 @@ export class Room {
       const top = builder.parent[other]!;
       // Freed rows, roots, itself and tubes that share a node are nobody's neighbours.
       if (top < 0 || other === row || top === parent || top === row || other === parent) continue;
-      const distance = Math.sqrt(
-        squaredDistanceBetweenSegments(
-          ax,
-          ay,
-          az,
-          bx,
-          by,
-          bz,
-          p[3 * top]!,
-          p[3 * top + 1]!,
-          p[3 * top + 2]!,
-          p[3 * other]!,
-          p[3 * other + 1]!,
-          p[3 * other + 2]!,
-        ),
-      );
-      const room = distance - gap;
-      const allowed = room - this.reserveOf(other);
+      const cx = p[3 * top]!;
+      const cy = p[3 * top + 1]!;
+      const cz = p[3 * top + 2]!;
+      const dx = p[3 * other]!;
+      const dy = p[3 * other + 1]!;
+      const dz = p[3 * other + 2]!;
+      const reserve = this.reserveOf(other);
+      if (boxesApart(ax, ay, az, bx, by, bz, cx, cy, cz, dx, dy, dz, granted + gap + reserve)) continue;
+      const squared = squaredDistanceBetweenSegments(ax, ay, az, bx, by, bz, cx, cy, cz, dx, dy, dz);
+      const room = Math.sqrt(squared) - gap;
+      const allowed = room - reserve;
       if (allowed >= granted) continue;
       if (allowed >= least) {
         granted = allowed;

@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { type Random, randomStream } from '../../../src/core/random.ts';
-import { squaredDistanceBetweenSegments, squaredDistanceToSegment } from '../../../src/core/segments.ts';
+import { boxesApart, squaredDistanceBetweenSegments, squaredDistanceToSegment } from '../../../src/core/segments.ts';
 import { TubeGrid } from '../../../src/core/tube-grid.ts';
 
 type Segment = [number, number, number, number, number, number];
@@ -37,6 +37,33 @@ describe('segment distances', () => {
       expect(exact).toBeGreaterThan(sampled - 0.08);
       expect(squaredDistanceBetweenSegments(...t, ...s)).toBeCloseTo(exact * exact, 12);
     }
+  });
+
+  it('are never within a reach that their boxes are apart by', () => {
+    const random = randomStream('boxes', 'test');
+    let apart = 0;
+    let near = 0;
+    for (let round = 0; round < 3000; round++) {
+      const draw = () => 2 * random.next() - 1;
+      const s: Segment = [draw(), draw(), draw(), draw(), draw(), draw()];
+      const t: Segment = [draw(), draw(), draw(), draw(), draw(), draw()];
+      const reach = random.next();
+      const exact = Math.sqrt(squaredDistanceBetweenSegments(...s, ...t));
+      // What the boxes are apart by, the long way round.
+      const gaps = [0, 1, 2].map((k) =>
+        Math.max(
+          Math.min(s[k]!, s[k + 3]!) - Math.max(t[k]!, t[k + 3]!),
+          Math.min(t[k]!, t[k + 3]!) - Math.max(s[k]!, s[k + 3]!),
+        ),
+      );
+      const expected = Math.max(...gaps) > reach;
+      expect(boxesApart(...s, ...t, reach)).toBe(expected);
+      if (expected) expect(exact).toBeGreaterThan(reach);
+      if (expected) apart++;
+      else if (exact <= reach) near++;
+    }
+    expect(apart).toBeGreaterThan(200);
+    expect(near).toBeGreaterThan(200);
   });
 
   it('give known values', () => {
