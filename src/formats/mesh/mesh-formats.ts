@@ -45,7 +45,7 @@ const same = (unit: MeshUnit): MeshUnit => unit;
 const printed = (unit: MeshUnit): MeshUnit => (unit === 'um' ? 'um' : 'mm');
 
 /** Every format a lumen surface can be written to; help and tests read this table. */
-export const MESH_FORMATS = [
+export const MESH_FORMATS: readonly MeshFormat[] = [
   {
     id: 'stl',
     title: `STL, ASCII with a named solid a patch; above ${BINARY_ABOVE / 1e6} million triangles binary, float32, patch number in the attribute word`,
@@ -149,7 +149,7 @@ export const MESH_FORMATS = [
     owns: (head) => head.includes('type="UnstructuredGrid"') && head.includes('Name="patch_names"'),
     encode: encodeLumenVtu,
   },
-] as const satisfies readonly MeshFormat[];
+];
 
 /**
  * The format whose ending a path has, in any case.
