@@ -35,10 +35,11 @@ export interface ShortExtension {
  * Where another vessel is in the way an extension ends before it, and is listed.
  *
  * @param diameters lengths of the extensions in diameters of their vessels, 0 to 100
+ * @param which     ends that are drawn out
  * @throws InputError for a number out of range
  * Cost:   O(n) for a grid, and per cap what lies near it
  */
-export function extendCaps(forest: Forest, diameters: number): ExtendedForest {
+export function extendCaps(forest: Forest, diameters: number, which: 'all' | 'roots' = 'all'): ExtendedForest {
   if (!(diameters >= 0 && diameters <= 100))
     throw inputError('out-of-range', 'extend', `got ${diameters} diameters, expected 0 to 100`);
   const n = forest.count;
@@ -49,7 +50,7 @@ export function extendCaps(forest: Forest, diameters: number): ExtendedForest {
   const ends = listEnds(forest);
   for (const { row, vessel, inner } of ends) {
     const wanted = 2 * diameters * forest.radius[vessel]!;
-    if (wanted === 0) continue;
+    if (wanted === 0 || (which === 'roots' && forest.parent[row]! >= 0)) continue;
     const scale = wanted / tubeLength(forest, vessel);
     const step = [0, 1, 2].map((k) => scale * (forest.position[3 * row + k]! - forest.position[3 * inner + k]!));
     let blocker = -1;

@@ -35,6 +35,7 @@ const LAYERS: Record<string, readonly string[]> = {
   flow: ['core', 'tree', 'physics', 'spec'],
   mesh: ['core', 'tree'],
   formats: ['core', 'tree', 'mesh'],
+  print: ['core', 'tree', 'spec', 'tissue', 'mesh'],
   check: ['core', 'tree', 'spec'],
   compare: ['core', 'tree'],
   report: ['core', 'tree', 'physics', 'spec'],
