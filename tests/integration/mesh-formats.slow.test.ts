@@ -24,9 +24,12 @@ const SCRIPT = new URL('read-mesh-formats.py', import.meta.url).pathname;
 const SILENT = process.env.CI === undefined;
 const METRES = { m: 1, mm: 1e-3, um: 1e-6 };
 
-function runs(command: string, ...words: string[]): boolean {
-  return spawnSync(command, words).status === 0;
+/** Runs a tool; without a folder, only to see whether it is there. */
+function run(folder: string | undefined, command: string, ...words: string[]) {
+  const { stdout, stderr, status } = spawnSync(command, words, { cwd: folder, encoding: 'utf8' });
+  return { out: stdout ?? '', text: `${stdout}${stderr}`, status };
 }
+const runs = (command: string, ...words: string[]): boolean => run(undefined, command, ...words).status === 0;
 const readers = existsSync(PYTHON) && runs(PYTHON, '-c', 'import vtkmodules.vtkIOXML, meshio, numpy');
 const lib3mf = existsSync(PYTHON) && runs(PYTHON, '-c', 'import ctypes; ctypes.CDLL("lib3MF.so.1")');
 const gmsh = runs('gmsh', '--version');
@@ -70,9 +73,9 @@ describe.each(CASES)('%s', (_, unit, trees) => {
   });
 
   it.skipIf(SILENT && !readers)('holds the same triangles for VTK, meshio and lib3mf', () => {
-    const { stdout, stderr, status } = spawnSync(PYTHON, [SCRIPT, folder, String(METRES[unit])], { encoding: 'utf8' });
-    expect(status, stderr).toBe(0);
-    const found = JSON.parse(stdout.slice(stdout.indexOf('{"vtp"')));
+    const { out, text, status } = run(folder, PYTHON, SCRIPT, folder, String(METRES[unit]));
+    expect(status, text).toBe(0);
+    const found = JSON.parse(out.slice(out.indexOf('{"vtp"')));
     expect(found.vtp.cells).toBe(triangles);
     expect(found.ply).toMatchObject({ same: true, points: vertices, open: 0 });
     expect(found.obj).toMatchObject({ same: true, points: vertices, open: 0, groups: counts, meshio: true });
@@ -102,10 +105,9 @@ describe.each(CASES)('%s', (_, unit, trees) => {
   });
 
   it.skipIf(SILENT && !gmsh)('is read by Gmsh from its MSH 4.1 and written again with the same patches', () => {
-    const words = ['-0', 'lumen_4.msh', '-format', 'msh22', '-o', 'again.msh'];
-    const { stdout, stderr, status } = spawnSync('gmsh', words, { cwd: folder, encoding: 'utf8' });
-    expect(stdout + stderr).not.toMatch(/^(Error|Warning)/m);
-    expect(status, stdout + stderr).toBe(0);
+    const { text, status } = run(folder, 'gmsh', '-0', 'lumen_4.msh', '-format', 'msh22', '-o', 'again.msh');
+    expect(text).not.toMatch(/^(Error|Warning)/m);
+    expect(status, text).toBe(0);
     const again = readFileSync(join(folder, 'again.msh'), 'utf8').replace(
       '$PhysicalNames',
       `$Comments\nunit of length ${unit}\n$EndComments\n$PhysicalNames`,
@@ -127,9 +129,8 @@ describe.each(CASES)('%s', (_, unit, trees) => {
       join(folder, 'fill.geo'),
       `Merge "lumen_4.msh";\nSurface Loop(1) = {${loop}};\nVolume(1) = {1};\nPhysical Volume("lumen", 1) = {1};\n`,
     );
-    const words = ['-3', '-format', 'msh2', '-o', 'filled.msh', 'fill.geo'];
-    const { stdout, stderr, status } = spawnSync('gmsh', words, { cwd: folder, encoding: 'utf8' });
-    expect(stdout + stderr).not.toMatch(/^Error/m);
+    const { text, status } = run(folder, 'gmsh', '-3', '-format', 'msh2', '-o', 'filled.msh', 'fill.geo');
+    expect(text).not.toMatch(/^Error/m);
     expect(status).toBe(0);
     const filled = readFileSync(join(folder, 'filled.msh'), 'utf8');
     for (const name of names) expect(filled).toContain(`"${name}"`);

@@ -1,7 +1,7 @@
 import { FaultList } from '../faults.ts';
 import { openPiece } from '../vtk/data-set-reader.ts';
-import { type EncodedDataSet, joinPieces, type NamedArray } from '../vtk/data-set-writer.ts';
-import { encodePolyData } from '../vtk/poly-data-writer.ts';
+import { joinPieces } from '../vtk/data-set-writer.ts';
+import { encodePolyData, type NamedArray } from '../vtk/poly-data-writer.ts';
 import { MESH_UNITS } from './length-unit.ts';
 import type { MeshSurface } from './mesh-surface.ts';
 
@@ -14,7 +14,7 @@ export function encodeLumenVtp(surface: MeshSurface): Uint8Array {
   const names = surface.patches.map((patch) => patch.name);
   const texts = new Array<string>(faces);
   for (let t = 0; t < faces; t++) texts[t] = names[surface.patch[t]!]!;
-  const encoded: EncodedDataSet = encodePolyData({
+  const encoded = encodePolyData({
     points: surface.position,
     polys: { connectivity: surface.triangle, ends: triangleEnds(faces) },
     pointData: pointArrays(surface),

@@ -1,8 +1,12 @@
-import { boundaryTable } from '../../mesh/boundary-table.ts';
+import { InvariantError } from '../../core/errors.ts';
+import { type BoundaryRow, boundaryTable } from '../../mesh/boundary-table.ts';
+import { type InletProfile, inletProfile } from '../../mesh/inlet-profile.ts';
 import type { LumenMesh } from '../../mesh/lumen.ts';
 import { networkTable } from '../../mesh/network-table.ts';
 import type { FlowField, Forest, TreeKind } from '../../tree/forest.ts';
 import type { NamedBytes } from '../format.ts';
+import { encodeFillScript } from '../solver/fill-script.ts';
+import { encodeOpenfoamCase } from '../solver/openfoam-case.ts';
 import type { MeshUnit } from './length-unit.ts';
 import { encodeLumenVtp } from './lumen-vtp.ts';
 import { MESH_FORMATS } from './mesh-formats.ts';
@@ -10,7 +14,7 @@ import { type CutNotes, describeFile, encodeMeshJson, type FileNotes } from './m
 import { surfaceOfLumen } from './mesh-surface.ts';
 import { encodeLumenMsh } from './msh.ts';
 import { BINARY_ABOVE, encodeBinaryStl, encodeNamedStl, encodeSingleStl } from './stl.ts';
-import { encodeBoundaryCsv, encodeNetworkCsv } from './tables.ts';
+import { encodeBoundaryCsv, encodeNetworkCsv, encodeProfileCsv } from './tables.ts';
 
 export interface MeshFolderInput {
   readonly mesh: LumenMesh;
@@ -35,6 +39,12 @@ export interface MeshFolderInput {
       }
     | undefined;
   readonly facts?: Readonly<Record<string, unknown>> | undefined;
+  /** Where caps were moved out: diameters asked for, (n) m that each row's cap was moved. */
+  readonly extension?: { readonly diameters: number; readonly got: ArrayLike<number> } | undefined;
+  /** Velocities at inlets, written as `inlet_profile.csv`. */
+  readonly profile?: InletProfile | undefined;
+  /** Input for meshers and flow solvers. */
+  readonly solverFiles?: readonly ('gmsh' | 'openfoam')[] | undefined;
 }
 
 /** The files of a mesh folder, by name. */
@@ -69,12 +79,30 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
         density: input.density,
         viscosity: input.viscosity,
         cut: cutNotes,
+        extension: input.extension,
+        profile: input.profile,
         facts: input.facts,
       }),
     },
   ];
   // A binary file is one solid already.
   if (!binary) files.splice(1, 0, { name: 'lumen_one_solid.stl', bytes: encodeSingleStl(mesh, unit) });
+  return [...files, ...forSolvers(input, boundary)];
+}
+
+/** What meshers and flow solvers take beside the surface. */
+function forSolvers(input: MeshFolderInput, boundary: readonly BoundaryRow[]): NamedBytes[] {
+  const { mesh, profile, solverFiles = [], density, viscosity, unit = 'm' } = input;
+  const files: NamedBytes[] = [];
+  const rows = profile === undefined ? [] : inletProfile(mesh, boundary, profile);
+  if (profile !== undefined) files.push({ name: 'inlet_profile.csv', bytes: encodeProfileCsv(rows) });
+  // A case for a flow solver is filled by the script for the mesher.
+  if (solverFiles.length > 0) files.push({ name: 'fill.geo', bytes: encodeFillScript() });
+  if (solverFiles.includes('openfoam')) {
+    if (viscosity === null) throw new InvariantError('forSolvers: got no viscosity for a flow solver');
+    const velocities = profile === 'parabolic' ? rows : null;
+    files.push(...encodeOpenfoamCase({ boundary, density, viscosity, profile: velocities, unit }));
+  }
   return files;
 }
 

@@ -42,6 +42,10 @@ export interface MeshNotesInput {
   /** Pa·s where it is the same everywhere, else null. */
   readonly viscosity: number | null;
   readonly cut: CutNotes | null;
+  /** Where caps were moved out: diameters asked for, (n) m that each row's cap was moved. */
+  readonly extension?: { readonly diameters: number; readonly got: ArrayLike<number> } | undefined;
+  /** Profile of the velocities in `inlet_profile.csv`. */
+  readonly profile?: string | undefined;
   /** Anything else the caller wants told: seed, version, exponent. */
   readonly facts?: Readonly<Record<string, unknown>> | undefined;
 }
@@ -97,6 +101,8 @@ export function encodeMeshJson(input: MeshNotesInput): Uint8Array {
             vessels: cut.removed,
             patches: cut.patches,
           },
+    extensions: input.extension === undefined ? null : extensionsOf(mesh, input.extension),
+    inlet_profile: input.profile ?? null,
     problems: mesh.problems.map(({ vessel, why }) => ({ vessel, why })),
     limits: LIMITS,
     files: input.files,
@@ -124,6 +130,14 @@ function qualityOf(figures: LumenFigures, forest: Forest): Record<string, number
 }
 
 /** A point on the axis of each tree's first vessel, halfway. */
+function extensionsOf(
+  mesh: LumenMesh,
+  { diameters, got }: { readonly diameters: number; readonly got: ArrayLike<number> },
+): Record<string, unknown> {
+  const caps = mesh.patches.filter((patch) => patch.row >= 0);
+  return { diameters, length_m: Object.fromEntries(caps.map((cap) => [cap.name, got[cap.row]!])) };
+}
+
 function insidePoints(mesh: LumenMesh, forest: Forest): number[][] {
   const points: number[][] = [];
   for (const patch of mesh.patches) {

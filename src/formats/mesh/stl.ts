@@ -28,12 +28,12 @@ export function encodeNamedStl(mesh: NamedTriangles, unit: MeshUnit): Uint8Array
 }
 
 /** The same surface as one ASCII solid, for tools that take no more than one. */
-export function encodeSingleStl(mesh: NamedTriangles, unit: MeshUnit): Uint8Array {
+export function encodeSingleStl(mesh: NamedTriangles, unit: MeshUnit, name = 'lumen'): Uint8Array {
   const out = new TextWriter();
   const print = facetPrinter(mesh, unit);
-  out.add('solid lumen\n');
+  out.add(`solid ${name}\n`);
   for (let t = 0; t < mesh.triangle.length / 3; t++) out.add(print(t));
-  out.add('endsolid lumen\n');
+  out.add(`endsolid ${name}\n`);
   return out.bytes();
 }
 

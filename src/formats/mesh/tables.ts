@@ -1,4 +1,5 @@
 import type { BoundaryRow } from '../../mesh/boundary-table.ts';
+import type { ProfileRow } from '../../mesh/inlet-profile.ts';
 import type { NetworkRow } from '../../mesh/network-table.ts';
 import { printReal } from '../text/numbers.ts';
 import { TextWriter } from '../text/writer.ts';
@@ -52,5 +53,14 @@ export function encodeNetworkCsv(rows: readonly NetworkRow[]): Uint8Array {
     const numbers = [...row.start, ...row.end, row.radius, row.radius, row.length, row.flow, ...row.pressures];
     out.add(`${row.segment},${row.from},${row.to},${numbers.map(printReal).join(',')}\n`);
   }
+  return out.bytes();
+}
+
+/** `inlet_profile.csv`, a line a corner of an inlet cap, metres; taken linear over triangles it carries the table's flow. */
+export function encodeProfileCsv(rows: readonly ProfileRow[]): Uint8Array {
+  const out = new TextWriter();
+  out.add('patch,x_m,y_m,z_m,vx_m_s,vy_m_s,vz_m_s\n');
+  for (const { patch, place, velocity } of rows)
+    out.add(`${patch},${[...place, ...velocity].map(printPlain).join(',')}\n`);
   return out.bytes();
 }

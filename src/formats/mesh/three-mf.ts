@@ -32,15 +32,17 @@ const RELATIONSHIPS =
  * Source: 3MF Core Specification 1.3: model, resources, object, mesh, build; units micron, millimeter, meter, …; the
  * package of two parts and their relationship after the Open Packaging Conventions (ECMA-376 part 2).
  */
-export function encodeThreeMf(surface: NamedTriangles, unit: MeshUnit): Uint8Array {
+export function encodeThreeMf(surface: NamedTriangles, unit: MeshUnit, name = 'lumen'): Uint8Array {
   const position = positionsIn(surface.position, unit, surface.unit);
   const { triangle } = surface;
   const out = new TextWriter();
   out.add(
     `<?xml version="1.0" encoding="UTF-8"?>\n<model unit="${UNIT_WORDS[unit]}" xml:lang="en-US"` +
       ' xmlns="http://schemas.microsoft.com/3dmanufacturing/core/2015/02">\n' +
-      '  <metadata name="Title">lumen</metadata>\n  <metadata name="Application">vesselwright</metadata>\n' +
-      '  <resources>\n    <object id="1" type="model" name="lumen">\n      <mesh>\n        <vertices>\n',
+      `  <metadata name="Title">${name}</metadata>\n` +
+      '  <metadata name="Application">vesselwright</metadata>\n' +
+      `  <resources>\n    <object id="1" type="model" name="${name}">\n` +
+      '      <mesh>\n        <vertices>\n',
   );
   for (let v = 0; v < position.length; v += 3)
     out.add(`<vertex x="${position[v]}" y="${position[v + 1]}" z="${position[v + 2]}"/>\n`);
