@@ -14,6 +14,8 @@ export interface FlowOptions {
   readonly density: number;
   /** (n) discharge haematocrit, fraction; 0 where left out. */
   readonly haematocrit?: Reals | undefined;
+  /** (n) m that resist flow, > 0 (see effective-lengths.ts); those of the axes where left out. Transit keeps the axes. */
+  readonly lengths?: Reals | undefined;
 }
 
 /**
@@ -37,6 +39,9 @@ export function solveFlow(forest: Forest, kinds: readonly TreeKind[], options: F
   if (options.haematocrit !== undefined && options.haematocrit.length !== n) {
     throw new InvariantError(`solveFlow: got ${options.haematocrit.length} haematocrits for ${n} rows`);
   }
+  if (options.lengths !== undefined && options.lengths.length !== n) {
+    throw new InvariantError(`solveFlow: got ${options.lengths.length} lengths for ${n} rows`);
+  }
   const viscosity = viscosityColumn(forest, options.viscosity);
   const pressure = new Float64Array(n);
   const transit = new Float64Array(n);
@@ -56,7 +61,7 @@ export function solveFlow(forest: Forest, kinds: readonly TreeKind[], options: F
       continue;
     }
     const length = tubeLength(forest, i);
-    const drop = tubeResistance(length, r, mu) * q;
+    const drop = tubeResistance(options.lengths?.[i] ?? length, r, mu) * q;
     pressure[i] = pressure[parent]! + (kinds[forest.tree[i]!] === 'drain' ? drop : -drop);
     transit[i] = transit[parent]! + length / velocity[i]!;
   }
