@@ -17,12 +17,24 @@ export { fromSi, toSi, UNITS, type Unit } from './core/units.ts';
 export { decodeTree } from './formats/decode-tree.ts';
 export type { ByteSource, DecodedTree, NamedBytes, TreeFormat } from './formats/format.ts';
 export { MESH_UNITS, type MeshUnit } from './formats/mesh/length-unit.ts';
+export { lumenFile, MESH_FORMATS } from './formats/mesh/mesh-formats.ts';
+export { CASE_FILES, CASE_FOLDER } from './formats/solver/openfoam-case.ts';
 export { encodeState, openState, type StateHead } from './formats/state-file.ts';
 export { decodeSurface } from './formats/surface/surface-formats.ts';
 export { splitTreePath, TREE_FORMATS } from './formats/tree-formats.ts';
 export type { OnMoment } from './growth/options.ts';
 export { LUMEN_DEFAULTS } from './mesh/build-lumen.ts';
+export { INLET_PROFILES, type InletProfile } from './mesh/inlet-profile.ts';
 export type { LumenMesh } from './mesh/lumen.ts';
+export {
+  addNegative,
+  type MeshOptions,
+  type MeshResult,
+  meshTree,
+  type NegativeResult,
+  SOLVER_FILES,
+  type SolverFiles,
+} from './mesh-run.ts';
 export { CHUNK, type Crew, type ProposalTask } from './moves/crew.ts';
 export { Desk } from './moves/desk.ts';
 export { CAUTION } from './report/caution.ts';
@@ -34,9 +46,6 @@ export {
   describeChanges,
   type FlowChange,
   type FlowResult,
-  type MeshOptions,
-  type MeshResult,
-  meshTree,
   solveAgain,
 } from './rerun.ts';
 export { type GrowOptions, type GrowResult, growRun, solveRecord, VERSION } from './run.ts';

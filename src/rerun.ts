@@ -5,22 +5,15 @@ import type { TriangleSurface } from './core/surface.ts';
 import { fromSi } from './core/units.ts';
 import { solveWithEnds } from './flow/ends.ts';
 import { narrowTube, withFlow } from './flow/narrow.ts';
-import type { NamedBytes } from './formats/format.ts';
-import type { MeshUnit } from './formats/mesh/length-unit.ts';
-import { encodeMeshFolder } from './formats/mesh/mesh-folder.ts';
-import { buildLumen } from './mesh/build-lumen.ts';
-import { type CutOptions, cutField, cutForest, cutResistances } from './mesh/cut-forest.ts';
-import type { LumenMesh } from './mesh/lumen.ts';
 import { solveRecord, VERSION } from './run.ts';
 import { type SolvedAgain, solvedAgainOf, VISCOSITY_RANGE } from './spec/solved-again.ts';
 import type { Spec } from './spec/types.ts';
 import { specToJson } from './spec/write.ts';
-import type { FlowField, TreeRecord } from './tree/forest.ts';
-import { strahlerOrders } from './tree/strahler.ts';
-import { countVessels, vesselName } from './tree/vessels.ts';
+import type { TreeRecord } from './tree/forest.ts';
+import { vesselName } from './tree/vessels.ts';
 
 /*
- * What is run on a tree that stands, grown here or read from a file: its flow solved again, its lumen meshed.
+ * What is run on a tree that stands, grown here or read from a file: its flow solved again, its promises checked.
  */
 
 /** What is done to a tree before its flow is solved again. */
@@ -85,7 +78,7 @@ export function solveAgain(record: TreeRecord, spec: Spec, change: FlowChange): 
 }
 
 /** The spec with the viscosity that the flow was solved with last. */
-function specAsSolved(spec: Spec, solvedAgain: SolvedAgain | null): Spec {
+export function specAsSolved(spec: Spec, solvedAgain: SolvedAgain | null): Spec {
   const value = solvedAgain?.viscosity ?? spec.blood.viscosity.value;
   return { ...spec, blood: { ...spec.blood, viscosity: { law: 'constant', value } } };
 }
@@ -141,104 +134,4 @@ function lapsedPromises(spec: Spec, { viscosity, narrowed }: SolvedAgain): Reado
     if (sizing.rule === 'junction-exponent' && sizing.scale.by === 'mean-pressure') lapsed.push('sizing');
   }
   return new Set(lapsed);
-}
-
-export interface MeshOptions extends CutOptions {
-  /** Segments round a vessel. */
-  readonly around?: number | undefined;
-  /** Unit of the surface files; metres where left out. */
-  readonly unit?: MeshUnit | undefined;
-}
-
-export interface MeshResult {
-  readonly mesh: LumenMesh;
-  /** The files of a mesh folder. */
-  readonly files: readonly NamedBytes[];
-  /** Vessels that were meshed, and that were cut off. */
-  readonly vessels: number;
-  readonly removed: number;
-}
-
-/**
- * Meshes the lumen of a tree, or of its wider part.
- *
- * @param grown spec as grown, which tells blood, and pressures where the record holds no solution; null where there is none
- * @throws InputError for options out of range, or a record with neither solution nor spec
- */
-export function meshTree(record: TreeRecord, grown: Spec | null, options: MeshOptions = {}): MeshResult {
-  const spec = grown === null ? null : specAsSolved(grown, solvedAgainOf(record.provenance));
-  const solved = record.field !== null || spec === null ? record : solveRecord(record.forest, spec);
-  const { kinds, field: whole } = solved;
-  if (whole === null) {
-    throw inputError('no-flow', 'tree', 'got neither a flow solution nor a spec, expected one of them for the tables');
-  }
-  const { around, unit, keepAbove, keepOrder } = options;
-  judgeCut(record, options);
-  const cut =
-    keepAbove === undefined && keepOrder === undefined ? null : cutForest(record.forest, { keepAbove, keepOrder });
-  const forest = cut?.forest ?? record.forest;
-  const field = cut === null ? whole : cutField(cut, whole);
-  const mesh = buildLumen(forest, { around, kinds, vesselNumbers: cut?.vesselNumbers });
-  const files = encodeMeshFolder({
-    mesh,
-    forest,
-    field,
-    kinds,
-    unit,
-    density: spec?.blood.density ?? densityOf(whole),
-    viscosity: spec?.blood.viscosity.value ?? onlyValue(whole.viscosity),
-    cut:
-      cut === null
-        ? undefined
-        : {
-            notes: { keepAbove: keepAbove ?? null, keepOrder: keepOrder ?? null, removed: cut.removed },
-            source: cut.source,
-            vesselNumbers: cut.vesselNumbers,
-            resistances: cutResistances(cut, whole, field),
-          },
-    facts: {
-      program: `vesselwright ${VERSION}`,
-      name: spec?.name,
-      seed: spec?.seed,
-      sizing: spec?.sizing.rule,
-      junction_exponent: spec === null || spec.sizing.rule === 'least-power' ? undefined : spec.sizing.exponent,
-    },
-  });
-  return { mesh, files, vessels: countVessels(forest), removed: cut?.removed ?? 0 };
-}
-
-/** Refuses a cut that leaves nothing of a tree, by the tree's name. */
-function judgeCut(record: TreeRecord, { keepAbove = 0, keepOrder = 1 }: CutOptions): void {
-  if (!(keepAbove > 0 || keepOrder > 1)) return;
-  const { forest, names } = record;
-  const order = strahlerOrders(forest);
-  const short = (length: number) => Number(fromSi(length, 'um').toPrecision(4));
-  for (const [t, name] of names.entries()) {
-    const root = forest.treeStart[t]!;
-    let [widest, highest, any] = [0, 0, false];
-    for (let i = root + 1; i < forest.treeStart[t + 1]!; i++) {
-      if (forest.parent[i] !== root) continue;
-      any ||= forest.radius[i]! >= keepAbove && order[i]! >= keepOrder;
-      widest = Math.max(widest, forest.radius[i]!);
-      highest = Math.max(highest, order[i]!);
-    }
-    if (any) continue;
-    const narrow = widest < keepAbove;
-    const got = narrow
-      ? `got ${short(keepAbove)} µm, but tree ${name} begins with a vessel of radius ${short(widest)} µm`
-      : `got ${keepOrder}, but tree ${name} begins with a vessel of order ${highest}`;
-    const wanted = narrow ? `expected at most ${short(widest)} µm` : `expected at most ${highest}`;
-    throw inputError('nothing-left', narrow ? 'keepAbove' : 'keepOrder', `${got}, ${wanted}`);
-  }
-}
-
-/** kg/m³, from the Reynolds number of the first vessel: Re = 2 ρ v r / μ. */
-function densityOf(field: FlowField): number {
-  return (field.reynolds[0]! * field.viscosity[0]!) / (2 * field.velocity[0]! * field.forest.radius[0]!);
-}
-
-/** The one value of a column, or null where there are several. */
-function onlyValue(column: ArrayLike<number>): number | null {
-  for (let i = 1; i < column.length; i++) if (column[i] !== column[0]) return null;
-  return column[0]!;
 }

@@ -1,25 +1,44 @@
 import { join } from 'node:path';
 import type { Command } from 'commander';
 import {
+  addNegative,
   type CheckResult,
   checkLumen,
   checkTable,
+  INLET_PROFILES,
   inputError,
   LUMEN_DEFAULTS,
   MESH_UNITS,
   type MeshOptions,
   type MeshResult,
   meshTree,
+  type NegativeResult,
+  SOLVER_FILES,
   toSi,
 } from '../index.ts';
-import { MESH_FOLDER, placeForFolder, readTree, specOfTree, writeFolder } from '../node/index.ts';
+import {
+  MESH_FOLDER,
+  placeForFolder,
+  readTree,
+  specOfTree,
+  surfacesOfTree,
+  type TreeFiles,
+  writeFolder,
+} from '../node/index.ts';
 import { addCommonOptions, addExample, addRequired, type Context, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
-import { positiveNumber, wholeNumber, withOptionNames } from './option-values.ts';
+import { numberFrom, oneOf, positiveNumber, wholeNumber, withOptionNames } from './option-values.ts';
 
 /** What the library's options are called on the command line. */
-const OPTION_NAMES = { around: '--around', keepAbove: '--keep-above', keepOrder: '--keep-order' };
+const OPTION_NAMES = {
+  around: '--around',
+  axialStretch: '--stretch',
+  extend: '--extend',
+  keepAbove: '--keep-above',
+  keepOrder: '--keep-order',
+  solverFiles: '--solver-files',
+};
 
 interface MeshArguments extends CommonOptions {
   readonly out: string;
@@ -27,6 +46,12 @@ interface MeshArguments extends CommonOptions {
   readonly keepAbove?: string;
   readonly keepOrder?: string;
   readonly unit?: string;
+  readonly stretch?: string;
+  readonly extend?: string;
+  readonly profile?: string;
+  readonly solverFiles?: string;
+  readonly negative?: boolean;
+  readonly leastWall?: string;
 }
 
 export function addMesh(program: Command, context: Context): void {
@@ -45,7 +70,19 @@ export function addMesh(program: Command, context: Context): void {
     .option('--around <count>', `segments round a vessel, 8 to 256; ${LUMEN_DEFAULTS.around} where not given`)
     .option('--keep-above <radius_um>', 'leave out vessels thinner than this radius in µm, with a cap in their place')
     .option('--keep-order <order>', 'leave out vessels below this Strahler order; terminals have order 1')
-    .option('--unit <unit>', `unit of the surface files: ${MESH_UNITS.join(', ')}; tables are in metres always`, 'm');
+    .option('--unit <unit>', `unit of the surface files: ${MESH_UNITS.join(', ')}; tables are in metres always`, 'm')
+    .option('--stretch <factor>', 'axial edges over those round a vessel, 1 to 3.5: fewer, longer triangles', '1')
+    .option('--extend <diameters>', 'draw vessels out straight at all caps, by diameters of their own, 0 to 100')
+    .option('--profile <shape>', `write inlet_profile.csv: velocities at inlets, ${INLET_PROFILES.join(' or ')}`)
+    .option(
+      '--solver-files <list>',
+      `write input that runs as it is: ${SOLVER_FILES.join(',')} (steady laminar flow in the folder openfoam)`,
+    )
+    .option(
+      '--negative',
+      'write negative.stl and .3mf for printing: the tissue’s block less the lumen, open at the roots',
+    )
+    .option('--least-wall <thickness_um>', 'with --negative: tell where walls are thinner than this, in µm');
   addCommonOptions(command, 'print the summary as one JSON document');
   addExample(command, 'mesh runs/gel --out meshes/gel --keep-above 60', 'mesh runs/gel --out meshes/gel-mm --unit mm');
   command.action((tree: string, options: MeshArguments) =>
@@ -53,8 +90,9 @@ export function addMesh(program: Command, context: Context): void {
   );
 }
 
-function mesh(path: string, options: MeshArguments, talk: Talk): number {
+async function mesh(path: string, options: MeshArguments, talk: Talk): Promise<number> {
   const wanted = meshOptions(options);
+  const leastWall = leastWallOf(options);
   placeForFolder(options.out, MESH_FOLDER, '--out');
   const tree = readTree(path);
   for (const note of tree.notes) talk.note(note);
@@ -62,13 +100,23 @@ function mesh(path: string, options: MeshArguments, talk: Talk): number {
   const made = withOptionNames({ ...OPTION_NAMES, tree: path }, () => meshTree(tree.record, specOfTree(tree), wanted));
   talk.onProgress({ stage: 'proof', done: 0, total: 1 });
   const check = checkFiles(made);
-  const files = made.files.map(({ name, bytes }) => ({ name, content: bytes }));
+  const negative = options.negative === true ? await negativeOf(tree, made, wanted, leastWall) : null;
+  const files = (negative ?? made).files.map(({ name, bytes }) => ({ name, content: bytes }));
   writeFolder(options.out, MESH_FOLDER, files, talk.writing('--out'));
   talk.settle();
-  const held = check.held && made.mesh.problems.length === 0;
+  const hollow = negative?.notes.problems ?? [];
+  const held = check.held && made.mesh.problems.length === 0 && hollow.length === 0;
   talk.result(
-    () => describeMesh(made, check, options.out),
-    () => JSON.stringify(summariseMesh(made, check, options.out, held), null, 2),
+    () => describeMesh({ ...made, files: (negative ?? made).files }, negative, check, options.out),
+    () =>
+      JSON.stringify(
+        {
+          ...summariseMesh({ ...made, files: (negative ?? made).files }, check, options.out, held),
+          negative: negative?.notes ?? null,
+        },
+        null,
+        2,
+      ),
   );
   return held ? EXIT.held : EXIT.broken;
 }
@@ -88,7 +136,43 @@ function meshOptions(options: MeshArguments): MeshOptions {
     keepAbove:
       options.keepAbove === undefined ? undefined : toSi(positiveNumber(options.keepAbove, '--keep-above'), 'um'),
     keepOrder: options.keepOrder === undefined ? undefined : wholeNumber(options.keepOrder, '--keep-order', 1, 1000),
+    axialStretch: positiveNumber(options.stretch ?? '1', '--stretch'),
+    extend: options.extend === undefined ? undefined : numberFrom(options.extend, '--extend', 0, 100),
+    profile: options.profile === undefined ? undefined : oneOf(options.profile, '--profile', INLET_PROFILES),
+    solverFiles:
+      options.solverFiles === undefined
+        ? undefined
+        : options.solverFiles.split(',').map((word) => oneOf(word, '--solver-files', SOLVER_FILES)),
   };
+}
+
+function leastWallOf(options: MeshArguments): number {
+  if (options.leastWall === undefined) return 0;
+  if (options.negative !== true)
+    throw inputError('bad-value', '--least-wall', 'got it without --negative, expected both or neither');
+  return toSi(positiveNumber(options.leastWall, '--least-wall'), 'um');
+}
+
+function negativeOf(
+  tree: TreeFiles,
+  made: MeshResult,
+  options: MeshOptions,
+  leastWall: number,
+): Promise<NegativeResult> {
+  const spec = specOfTree(tree);
+  const surfaces = spec === null ? new Map() : surfacesOfTree(tree, spec).surfaces;
+  return addNegative(made, tree.record, spec, surfaces, options, leastWall);
+}
+
+function describeNegative(notes: NegativeResult['notes']): string[] {
+  const micro = (length: number | null) => (length === null ? 'none' : `${Number((length * 1e6).toPrecision(4))} µm`);
+  const cubic = (volume: number) => `${Number((volume * 1e9).toPrecision(4))} mm³`;
+  return [
+    `  negative: ${notes.triangles} triangles, ${cubic(notes.channels_m3)} of channels in ${cubic(notes.block_m3)}, ` +
+      `least wall between channels ${micro(notes.least_wall_between_channels_m)}, ` +
+      `to the surface ${micro(notes.least_wall_to_surface_m)}`,
+    ...notes.problems.map((why) => `    NOT MET: ${why}`),
+  ];
 }
 
 /** The independent check, on the bytes that will be written. */
@@ -105,7 +189,7 @@ function checkFiles(made: MeshResult): CheckResult {
   });
 }
 
-function describeMesh(made: MeshResult, check: CheckResult, out: string): string {
+function describeMesh(made: MeshResult, negative: NegativeResult | null, check: CheckResult, out: string): string {
   const { mesh: lumen, files, vessels, removed } = made;
   const broken = check.promises.filter((promise) => promise.held === false).length;
   const held = check.promises.filter((promise) => promise.held === true).length;
@@ -114,12 +198,13 @@ function describeMesh(made: MeshResult, check: CheckResult, out: string): string
     `  triangles: ${lumen.triangle.length / 3}, patches: wall and ${lumen.patches.length - 1} caps`,
     `  promises: ${held} held, ${broken} broken`,
     ...lumen.problems.map(({ vessel, why }) => `    NOT MET: at the end of vessel ${vessel}: ${why}`),
+    ...(negative === null ? [] : describeNegative(negative.notes)),
     `  written: ${join(out, '/')}: ${files.map(({ name }) => name).join(', ')}`,
   ];
   return `${lines.join('\n')}\n${broken === 0 ? '' : `\n${checkTable(check)}`}`;
 }
 
-function summariseMesh(made: MeshResult, check: CheckResult, out: string, held: boolean): unknown {
+function summariseMesh(made: MeshResult, check: CheckResult, out: string, held: boolean): object {
   const { mesh: lumen, files, vessels, removed } = made;
   return {
     out,

@@ -18,6 +18,20 @@ export function positiveNumber(text: string, option: string): number {
   throw inputError('out-of-range', option, `got ${JSON.stringify(text)}, expected a number > 0`);
 }
 
+/** Number of an option, from `least` to `most`. */
+export function numberFrom(text: string, option: string, least: number, most: number): number {
+  const value = text.trim() === '' ? Number.NaN : Number(text);
+  if (value >= least && value <= most) return value;
+  throw inputError('out-of-range', option, `got ${JSON.stringify(text)}, expected a number from ${least} to ${most}`);
+}
+
+/** A word of an option, one of some. */
+export function oneOf<T extends string>(text: string, option: string, words: readonly T[]): T {
+  const word = words.find((one) => one === text.trim());
+  if (word !== undefined) return word;
+  throw inputError('bad-value', option, `got ${JSON.stringify(text)}, expected one of ${words.join(', ')}`);
+}
+
 /** Number with a unit after it, such as `3.5mPa_s`; in SI. */
 export function quantityOf(text: string, option: string, quantity: (typeof UNITS)[Unit]['quantity']): number {
   const units = (Object.keys(UNITS) as Unit[]).filter((unit) => UNITS[unit].quantity === quantity);

@@ -13,6 +13,8 @@ export const CREW = {
   failed: 3,
   slots: 4,
 } as const;
+/** Seconds without a chunk done after which members are taken to be gone; a chunk takes milliseconds. */
+const PATIENCE = 20;
 /** Bits of `next` that count chunks. */
 export const CHUNK_BITS = 16;
 
@@ -56,7 +58,7 @@ export interface ThreadCrew extends Crew {
 export function startCrew(workers: number, spec: Spec, surfaces: ReadonlyMap<string, TriangleSurface>): ThreadCrew {
   const control = new SharedArrayBuffer(4 * CREW.slots);
   const words = new Int32Array(control);
-  const members = Array.from({ length: workers - 1 }, () => {
+  let members = Array.from({ length: workers - 1 }, () => {
     const { port1, port2 } = new MessageChannel();
     const start: CrewStart = { control, port: port2, spec, surfaces };
     const worker = new Worker(new URL('./crew-worker.js', import.meta.url), {
@@ -70,9 +72,22 @@ export function startCrew(workers: number, spec: Spec, surfaces: ReadonlyMap<str
   });
   const memory: Memory = (bytes) => new SharedArrayBuffer(bytes);
   let id = 0;
+  const close = () => {
+    Atomics.store(words, CREW.task, -1);
+    Atomics.notify(words, CREW.task);
+    for (const { port, worker } of members) {
+      port.close();
+      void worker.terminate();
+    }
+    members = [];
+  };
   return {
     memory,
     work(task, count, mine) {
+      if (members.length === 0) {
+        mine(0, count);
+        return;
+      }
       const chunks = Math.ceil(count / CHUNK);
       id++;
       Atomics.store(words, CREW.done, 0);
@@ -85,18 +100,17 @@ export function startCrew(workers: number, spec: Spec, surfaces: ReadonlyMap<str
         mine(chunk * CHUNK, Math.min(count, (chunk + 1) * CHUNK));
         Atomics.add(words, CREW.done, 1);
       }
+      let waited = 0;
       for (let done = Atomics.load(words, CREW.done); done < chunks; done = Atomics.load(words, CREW.done)) {
-        Atomics.wait(words, CREW.done, done, 1000);
+        waited = Atomics.wait(words, CREW.done, done, 1000) === 'timed-out' ? waited + 1 : 0;
+        if (waited < PATIENCE) continue;
+        // A member has ended with a chunk in hand. The others are let go too: none may write once this one goes on.
+        close();
+        mine(0, count);
+        return;
       }
       if (Atomics.load(words, CREW.failed) === id) mine(0, count);
     },
-    close() {
-      Atomics.store(words, CREW.task, -1);
-      Atomics.notify(words, CREW.task);
-      for (const { port, worker } of members) {
-        port.close();
-        void worker.terminate();
-      }
-    },
+    close,
   };
 }

@@ -1,6 +1,15 @@
 import { existsSync, readdirSync, readFileSync, realpathSync, statSync } from 'node:fs';
 import { join, relative, resolve } from 'node:path';
-import { InputError, inputError, parseSpec, shapeFiles } from '../index.ts';
+import {
+  CASE_FILES,
+  CASE_FOLDER,
+  InputError,
+  inputError,
+  lumenFile,
+  MESH_FORMATS,
+  parseSpec,
+  shapeFiles,
+} from '../index.ts';
 import { withFiles } from './system-faults.ts';
 
 /** A kind of folder this program writes. */
@@ -10,6 +19,8 @@ export interface FolderKind {
   readonly marks: readonly string[];
   /** And may hold these. */
   readonly others: readonly string[];
+  /** And may hold these folders, as long as nothing but these files is in them (a name that ends in `/`: a folder of any). */
+  readonly folders?: Readonly<Record<string, readonly string[]>>;
 }
 
 export const RUN_FOLDER: FolderKind = {
@@ -21,7 +32,13 @@ export const RUN_FOLDER: FolderKind = {
 export const MESH_FOLDER: FolderKind = {
   title: 'mesh folder',
   marks: ['lumen.stl', 'mesh.json'],
-  others: ['lumen_one_solid.stl', 'lumen.vtp', 'lumen.msh', 'boundary.csv', 'network.csv'],
+  others: [
+    ...['lumen_one_solid.stl', 'lumen.vtp', 'lumen.msh', 'boundary.csv', 'network.csv'],
+    ...['inlet_profile.csv', 'fill.geo', 'negative.stl', 'negative.3mf'],
+    ...MESH_FORMATS.map(lumenFile),
+  ],
+  // A case that was run holds results, which are not to be lost.
+  folders: { [CASE_FOLDER]: CASE_FILES },
 };
 
 /**
@@ -59,7 +76,18 @@ export function placeForFolder(out: string, kind: FolderKind, where: string): st
 function foreignNames(place: string, names: readonly string[], kind: FolderKind): readonly string[] {
   if (!kind.marks.every((mark) => names.includes(mark))) return names;
   const own = new Set([...kind.marks, ...kind.others, ...copiedSurfaces(place)]);
-  return names.filter((name) => !own.has(name));
+  return names.flatMap((name) => (own.has(name) ? [] : foreignIn(place, name, kind.folders?.[name])));
+}
+
+/** What is not ours in a folder; the name itself where it is none of ours. */
+function foreignIn(place: string, name: string, files: readonly string[] | undefined): readonly string[] {
+  const path = join(place, name);
+  if (files === undefined || !statSync(path).isDirectory()) return [name];
+  return readdirSync(path, { recursive: true, encoding: 'utf8' })
+    .map((inner) => inner.replaceAll('\\', '/'))
+    .filter((inner) => !statSync(join(path, inner)).isDirectory())
+    .filter((inner) => !files.some((file) => (file.endsWith('/') ? inner.startsWith(file) : inner === file)))
+    .map((inner) => `${name}/${inner}`);
 }
 
 /** Surfaces that a run's spec names. */

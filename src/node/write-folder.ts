@@ -1,5 +1,5 @@
 import { existsSync, mkdirSync, renameSync, rmSync } from 'node:fs';
-import { join, resolve } from 'node:path';
+import { dirname, join, resolve } from 'node:path';
 import { type Content, writeContent } from './large-files.ts';
 import { type FolderKind, placeForFolder } from './out-folder.ts';
 import { withFiles } from './system-faults.ts';
@@ -7,7 +7,7 @@ import { clearStale, temporaryBeside, type WriteOptions, withParents } from './t
 
 /** A file of a folder. */
 export interface OutFile {
-  /** Without folders. */
+  /** With `/` between folders. */
   readonly name: string;
   readonly content: Content;
 }
@@ -29,7 +29,11 @@ export function writeFolder(out: string, kind: FolderKind, files: readonly OutFi
       options.temporary?.(temporary);
       try {
         mkdirSync(temporary);
-        for (const { name, content } of files) writeContent(join(temporary, name), content);
+        for (const { name, content } of files) {
+          const path = join(temporary, name);
+          if (name.includes('/')) mkdirSync(dirname(path), { recursive: true });
+          writeContent(path, content);
+        }
         putInPlace(temporary, place, options);
       } finally {
         rmSync(temporary, { recursive: true, force: true });

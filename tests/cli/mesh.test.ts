@@ -51,6 +51,61 @@ describe('mesh', () => {
     expect(check.code).toBe(0);
   });
 
+  test('--extend, --profile, --stretch and --solver-files: longer vessels, a table, input that names every cap', async () => {
+    const words = ['--extend', '4', '--profile', 'parabolic', '--solver-files', 'gmsh,openfoam', '--stretch', '1.5'];
+    const { code, out, err } = await runCli(['mesh', run, ...words, '--out', scratch.path('ready')]);
+    expect({ code, err }, out).toEqual({ code: 0, err: '' });
+    const notes = JSON.parse(text('ready', 'mesh.json'));
+    expect(notes).toMatchObject({ axial_stretch: 1.5, inlet_profile: 'parabolic', extensions: { diameters: 4 } });
+    const caps = text('ready', 'boundary.csv')
+      .trim()
+      .split('\n')
+      .slice(1)
+      .map((line) => line.split(','));
+    for (const cap of caps) expect(notes.extensions.length_m[cap[0]!] / (8 * Number(cap[2]))).toBeCloseTo(1, 9);
+    const plain = JSON.parse(text('mesh', 'mesh.json'));
+    expect(plain).toMatchObject({ extensions: null, inlet_profile: null, axial_stretch: 1 });
+    expect(text('ready', 'inlet_profile.csv')).toMatch(/^patch,x_m,y_m,z_m,vx_m_s,vy_m_s,vz_m_s\ninlet_0,/);
+    for (const file of ['0/U', '0/p', 'system/controlDict'])
+      for (const cap of caps) expect(text('ready', 'openfoam', file)).toContain(cap[0]!);
+    expect(text('ready', 'fill.geo')).toContain('Merge "lumen.msh"');
+    const check = await runCli(['check', scratch.path('ready'), '--json']);
+    expect(JSON.parse(check.out)).toMatchObject({ held: true });
+  });
+
+  test('--negative writes the block less the lumen; a wall thinner than asked is told: exit 1', async () => {
+    const argv = ['mesh', run, '--around', '12', '--negative', '--out', scratch.path('gel'), '--json'];
+    const first = await runCli(argv);
+    expect(first.code, first.out + first.err).toBe(0);
+    const { negative } = JSON.parse(first.out);
+    expect(negative.solid_m3).toBeCloseTo(negative.block_m3 - negative.channels_m3, 20);
+    expect(negative.problems).toEqual([]);
+    expect(text('gel', 'negative.stl')).toMatch(/^solid negative\n/);
+    expect(text('gel', 'negative.stl').match(/^ {2}facet/gm)).toHaveLength(negative.triangles);
+    expect(existsSync(scratch.path('gel', 'negative.3mf'))).toBe(true);
+    expect(JSON.parse(text('gel', 'mesh.json')).negative).toEqual(negative);
+    const least = 1e6 * Math.min(negative.least_wall_between_channels_m, negative.least_wall_to_surface_m);
+    const second = await runCli([...argv, '--least-wall', String(2 * least)]);
+    expect(second.code).toBe(1);
+    expect(JSON.parse(second.out).negative.problems.length).toBeGreaterThan(0);
+    const third = await runCli([...argv, '--least-wall', String(0.99 * least)]);
+    expect(third.code).toBe(0);
+  });
+
+  test.each([
+    [['--least-wall', '30'], /--least-wall: got it without --negative/],
+    [['--negative', '--least-wall', '0'], /--least-wall: got "0", expected a number > 0/],
+    [['--extend', '-1'], /--extend: got "-1", expected a number from 0 to 100/],
+    [['--profile', 'round'], /--profile: got "round", expected one of flat, parabolic/],
+    [['--solver-files', 'gmsh,none'], /--solver-files: got "none", expected one of gmsh, openfoam/],
+    [['--stretch', '9'], /--stretch: got 9, expected 1 to 3.5/],
+  ])('%j is refused: exit 2, nothing written', async (words, told) => {
+    const { code, err } = await runCli(['mesh', run, ...words, '--out', scratch.path('refused')]);
+    expect(code).toBe(2);
+    expect(err).toMatch(told);
+    expect(existsSync(scratch.path('refused'))).toBe(false);
+  });
+
   test('--unit, --around and --keep-above are told in mesh.json, and the mesh is checked in metres all the same', async () => {
     const argv = ['--unit', 'mm', '--around', '28', '--keep-order', '2', '--keep-above', '1', '--json'];
     const { code, out } = await runCli(['mesh', run, ...argv, '--out', scratch.path('coarse')]);

@@ -103,4 +103,18 @@ describe('threads that grow', () => {
       expect(told(`failing${after}`)).toBeGreaterThan(0);
     },
   );
+
+  test('a member that ends with work in hand is done without, after some waiting', async () => {
+    // In a thread of its own this ends the thread, as running out of memory does.
+    const code = `const cbrt = Math.cbrt;
+  let roots = 0;
+  Math.cbrt = (x) => {
+    if (++roots <= 20_000) return cbrt(x);
+    tell();
+    process.exit(1);
+  };`;
+    const env = troubled('ending', code);
+    expect((await grow('large', 3, 'none', 'ending', env)).equals(alone)).toBe(true);
+    expect(told('ending')).toBeGreaterThan(0);
+  });
 });

@@ -42,7 +42,7 @@ const LAYERS: Record<string, readonly string[]> = {
 };
 const FOLDERS = Object.keys(LAYERS);
 /** Files at the top of src: they may import every folder of the library, and no folder may import them. */
-const TOP = ['index.ts', 'rerun.ts', 'run-report.ts', 'run.ts'];
+const TOP = ['index.ts', 'mesh-run.ts', 'rerun.ts', 'run-report.ts', 'run.ts'];
 /** Those of them that the edges may not see. */
 const HIDDEN = TOP.filter((file) => file !== 'index.ts');
 

@@ -94,14 +94,15 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
 function forSolvers(input: MeshFolderInput, boundary: readonly BoundaryRow[]): NamedBytes[] {
   const { mesh, profile, solverFiles = [], density, viscosity, unit = 'm' } = input;
   const files: NamedBytes[] = [];
-  const rows = profile === undefined ? [] : inletProfile(mesh, boundary, profile);
-  if (profile !== undefined) files.push({ name: 'inlet_profile.csv', bytes: encodeProfileCsv(rows) });
+  if (profile !== undefined) {
+    const bytes = encodeProfileCsv(inletProfile(mesh, boundary, profile));
+    files.push({ name: 'inlet_profile.csv', bytes });
+  }
   // A case for a flow solver is filled by the script for the mesher.
   if (solverFiles.length > 0) files.push({ name: 'fill.geo', bytes: encodeFillScript() });
   if (solverFiles.includes('openfoam')) {
     if (viscosity === null) throw new InvariantError('forSolvers: got no viscosity for a flow solver');
-    const velocities = profile === 'parabolic' ? rows : null;
-    files.push(...encodeOpenfoamCase({ boundary, density, viscosity, profile: velocities, unit }));
+    files.push(...encodeOpenfoamCase({ boundary, density, viscosity, profile: profile ?? 'flat', unit }));
   }
   return files;
 }

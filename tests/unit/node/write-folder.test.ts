@@ -1,5 +1,6 @@
 import { existsSync, mkdirSync, readFileSync, symlinkSync, writeFileSync } from 'node:fs';
 import { hostname } from 'node:os';
+import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, test } from 'vitest';
 import { InputError } from '../../../src/index.ts';
 import { MESH_FOLDER, RUN_FOLDER, writeFiles, writeFolder } from '../../../src/node/index.ts';
@@ -83,9 +84,24 @@ describe('writeFolder', () => {
   });
 
   test('what fails half-way leaves nothing, not even the folders above', () => {
-    const files = [...runFiles('x'), { name: 'no/such/folder', content: 'x' }];
+    // A folder cannot be made where a file is.
+    const files = [...runFiles('x'), { name: 'tree.vtp/inside', content: 'x' }];
     refusal(() => writeFolder(scratch.path('a', 'b', 'run'), RUN_FOLDER, files, WRITING));
     expect(scratch.names()).toEqual([]);
+  });
+
+  test('makes folders inside, and keeps one in which something else has come to lie', () => {
+    const files = [
+      ...['lumen.stl', 'mesh.json', 'openfoam/run.sh', 'openfoam/0/U'].map((name) => ({ name, content: name })),
+    ];
+    const place = scratch.path('mesh');
+    writeFolder(place, MESH_FOLDER, files, WRITING);
+    expect(readFileSync(join(place, 'openfoam/0/U'), 'utf8')).toBe('openfoam/0/U');
+    writeFolder(place, MESH_FOLDER, files.slice(0, 3), WRITING);
+    expect(existsSync(join(place, 'openfoam/0'))).toBe(false);
+    writeFileSync(join(place, 'openfoam/result'), 'x');
+    expect(refusal(() => writeFolder(place, MESH_FOLDER, files, WRITING))).toMatch(/holds openfoam\/result\)/);
+    expect(readFileSync(join(place, 'openfoam/result'), 'utf8')).toBe('x');
   });
 
   test('tells of the temporary folder before it is there, and commits with both names in place', () => {
