@@ -14,6 +14,7 @@ export type { Progress, Watch } from './core/progress.ts';
 export { StateIn, StateOut } from './core/state.ts';
 export type { TriangleSurface } from './core/surface.ts';
 export { fromSi, toSi, UNITS, type Unit } from './core/units.ts';
+export { LENGTH_CHOICES, type LengthChoice } from './flow/shortened-field.ts';
 export { decodeTree } from './formats/decode-tree.ts';
 export type { ByteSource, DecodedTree, NamedBytes, TreeFormat } from './formats/format.ts';
 export { MESH_UNITS, type MeshUnit } from './formats/mesh/length-unit.ts';

@@ -1,6 +1,8 @@
 import { inputError } from './core/errors.ts';
 import type { TriangleSurface } from './core/surface.ts';
 import { fromSi } from './core/units.ts';
+import { effectiveLengths } from './flow/effective-lengths.ts';
+import { type LengthChoice, shortenField } from './flow/shortened-field.ts';
 import type { NamedBytes } from './formats/format.ts';
 import type { MeshUnit } from './formats/mesh/length-unit.ts';
 import { encodeMeshFolder } from './formats/mesh/mesh-folder.ts';
@@ -30,6 +32,8 @@ export interface MeshOptions extends CutOptions {
   readonly axialStretch?: number | undefined;
   /** Unit of the surface files; metres where left out. */
   readonly unit?: MeshUnit | undefined;
+  /** Lengths that resist flow in the network whose pressures the tables give; those of the axes where left out. */
+  readonly lengths?: LengthChoice | undefined;
   /** Diameters by which vessels are drawn out at all caps; 0 where left out. */
   readonly extend?: number | undefined;
   /** Velocities at the inlets that are written as a table. */
@@ -63,7 +67,17 @@ export function meshTree(record: TreeRecord, grown: Spec | null, options: MeshOp
   if (whole === null) {
     throw inputError('no-flow', 'tree', 'got neither a flow solution nor a spec, expected one of them for the tables');
   }
-  const { around, unit, axialStretch, keepAbove, keepOrder, extend = 0, profile, solverFiles = [] } = options;
+  const {
+    lengths = 'axis',
+    around,
+    unit,
+    axialStretch,
+    keepAbove,
+    keepOrder,
+    extend = 0,
+    profile,
+    solverFiles = [],
+  } = options;
   const viscosity = spec?.blood.viscosity.value ?? onlyValue(whole.viscosity);
   if (solverFiles.includes('openfoam') && viscosity === null) {
     throw inputError('no-viscosity', 'solverFiles', 'got blood of several viscosities, expected one for a flow solver');
@@ -72,7 +86,12 @@ export function meshTree(record: TreeRecord, grown: Spec | null, options: MeshOp
   const { cut } = part;
   const extended = extendCaps(part.forest, extend);
   const forest = extend === 0 ? part.forest : extended.forest;
-  const field = extend === 0 ? part.field : extendField(extended, part.forest, part.field);
+  const axis = extend === 0 ? part.field : extendField(extended, part.forest, part.field);
+  const shorter = effectiveLengths(forest);
+  const effective = shortenField(axis, kinds, shorter);
+  const field = lengths === 'axis' ? axis : effective;
+  // Resistances behind a cut are those of the network whose pressures stand beside them.
+  const ofPart = (of: FlowField) => (lengths === 'axis' ? of : shortenField(of, kinds, effectiveLengths(of.forest)));
   const numberOf = (row: number): number => cut?.vesselNumbers[row] ?? vesselOfRow(forest, row);
   const built = buildLumen(forest, { around, axialStretch, kinds, vesselNumbers: cut?.vesselNumbers });
   const mesh = { ...built, problems: [...built.problems, ...shortExtensions(built, extended.short, numberOf)] };
@@ -86,6 +105,7 @@ export function meshTree(record: TreeRecord, grown: Spec | null, options: MeshOp
     axialStretch,
     density,
     viscosity,
+    networks: { used: lengths, effectiveLengths: shorter, axis: axis.pressure, effective: effective.pressure },
     extension: extend === 0 ? undefined : { diameters: extend, got: extended.extension },
     cut:
       cut === null
@@ -94,7 +114,7 @@ export function meshTree(record: TreeRecord, grown: Spec | null, options: MeshOp
             notes: { keepAbove: keepAbove ?? null, keepOrder: keepOrder ?? null, removed: cut.removed },
             source: cut.source,
             vesselNumbers: cut.vesselNumbers,
-            resistances: cutResistances(cut, whole, part.field),
+            resistances: cutResistances(cut, ofPart(whole), ofPart(part.field)),
           },
     facts: {
       program: `vesselwright ${VERSION}`,

@@ -7,6 +7,7 @@ import {
   checkTable,
   INLET_PROFILES,
   inputError,
+  LENGTH_CHOICES,
   LUMEN_DEFAULTS,
   MESH_UNITS,
   type MeshOptions,
@@ -46,6 +47,7 @@ interface MeshArguments extends CommonOptions {
   readonly keepAbove?: string;
   readonly keepOrder?: string;
   readonly unit?: string;
+  readonly lengths?: string;
   readonly stretch?: string;
   readonly extend?: string;
   readonly profile?: string;
@@ -71,6 +73,11 @@ export function addMesh(program: Command, context: Context): void {
     .option('--keep-above <radius_um>', 'leave out vessels thinner than this radius in µm, with a cap in their place')
     .option('--keep-order <order>', 'leave out vessels below this Strahler order; terminals have order 1')
     .option('--unit <unit>', `unit of the surface files: ${MESH_UNITS.join(', ')}; tables are in metres always`, 'm')
+    .option(
+      '--lengths <which>',
+      'network of the tables: axis, or effective (less what of vessels lies in others; nearer to flow in the mesh)',
+      'axis',
+    )
     .option('--stretch <factor>', 'axial edges over those round a vessel, 1 to 3.5: fewer, longer triangles', '1')
     .option('--extend <diameters>', 'draw vessels out straight at all caps, by diameters of their own, 0 to 100')
     .option('--profile <shape>', `write inlet_profile.csv: velocities at inlets, ${INLET_PROFILES.join(' or ')}`)
@@ -136,6 +143,7 @@ function meshOptions(options: MeshArguments): MeshOptions {
     keepAbove:
       options.keepAbove === undefined ? undefined : toSi(positiveNumber(options.keepAbove, '--keep-above'), 'um'),
     keepOrder: options.keepOrder === undefined ? undefined : wholeNumber(options.keepOrder, '--keep-order', 1, 1000),
+    lengths: oneOf(options.lengths ?? 'axis', '--lengths', LENGTH_CHOICES),
     axialStretch: positiveNumber(options.stretch ?? '1', '--stretch'),
     extend: options.extend === undefined ? undefined : numberFrom(options.extend, '--extend', 0, 100),
     profile: options.profile === undefined ? undefined : oneOf(options.profile, '--profile', INLET_PROFILES),

@@ -17,6 +17,8 @@ export interface NetworkRow {
   readonly radius: number;
   /** m */
   readonly length: number;
+  /** m that resist flow in the network of effective lengths, or null where they are not known. */
+  readonly effectiveLength: number | null;
   /** m³/s from `from` to `to`, > 0. */
   readonly flow: number;
   /** Pa at `from` and at `to`. */
@@ -30,6 +32,8 @@ export interface NetworkTableOptions {
   readonly source?: ArrayLike<number> | undefined;
   /** (n) vessel number that each row is called by. */
   readonly vesselNumbers?: ArrayLike<number> | undefined;
+  /** (n) m, effective lengths. */
+  readonly effectiveLengths?: ArrayLike<number> | undefined;
 }
 
 /**
@@ -60,6 +64,7 @@ export function networkTable(forest: Forest, field: FlowField, options: NetworkT
       end: place(to),
       radius: forest.radius[row]!,
       length: tubeLength(forest, row),
+      effectiveLength: options.effectiveLengths?.[row] ?? null,
       flow: forest.flow[row]!,
       pressures: [field.pressure[from]!, field.pressure[to]!],
     });

@@ -14,7 +14,7 @@ import { type CutNotes, describeFile, encodeMeshJson, type FileNotes } from './m
 import { surfaceOfLumen } from './mesh-surface.ts';
 import { encodeLumenMsh } from './msh.ts';
 import { BINARY_ABOVE, encodeBinaryStl, encodeNamedStl, encodeSingleStl } from './stl.ts';
-import { encodeBoundaryCsv, encodeNetworkCsv, encodeProfileCsv } from './tables.ts';
+import { type DropRow, encodeBoundaryCsv, encodeNetworkCsv, encodeProfileCsv } from './tables.ts';
 
 export interface MeshFolderInput {
   readonly mesh: LumenMesh;
@@ -38,6 +38,17 @@ export interface MeshFolderInput {
         readonly resistances: ArrayLike<number>;
       }
     | undefined;
+  /** The networks of axis lengths and of effective lengths; `field` is one of them. */
+  readonly networks?:
+    | {
+        readonly used: 'axis' | 'effective';
+        /** (n) m */
+        readonly effectiveLengths: ArrayLike<number>;
+        /** (n) Pa at the nodes of either. */
+        readonly axis: ArrayLike<number>;
+        readonly effective: ArrayLike<number>;
+      }
+    | undefined;
   readonly facts?: Readonly<Record<string, unknown>> | undefined;
   /** Where caps were moved out: diameters asked for, (n) m that each row's cap was moved. */
   readonly extension?: { readonly diameters: number; readonly got: ArrayLike<number> } | undefined;
@@ -53,7 +64,13 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
   const unit = input.unit ?? 'm';
   const binary = mesh.triangle.length / 3 > BINARY_ABOVE;
   const boundary = boundaryTable(mesh, forest, field, input.density, cut?.resistances);
-  const network = networkTable(forest, field, { kinds, source: cut?.source, vesselNumbers: cut?.vesselNumbers });
+  const network = networkTable(forest, field, {
+    kinds,
+    source: cut?.source,
+    vesselNumbers: cut?.vesselNumbers,
+    effectiveLengths: input.networks?.effectiveLengths,
+  });
+  const drops = input.networks === undefined ? null : dropsOf(mesh, forest, input.networks);
   const cutNotes: CutNotes | null =
     cut === undefined
       ? null
@@ -65,7 +82,7 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
     { name: 'lumen.stl', bytes: binary ? encodeBinaryStl(mesh, unit) : encodeNamedStl(mesh, unit) },
     { name: 'lumen.vtp', bytes: encodeLumenVtp(surfaceOfLumen(mesh, forest, field, unit)) },
     { name: 'lumen.msh', bytes: encodeLumenMsh(mesh, unit) },
-    { name: 'boundary.csv', bytes: encodeBoundaryCsv(boundary) },
+    { name: 'boundary.csv', bytes: encodeBoundaryCsv(boundary, drops) },
     { name: 'network.csv', bytes: encodeNetworkCsv(network) },
     {
       name: 'mesh.json',
@@ -79,6 +96,15 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
         density: input.density,
         viscosity: input.viscosity,
         cut: cutNotes,
+        network:
+          drops === null
+            ? undefined
+            : {
+                lengths: input.networks!.used,
+                drops: boundary.flatMap((row, k) =>
+                  row.resistance === null ? [] : [{ patch: row.patch, ...drops[k]! }],
+                ),
+              },
         extension: input.extension,
         profile: input.profile,
         facts: input.facts,
@@ -88,6 +114,17 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
   // A binary file is one solid already.
   if (!binary) files.splice(1, 0, { name: 'lumen_one_solid.stl', bytes: encodeSingleStl(mesh, unit) });
   return [...files, ...forSolvers(input, boundary)];
+}
+
+/** Drops of both networks between a tree's root and each cap, in the order of the boundary table. */
+function dropsOf(mesh: LumenMesh, forest: Forest, networks: NonNullable<MeshFolderInput['networks']>): DropRow[] {
+  return mesh.patches
+    .filter(({ kind }) => kind !== 'wall')
+    .map(({ row, tree }) => {
+      const root = forest.treeStart[tree]!;
+      const drop = (pressure: ArrayLike<number>) => Math.abs(pressure[root]! - pressure[row]!);
+      return { lengths: networks.used, axis: drop(networks.axis), effective: drop(networks.effective) };
+    });
 }
 
 /** What meshers and flow solvers take beside the surface. */

@@ -9,16 +9,26 @@ const BOUNDARY = [
   ...['mean_velocity_m_s', 'reynolds', 'resistance_Pa_s_m3', 'windkessel_r1', 'windkessel_r2', 'windkessel_c'],
   ...['tree', 'vessel'],
 ];
+const DROPS = ['lengths', 'drop_axis_Pa', 'drop_effective_Pa'];
+
+/** Which network the pressures of the tables are those of, and the drops of both between a tree's root and a cap. */
+export interface DropRow {
+  readonly lengths: 'axis' | 'effective';
+  /** Pa, ≥ 0 */
+  readonly axis: number;
+  readonly effective: number;
+}
 
 /**
  * `boundary.csv`, a line a cap; metres whatever the unit of the surface files.
  *
  * `resistance_Pa_s_m3` is empty at a tree's root and 0 where nothing was cut off; the windkessel columns are empty.
  */
-export function encodeBoundaryCsv(rows: readonly BoundaryRow[]): Uint8Array {
+export function encodeBoundaryCsv(rows: readonly BoundaryRow[], drops: readonly DropRow[] | null = null): Uint8Array {
   const out = new TextWriter();
-  out.add(`${BOUNDARY.join(',')}\n`);
-  for (const row of rows) {
+  out.add(`${[...BOUNDARY, ...(drops === null ? [] : DROPS)].join(',')}\n`);
+  for (const [k, row] of rows.entries()) {
+    const drop = drops?.[k];
     const cells = [
       row.patch,
       row.type,
@@ -29,6 +39,7 @@ export function encodeBoundaryCsv(rows: readonly BoundaryRow[]): Uint8Array {
       '',
       String(row.tree),
       String(row.vessel),
+      ...(drop === undefined ? [] : [drop.lengths, printReal(drop.axis), printReal(drop.effective)]),
     ];
     out.add(`${cells.join(',')}\n`);
   }
@@ -45,12 +56,14 @@ const NETWORK = [
   ...['flow_m3_s', 'p0_Pa', 'p1_Pa'],
 ];
 
-/** `network.csv`, a line a tube, metres; blood runs from `from` to `to`. */
+/** `network.csv`, a line a tube, metres; blood runs from `from` to `to`. Effective lengths come last where they are known. */
 export function encodeNetworkCsv(rows: readonly NetworkRow[]): Uint8Array {
   const out = new TextWriter();
-  out.add(`${NETWORK.join(',')}\n`);
+  const known = rows.every((row) => row.effectiveLength !== null);
+  out.add(`${[...NETWORK, ...(known ? ['effective_length_m'] : [])].join(',')}\n`);
   for (const row of rows) {
     const numbers = [...row.start, ...row.end, row.radius, row.radius, row.length, row.flow, ...row.pressures];
+    if (known) numbers.push(row.effectiveLength!);
     out.add(`${row.segment},${row.from},${row.to},${numbers.map(printReal).join(',')}\n`);
   }
   return out.bytes();
