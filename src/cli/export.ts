@@ -1,30 +1,37 @@
 import { existsSync, readFileSync, realpathSync } from 'node:fs';
 import { basename, dirname, join, resolve } from 'node:path';
 import type { Command } from 'commander';
-import { InputError, inputError, splitTreePath, TREE_FORMATS, type TreeFormat } from '../index.ts';
-import { placeForFile, RUN_FOLDER, readTree, withFiles, writeFiles } from '../node/index.ts';
+import { InputError, inputError, MESH_FORMATS, splitTreePath, TREE_FORMATS, type TreeFormat } from '../index.ts';
+import { MESH_FOLDER, placeForFile, RUN_FOLDER, readTree, withFiles, writeFiles } from '../node/index.ts';
 import { addCommonOptions, addExample, addRequired, type Context, runWork, TREE_ENDINGS } from './command.ts';
 import { EXIT } from './exit-codes.ts';
+import { exportMesh, meshExportOf } from './export-mesh.ts';
 import type { CommonOptions, Talk } from './io.ts';
+import { COLOUR_BY_HELP, MESH_FORMATS_HELP } from './mesh-formats.ts';
 
 interface ExportArguments extends CommonOptions {
   readonly to: string;
+  readonly colourBy?: string;
 }
+
+/** Endings that a tree is written in; others that a mesh is. */
+const TREE_ONLY: readonly string[] = TREE_FORMATS.flatMap((format) => format.extensions);
+const ENDINGS = [...TREE_ONLY, ...MESH_FORMATS.map(({ ending }) => ending).filter((one) => !TREE_ONLY.includes(one))];
 
 export function addExport(program: Command, context: Context): void {
   const command = program
     .command('export')
-    .summary('write a tree in another format')
-    .description('Writes a tree in the format that the file’s extension names.')
-    .argument('<tree>', `run folder or tree file (${TREE_ENDINGS})`);
-  addRequired(
-    command,
-    '--to <file>',
-    `file to write: ${TREE_FORMATS.flatMap((format) => format.extensions).join(', ')}`,
-  );
+    .summary('write a tree or a mesh in another format')
+    .description(
+      'Writes a tree or the lumen mesh of a mesh folder in the format that the file’s extension names. Where a tree is\n' +
+        'given and no tree is written so (.glb, .stl, …), it is meshed as `mesh` does without options, and checked.',
+    )
+    .argument('<tree>', `run folder, tree file (${TREE_ENDINGS}) or mesh folder`);
+  addRequired(command, '--to <file>', `file to write: ${ENDINGS.join(', ')}`);
+  command.option('--colour-by <what>', COLOUR_BY_HELP);
   addCommonOptions(command, null);
-  command.addHelpText('after', `\nFormats:\n${describeFormats()}`);
-  addExample(command, 'export runs/gel --to gel.csv', 'export runs/gel --to gel.swc');
+  command.addHelpText('after', `\nFormats of trees:\n${describeFormats()}\nFormats of meshes:\n${MESH_FORMATS_HELP}`);
+  addExample(command, 'export runs/gel --to gel.csv', 'export meshes/gel --to gel.glb --colour-by pressure');
   command.action((tree: string, options: ExportArguments) =>
     runWork(context, options, (talk) => exportTree(tree, options, talk)),
   );
@@ -40,7 +47,15 @@ function describeFormats(): string {
 }
 
 function exportTree(path: string, options: ExportArguments, talk: Talk): number {
-  const { format, files, stem } = splitTreePath(options.to, '--to');
+  const { to } = options;
+  const mesh = meshExportOf(path, to, options.colourBy, TREE_FORMATS.some(hasEnding(to)));
+  if (mesh !== null) {
+    refuseFolderFile(to);
+    return exportMesh(path, to, mesh, talk);
+  }
+  if (!TREE_FORMATS.some(hasEnding(to)))
+    throw inputError('extension', '--to', `got ${to}, expected a name that ends in ${ENDINGS.join(', ')}`);
+  const { format, files, stem } = splitTreePath(to, '--to');
   for (const file of files) placeForFile(file, '--to');
   const tree = readTree(path);
   for (const note of tree.notes) talk.note(note);
@@ -49,7 +64,7 @@ function exportTree(path: string, options: ExportArguments, talk: Talk): number 
   if (taken !== undefined) {
     throw inputError('file', '--to', `got ${taken}, the file that is read, expected another`);
   }
-  for (const file of files) refuseRunFile(file);
+  for (const file of files) refuseFolderFile(file);
   if (files.some((file) => existsSync(file))) refuseOther(format, files);
   const encoded = format.encode(tree.record).map((file, k) => ({
     path: files[k] ?? stem + file.suffix,
@@ -61,13 +76,20 @@ function exportTree(path: string, options: ExportArguments, talk: Talk): number 
   return EXIT.held;
 }
 
-/** A run's own files say one thing together; none of them is replaced alone. */
-function refuseRunFile(file: string): void {
-  const own = [...RUN_FOLDER.marks, ...RUN_FOLDER.others];
+/** Whether a path ends as files of a tree format do, in any case. */
+function hasEnding(path: string): (format: TreeFormat) => boolean {
+  const lower = path.toLowerCase();
+  return ({ extensions, parts }) => [...extensions, ...parts].some((ending) => lower.endsWith(ending));
+}
+
+/** The own files of a run or a mesh folder say one thing together; none of them is replaced alone. */
+function refuseFolderFile(file: string): void {
   const place = existsSync(file) ? realpathSync(file) : resolve(file);
-  const isRun = RUN_FOLDER.marks.every((mark) => existsSync(join(dirname(place), mark)));
-  if (!isRun || !own.includes(basename(place))) return;
-  throw inputError('file', '--to', `got ${file}, which belongs to a run, expected another name or folder`);
+  for (const { title, marks, others } of [RUN_FOLDER, MESH_FOLDER]) {
+    if (![...marks, ...others].includes(basename(place))) continue;
+    if (!marks.every((mark) => existsSync(join(dirname(place), mark)))) continue;
+    throw inputError('file', '--to', `got ${file}, which belongs to a ${title}, expected another name or folder`);
+  }
 }
 
 /** Files that lie there are replaced only where they are a tree of the format that is written. */

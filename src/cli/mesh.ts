@@ -29,12 +29,15 @@ import {
 import { addCommonOptions, addExample, addRequired, type Context, runWork } from './command.ts';
 import { EXIT } from './exit-codes.ts';
 import type { CommonOptions, Talk } from './io.ts';
+import { COLOUR_BY_HELP, colourByOf, MESH_FORMATS_HELP, meshFormatsOf } from './mesh-formats.ts';
+import { addMeshFormats } from './more-formats.ts';
 import { numberFrom, oneOf, positiveNumber, wholeNumber, withOptionNames } from './option-values.ts';
 
 /** What the library's options are called on the command line. */
 const OPTION_NAMES = {
   around: '--around',
   axialStretch: '--stretch',
+  colourBy: '--colour-by',
   extend: '--extend',
   keepAbove: '--keep-above',
   keepOrder: '--keep-order',
@@ -48,6 +51,8 @@ interface MeshArguments extends CommonOptions {
   readonly keepOrder?: string;
   readonly unit?: string;
   readonly lengths?: string;
+  readonly formats?: string;
+  readonly colourBy?: string;
   readonly stretch?: string;
   readonly extend?: string;
   readonly profile?: string;
@@ -78,6 +83,8 @@ export function addMesh(program: Command, context: Context): void {
       'network of the tables: axis, or effective (less what of vessels lies in others; nearer to flow in the mesh)',
       'axis',
     )
+    .option('--formats <list>', 'further files to write, such as ply,glb: any of those below')
+    .option('--colour-by <what>', COLOUR_BY_HELP)
     .option('--stretch <factor>', 'axial edges over those round a vessel, 1 to 3.5: fewer, longer triangles', '1')
     .option('--extend <diameters>', 'draw vessels out straight at all caps, by diameters of their own, 0 to 100')
     .option('--profile <shape>', `write inlet_profile.csv: velocities at inlets, ${INLET_PROFILES.join(' or ')}`)
@@ -91,7 +98,12 @@ export function addMesh(program: Command, context: Context): void {
     )
     .option('--least-wall <thickness_um>', 'with --negative: tell where walls are thinner than this, in µm');
   addCommonOptions(command, 'print the summary as one JSON document');
-  addExample(command, 'mesh runs/gel --out meshes/gel --keep-above 60', 'mesh runs/gel --out meshes/gel-mm --unit mm');
+  command.addHelpText('after', `\nFormats:\n${MESH_FORMATS_HELP}`);
+  addExample(
+    command,
+    'mesh runs/gel --out meshes/gel --keep-above 60',
+    'mesh runs/gel --out meshes/gel-mm --unit mm --formats 3mf,glb --colour-by pressure',
+  );
   command.action((tree: string, options: MeshArguments) =>
     runWork(context, options, (talk) => mesh(tree, options, talk)),
   );
@@ -99,14 +111,19 @@ export function addMesh(program: Command, context: Context): void {
 
 async function mesh(path: string, options: MeshArguments, talk: Talk): Promise<number> {
   const wanted = meshOptions(options);
+  const formats = options.formats === undefined ? [] : meshFormatsOf(options.formats, '--formats');
+  const colourBy = colourByOf(options.colourBy, formats, '--formats with glb');
   const leastWall = leastWallOf(options);
   placeForFolder(options.out, MESH_FOLDER, '--out');
   const tree = readTree(path);
   for (const note of tree.notes) talk.note(note);
   talk.onProgress({ stage: 'mesh', done: 0, total: 1 });
-  const made = withOptionNames({ ...OPTION_NAMES, tree: path }, () => meshTree(tree.record, specOfTree(tree), wanted));
+  const made = withOptionNames({ ...OPTION_NAMES, tree: path }, () => {
+    const plain = meshTree(tree.record, specOfTree(tree), wanted);
+    return { ...plain, files: addMeshFormats(plain.files, formats, colourBy) };
+  });
   talk.onProgress({ stage: 'proof', done: 0, total: 1 });
-  const check = checkFiles(made);
+  const check = checkMesh(made);
   const negative = options.negative === true ? await negativeOf(tree, made, wanted, leastWall) : null;
   const files = (negative ?? made).files.map(({ name, bytes }) => ({ name, content: bytes }));
   writeFolder(options.out, MESH_FOLDER, files, talk.writing('--out'));
@@ -184,7 +201,7 @@ function describeNegative(notes: NegativeResult['notes']): string[] {
 }
 
 /** The independent check, on the bytes that will be written. */
-function checkFiles(made: MeshResult): CheckResult {
+export function checkMesh(made: MeshResult): CheckResult {
   const bytesOf = (name: string): Uint8Array | null => made.files.find((file) => file.name === name)?.bytes ?? null;
   return checkLumen({
     surface: bytesOf('lumen.stl')!,

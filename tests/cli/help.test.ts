@@ -1,5 +1,5 @@
 import { describe, expect, test } from 'vitest';
-import { TREE_FORMATS, VERSION } from '../../src/index.ts';
+import { MESH_FORMATS, TREE_FORMATS, VERSION } from '../../src/index.ts';
 import { runCli } from '../support/run-cli.ts';
 
 const COMMANDS = ['grow', 'flow', 'mesh', 'export', 'check', 'compare', 'view', 'presets'];
@@ -30,6 +30,15 @@ describe('help', () => {
     const { out } = await runCli(['export', '--help']);
     for (const { extensions, units, drops } of TREE_FORMATS) {
       expect(out).toContain(extensions[0]);
+      expect(out).toContain(`units: ${units}`);
+      expect(out).toContain(`drops: ${drops.length === 0 ? 'nothing' : drops.join(', ')}`);
+    }
+  });
+
+  test.each(['mesh', 'export'])('of %s says so of every mesh format', async (command) => {
+    const { out } = await runCli([command, '--help']);
+    for (const { id, ending, units, drops } of MESH_FORMATS) {
+      expect(out).toMatch(new RegExp(`^  ${id} +lumen${ending.replace('.', '\\.')}: `, 'm'));
       expect(out).toContain(`units: ${units}`);
       expect(out).toContain(`drops: ${drops.length === 0 ? 'nothing' : drops.join(', ')}`);
     }

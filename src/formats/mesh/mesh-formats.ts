@@ -1,7 +1,6 @@
-import { inputError } from '../../core/errors.ts';
-import { type ColourBy, encodeGlb } from './glb.ts';
+import { COLOUR_BY, type ColourBy, encodeGlb } from './glb.ts';
 import type { MeshUnit } from './length-unit.ts';
-import { encodeLumenVtp } from './lumen-vtp.ts';
+import { decodeLumenVtp, encodeLumenVtp } from './lumen-vtp.ts';
 import type { MeshSurface } from './mesh-surface.ts';
 import { encodeLumenMsh } from './msh.ts';
 import { encodeLumenMsh4 } from './msh4.ts';
@@ -31,12 +30,21 @@ export interface MeshFormat {
   readonly drops: readonly MeshDrop[];
   /** Whether a mesh folder has it without being asked. */
   readonly always: boolean;
+  /** What its colours may tell, the usual one first; none where it has no colours. */
+  readonly colours: readonly ColourBy[];
   /** Unit of length of a file made of a surface in a unit. */
   unitOf(unit: MeshUnit): MeshUnit;
   /** Whether a file that begins so is one that this format wrote; looks at 4096 bytes, each a character. */
   owns(head: string): boolean;
   /** @throws InputError where the format cannot hold so much, or what is asked for is not known */
   encode(surface: MeshSurface, options?: MeshEncodeOptions): Uint8Array;
+  /**
+   * Reads back all that was written; formats that hold all of a surface may have it.
+   *
+   * @param name file, for faults
+   * @throws InputError naming every place that is broken
+   */
+  readonly decode?: ((bytes: Uint8Array, name: string) => MeshSurface) | undefined;
 }
 
 const OWN_UNIT = 'that of the mesh';
@@ -53,6 +61,7 @@ export const MESH_FORMATS: readonly MeshFormat[] = [
     units: `${OWN_UNIT}, which the ASCII file does not say`,
     drops: ['unit of length', 'vessels', 'pressures', 'wall shear'],
     always: true,
+    colours: [],
     unitOf: same,
     owns: (head) => head.startsWith('solid ') || head.startsWith('lumen surface, unit '),
     encode: (surface) =>
@@ -67,9 +76,11 @@ export const MESH_FORMATS: readonly MeshFormat[] = [
     units: `${OWN_UNIT}, in field array length_unit; pressures and shear in Pa`,
     drops: [],
     always: true,
+    colours: [],
     unitOf: same,
     owns: (head) => head.includes('type="PolyData"') && head.includes('Name="patch_names"'),
     encode: encodeLumenVtp,
+    decode: decodeLumenVtp,
   },
   {
     id: 'ply',
@@ -78,6 +89,7 @@ export const MESH_FORMATS: readonly MeshFormat[] = [
     units: `${OWN_UNIT}, in a comment`,
     drops: ['pressures', 'wall shear'],
     always: false,
+    colours: [],
     unitOf: same,
     owns: (head) => head.startsWith('ply\n') && head.includes('\ncomment lumen surface'),
     encode: (surface) => encodePly(surface, surface.unit),
@@ -89,6 +101,7 @@ export const MESH_FORMATS: readonly MeshFormat[] = [
     units: `${OWN_UNIT}, in a comment`,
     drops: ['vessels', 'pressures', 'wall shear'],
     always: false,
+    colours: [],
     unitOf: same,
     owns: (head) => head.startsWith('# lumen surface'),
     encode: (surface) => encodeObj(surface, surface.unit),
@@ -100,6 +113,7 @@ export const MESH_FORMATS: readonly MeshFormat[] = [
     units: 'metres always, as its standard has it',
     drops: ['vessels', 'pressures', 'wall shear', 'digits beyond float32'],
     always: false,
+    colours: COLOUR_BY,
     unitOf: () => 'm',
     owns: (head) => head.startsWith('glTF') && head.includes('"generator":"vesselwright"'),
     encode: (surface, options) => encodeGlb(surface, options?.colourBy),
@@ -111,6 +125,7 @@ export const MESH_FORMATS: readonly MeshFormat[] = [
     units: 'millimetres, or micrometres where the mesh is in them; stated',
     drops: ['patches', 'vessels', 'pressures', 'wall shear'],
     always: false,
+    colours: [],
     unitOf: printed,
     // The archive's fixed time, noon, as it stands at byte 10.
     owns: (head) => head.startsWith('PK') && head.startsWith('\u0000\u0060\u0021\u0000', 10),
@@ -123,6 +138,7 @@ export const MESH_FORMATS: readonly MeshFormat[] = [
     units: `${OWN_UNIT}, in a comment`,
     drops: ['vessels', 'pressures', 'wall shear'],
     always: false,
+    colours: [],
     unitOf: same,
     owns: (head) => head.startsWith('$MeshFormat\n4.1 0 8\n') && head.includes('\nlumen surface'),
     encode: (surface) => encodeLumenMsh4(surface, surface.unit),
@@ -134,6 +150,7 @@ export const MESH_FORMATS: readonly MeshFormat[] = [
     units: `${OWN_UNIT}, in a comment`,
     drops: ['vessels', 'pressures', 'wall shear'],
     always: true,
+    colours: [],
     unitOf: same,
     owns: (head) => head.startsWith('$MeshFormat\n2.2 0 8\n') && head.includes('\nlumen surface'),
     encode: (surface) => encodeLumenMsh(surface, surface.unit),
@@ -145,38 +162,12 @@ export const MESH_FORMATS: readonly MeshFormat[] = [
     units: `${OWN_UNIT}, in field array length_unit; pressures and shear in Pa`,
     drops: [],
     always: false,
+    colours: [],
     unitOf: same,
     owns: (head) => head.includes('type="UnstructuredGrid"') && head.includes('Name="patch_names"'),
     encode: encodeLumenVtu,
   },
 ];
-
-/**
- * The format whose ending a path has, in any case.
- *
- * @returns null where it has none of them
- */
-export function meshFormatOf(path: string): MeshFormat | null {
-  const lower = path.toLowerCase();
-  return MESH_FORMATS.find(({ ending }) => lower.endsWith(ending)) ?? null;
-}
-
-/**
- * The formats of a list of their ids, such as `ply,obj`, in the order of the table, each once.
- *
- * @param where what the list came from, for the fault
- * @throws InputError naming every word that is none
- */
-export function meshFormatsOf(list: string, where: string): MeshFormat[] {
-  const words = list.split(',').map((word) => word.trim().toLowerCase());
-  const known: readonly string[] = MESH_FORMATS.map(({ id }) => id);
-  const wrong = words.filter((word) => !known.includes(word));
-  if (wrong.length > 0) {
-    const got = wrong.map((word) => JSON.stringify(word)).join(', ');
-    throw inputError('bad-value', where, `got ${got}, expected a list of ${known.join(', ')}`);
-  }
-  return MESH_FORMATS.filter(({ id }) => words.includes(id));
-}
 
 /** Name of a format's file in a mesh folder. */
 export function lumenFile(format: Pick<MeshFormat, 'ending'>): string {

@@ -146,7 +146,7 @@ function qualityOf(figures: LumenFigures, forest: Forest): Record<string, number
   };
 }
 
-/** A point on the axis of each tree's first vessel, halfway. */
+/** Lengths by which caps were moved out, by patch. */
 function extensionsOf(
   mesh: LumenMesh,
   { diameters, got }: { readonly diameters: number; readonly got: ArrayLike<number> },
@@ -155,6 +155,7 @@ function extensionsOf(
   return { diameters, length_m: Object.fromEntries(caps.map((cap) => [cap.name, got[cap.row]!])) };
 }
 
+/** A point on the axis of each tree's first vessel, halfway. */
 function insidePoints(mesh: LumenMesh, forest: Forest): number[][] {
   const points: number[][] = [];
   for (const patch of mesh.patches) {
