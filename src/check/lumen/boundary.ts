@@ -25,12 +25,16 @@ export interface BoundaryTable {
   readonly vessel: readonly string[];
   /** Pa·s/m³ as printed: nothing at a tree's root, 0 where nothing was cut off. */
   readonly resistance: readonly string[];
+  /** Network that the pressures are those of, and Pa lost in that of axis lengths and that of effective ones; null where not told. */
+  readonly lengths: readonly string[] | null;
+  readonly drops: readonly [axis: Float64Array, effective: Float64Array] | null;
 }
 
 const NEEDED = [
   ...['patch', 'type', 'radius_m', 'cx', 'cy', 'cz', 'nx', 'ny', 'nz', 'flow_m3_s', 'pressure_Pa'],
   ...['mean_velocity_m_s', 'reynolds', 'resistance_Pa_s_m3', 'tree', 'vessel'],
 ];
+const DROPS = ['drop_axis_Pa', 'drop_effective_Pa'] as const;
 
 /**
  * Reads a boundary table.
@@ -69,6 +73,10 @@ export function readBoundary(file: string, text: string): BoundaryTable {
     tree: textColumn(table, 'tree'),
     vessel: textColumn(table, 'vessel'),
     resistance: textColumn(table, 'resistance_Pa_s_m3'),
+    lengths: table.columns.includes('lengths') ? textColumn(table, 'lengths') : null,
+    drops: DROPS.every((column) => table.columns.includes(column))
+      ? [numberColumn(table, DROPS[0]), numberColumn(table, DROPS[1])]
+      : null,
   };
 }
 

@@ -5,6 +5,8 @@ import { type BoundaryTable, measureBoundary, readBoundary } from './boundary.ts
 import { lookAtBoundaryNames, lookAtResistances } from './boundary-names.ts';
 import { measureCaps } from './caps.ts';
 import { findCrossings } from './crossings.ts';
+import { lookAtDrops } from './drops.ts';
+import { lookAtLengths, shortenSegments } from './lengths.ts';
 import { createLumenTallies, type LumenTallies } from './lumen-tallies.ts';
 import { readMshSolids } from './msh-file.ts';
 import { measureNetwork, networkAxis, readNetwork } from './network.ts';
@@ -82,7 +84,14 @@ export function checkLumen(files: LumenFiles, options: CheckLumenOptions = {}): 
     pressure: tallies.boundaryPressure,
   });
   const networkTallies = { drop: tallies.drop, flow: tallies.networkFlow, ends: tallies.ends };
-  if (network !== null) measureNetwork(network, boundary, notes.viscosity, networkTallies);
+  if (network !== null) {
+    const shortened = shortenSegments(network);
+    const lengths = notes.lengths === 'axis' ? network.length : (network.effectiveLength ?? shortened);
+    measureNetwork(network, boundary, lengths, notes.viscosity, networkTallies);
+    lookAtLengths(network, shortened, tallies.lengths);
+    const stated = boundary.drops !== null || notes.drops !== null;
+    if (stated && !Number.isNaN(notes.viscosity)) lookAtDrops(network, shortened, boundary, notes, tallies.drops);
+  }
 
   lookAtBoundaryNames(boundary, network, tallies.boundaryNames);
   lookAtResistances(boundary, notes.cutPatches, tallies.resistance);
@@ -119,10 +128,13 @@ export function checkLumen(files: LumenFiles, options: CheckLumenOptions = {}): 
 }
 
 function closeTally(tally: Tally, tallies: LumenTallies, notes: MeshNotes, network: boolean): PromiseResult {
-  if (!network && (tally === tallies.drop || tally === tallies.networkFlow || tally === tallies.ends)) {
+  const ofNetwork = [tallies.drop, tallies.networkFlow, tallies.ends, tallies.lengths, tallies.drops];
+  if (!network && ofNetwork.includes(tally)) {
     return tally.skip('no network.csv');
   }
-  if (tally === tallies.drop && Number.isNaN(notes.viscosity)) return tally.skip('mesh.json gives no viscosity');
+  if ((tally === tallies.drop || tally === tallies.drops) && Number.isNaN(notes.viscosity))
+    return tally.skip('mesh.json gives no viscosity');
+  if (tally === tallies.drops && tally.checked === 0) return tally.skip('no drops are stated');
   if (tally === tallies.square && !network) return tally.close("no network.csv: against the table's normals only");
   if (tally === tallies.values && Number.isNaN(notes.density / notes.viscosity)) {
     return tally.close('mesh.json gives no density or viscosity: velocities only');

@@ -25,6 +25,8 @@ export interface LumenTallies {
   readonly drop: Tally;
   readonly networkFlow: Tally;
   readonly ends: Tally;
+  readonly lengths: Tally;
+  readonly drops: Tally;
   readonly resistance: Tally;
   readonly boundaryNames: Tally;
   readonly files: Tally;
@@ -211,6 +213,20 @@ export function createLumenTallies(around: number, names: LumenNames, cap: numbe
       most(1e-6),
       patch,
       (value) => `pressure is off by ${value.toExponential(3)} of the whole drop`,
+    ),
+    lengths: tally(
+      'network-lengths',
+      'lengths and effective lengths of network.csv follow from its places and radii',
+      most(1e-6),
+      segment,
+      (value) => `a length is off by ${value.toExponential(3)} of itself`,
+    ),
+    drops: tally(
+      'network-drops',
+      'drops that boundary.csv and mesh.json state are those of both networks',
+      most(1e-6),
+      patch,
+      (value) => `a drop is off by ${value.toExponential(3)} of itself`,
     ),
     resistance: tally('boundary-resistance', 'resistances stand where something was cut off', none, patch, () => ''),
     boundaryNames: tally(

@@ -14,11 +14,15 @@ export interface NetworkTable {
   /** m */
   readonly radius: Float64Array;
   readonly length: Float64Array;
+  /** m, effective; null where the table has no such column. */
+  readonly effectiveLength: Float64Array | null;
   /** m³/s from `from` to `to`; negative the other way. */
   readonly flow: Float64Array;
   /** Pa at `from` and at `to`. */
   readonly pressure0: Float64Array;
   readonly pressure1: Float64Array;
+  /** Name of the node nearest to a place. Cost: O(segments). */
+  nodeNear(x: number, y: number, z: number): string;
 }
 
 const ENDS = ['x0', 'y0', 'z0', 'x1', 'y1', 'z1'];
@@ -34,18 +38,39 @@ export function readNetwork(file: string, text: string): NetworkTable {
   const ends = ENDS.map((column) => numberColumn(table, column));
   const r0 = numberColumn(table, 'r0_m');
   const r1 = numberColumn(table, 'r1_m');
+  const end = Float64Array.from({ length: 6 * r0.length }, (_, k) => ends[k % 6]![Math.floor(k / 6)]!);
+  const from = textColumn(table, 'from');
+  const to = textColumn(table, 'to');
   return {
     count: table.rows.length,
     name: textColumn(table, 'segment'),
-    from: textColumn(table, 'from'),
-    to: textColumn(table, 'to'),
-    end: Float64Array.from({ length: 6 * r0.length }, (_, k) => ends[k % 6]![Math.floor(k / 6)]!),
+    from,
+    to,
+    end,
     radius: r0.map((r, k) => 0.5 * (r + r1[k]!)),
     length: numberColumn(table, 'length_m'),
+    effectiveLength: table.columns.includes('effective_length_m') ? numberColumn(table, 'effective_length_m') : null,
     flow: numberColumn(table, 'flow_m3_s'),
     pressure0: numberColumn(table, 'p0_Pa'),
     pressure1: numberColumn(table, 'p1_Pa'),
+    nodeNear: (x, y, z) => {
+      const near = nearestEnd(end, x, y, z);
+      return (near % 2 === 0 ? from : to)[near >> 1]!;
+    },
   };
+}
+
+/** Index of the segment's end nearest to a place: 2k and 2k + 1 are the ends of segment k. */
+function nearestEnd(end: Float64Array, x: number, y: number, z: number): number {
+  let best = -1;
+  let least = Infinity;
+  for (let k = 0; 3 * k < end.length; k++) {
+    const distance = Math.hypot(end[3 * k]! - x, end[3 * k + 1]! - y, end[3 * k + 2]! - z);
+    if (distance >= least) continue;
+    least = distance;
+    best = k;
+  }
+  return best;
 }
 
 /** Finds the axis of the segment that ends at a place. Cost: O(segments) a call. */
@@ -83,11 +108,13 @@ export interface NetworkTallies {
 /**
  * Measures a network against the laws and against the boundary table.
  *
+ * @param lengths   (n) m that resist flow
  * @param viscosity Pa·s, or NaN where the folder does not say: drops are then not looked at
  */
 export function measureNetwork(
   network: NetworkTable,
   boundary: BoundaryTable,
+  lengths: ArrayLike<number>,
   viscosity: number,
   tallies: NetworkTallies,
 ): void {
@@ -104,7 +131,7 @@ export function measureNetwork(
   for (let k = 0; k < network.count; k++) {
     const square = network.radius[k]! * network.radius[k]!;
     if (!Number.isNaN(viscosity)) {
-      const fall = (8 * viscosity * network.length[k]! * Math.abs(network.flow[k]!)) / (Math.PI * square * square);
+      const fall = (8 * viscosity * lengths[k]! * Math.abs(network.flow[k]!)) / (Math.PI * square * square);
       tallies.drop.see(Math.abs(Math.abs(network.pressure0[k]! - network.pressure1[k]!) - fall) / drop, k);
     }
     // Blood runs from the higher to the lower pressure; flows may be magnitudes.
@@ -124,18 +151,9 @@ export function measureNetwork(
     if (segments > 1) tallies.flow.see(Math.abs(net) / largest, first);
   }
   for (let row = 0; row < boundary.count; row++) {
-    let best = Infinity;
-    let pressure = Number.NaN;
-    for (let k = 0; k < 2 * network.count; k++) {
-      const distance = Math.hypot(
-        network.end[3 * k]! - boundary.centre[3 * row]!,
-        network.end[3 * k + 1]! - boundary.centre[3 * row + 1]!,
-        network.end[3 * k + 2]! - boundary.centre[3 * row + 2]!,
-      );
-      if (distance >= best) continue;
-      best = distance;
-      pressure = (k % 2 === 0 ? network.pressure0 : network.pressure1)[k >> 1]!;
-    }
+    const [x, y, z] = [0, 1, 2].map((k) => boundary.centre[3 * row + k]!) as [number, number, number];
+    const near = nearestEnd(network.end, x, y, z);
+    const pressure = near < 0 ? Number.NaN : (near % 2 === 0 ? network.pressure0 : network.pressure1)[near >> 1]!;
     tallies.ends.see(Math.abs(boundary.pressure[row]! - pressure) / drop, row);
   }
 }

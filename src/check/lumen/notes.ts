@@ -21,13 +21,17 @@ export interface MeshNotes {
   readonly insidePoints: unknown;
   /** Names of the patches behind which something was cut off; none where nothing was, null where it does not say. */
   readonly cutPatches: readonly string[] | null;
+  /** Lengths of the network whose pressures the tables give. */
+  readonly lengths: 'axis' | 'effective';
+  /** Pa lost to each cap in the networks of axis and of effective lengths; null where the file does not say. */
+  readonly drops: readonly { readonly patch: string; readonly drop: readonly [number, number] }[] | null;
 }
 
 const UNIT: Readonly<Record<string, number>> = { m: 1, mm: 1e-3, um: 1e-6 };
 
 /**
  * Reads `mesh.json`: keys `unit`, `around`, `viscosity_Pa_s`, `density_kg_m3`, `patches` (names), `counts`,
- * `inside_point_m`, `inside_points_m`, `cut_off`, all optional.
+ * `inside_point_m`, `inside_points_m`, `cut_off`, `network`, all optional.
  *
  * @param text null where there is no such file: metres, 24 round a vessel
  * @throws InputError where it is not JSON or a key is not what it should be
@@ -68,7 +72,22 @@ export function readMeshNotes(file: string, text: string | null): MeshNotes {
     insidePoint: notes.inside_point_m,
     insidePoints: notes.inside_points_m,
     cutPatches: cutPatches(notes.cut_off),
+    ...networkNotes(file, notes.network),
   };
+}
+
+function networkNotes(file: string, told: unknown): Pick<MeshNotes, 'lengths' | 'drops'> {
+  if (!isObject(told)) return { lengths: 'axis', drops: null };
+  const lengths = told.lengths ?? 'axis';
+  if (lengths !== 'axis' && lengths !== 'effective') {
+    throw inputError('bad-word', file, `network.lengths: got ${JSON.stringify(lengths)}, expected axis or effective`);
+  }
+  if (!Array.isArray(told.drops)) return { lengths, drops: null };
+  const drops = told.drops.filter(isObject).map((one) => ({
+    patch: String(one.patch),
+    drop: [Number(one.axis_Pa), Number(one.effective_Pa)] as const,
+  }));
+  return { lengths, drops };
 }
 
 function isObject(value: unknown): value is Readonly<Record<string, unknown>> {

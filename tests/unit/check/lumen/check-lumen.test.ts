@@ -69,7 +69,10 @@ describe('a mesh as promised', () => {
     const { surface, boundary } = writeLumen(buildTubes());
     const result = checkLumen({ surface, boundary });
     expect(broken(result)).toEqual([]);
-    expect(unchecked(result)).toEqual(['network-drop', 'network-flow', 'network-ends', ...REST]);
+    expect(unchecked(result)).toEqual([
+      ...['network-drop', 'network-flow', 'network-ends', 'network-lengths', 'network-drops'],
+      ...REST,
+    ]);
   });
 
   test('binary, patch number in the attribute word', () => {

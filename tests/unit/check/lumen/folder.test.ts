@@ -295,8 +295,8 @@ describe('planted damage', () => {
     ['lumen.vtp', ['file-vtp']],
     ['lumen.msh', ['file-msh']],
     ['lumen_one_solid.stl', ['file-one-solid']],
-    ['network.csv', ['network-drop', 'network-flow', 'network-ends']],
-    ['mesh.json', ['network-drop', 'notes-counts', 'notes-inside']],
+    ['network.csv', ['network-drop', 'network-flow', 'network-ends', 'network-lengths', 'network-drops']],
+    ['mesh.json', ['network-drop', 'network-drops', 'notes-counts', 'notes-inside']],
   ])('%s missing', (name, open) => {
     const files = new Map(METRES);
     files.delete(name);
