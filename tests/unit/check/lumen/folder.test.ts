@@ -4,6 +4,8 @@ import { join } from 'node:path';
 import { afterAll, describe, expect, test } from 'vitest';
 import { checkLumen } from '../../../../src/check/lumen/check-lumen.ts';
 import type { CheckResult } from '../../../../src/check/result.ts';
+import { effectiveLengths } from '../../../../src/flow/effective-lengths.ts';
+import { shortenField } from '../../../../src/flow/shortened-field.ts';
 import { solveFlow } from '../../../../src/flow/solve.ts';
 import { encodeMeshFolder } from '../../../../src/formats/mesh/mesh-folder.ts';
 import { encodeBinaryStl } from '../../../../src/formats/mesh/stl.ts';
@@ -17,11 +19,18 @@ const forest = sketchForest(forkSketch(40, 30, 0.8, 0.6), apart);
 const kinds = ['supply', 'drain'] as const;
 const field = solveFlow(forest, kinds, { rootPressures: [8000, 500], viscosity: 3.5e-3, density: 1060 });
 const mesh = buildLumen(forest, { kinds });
+const shorter = effectiveLengths(forest);
+const networks = {
+  used: 'axis',
+  effectiveLengths: shorter,
+  axis: field.pressure,
+  effective: shortenField(field, kinds, shorter).pressure,
+} as const;
 
 type Folder = Map<string, Uint8Array>;
 const write = (unit: 'm' | 'mm'): Folder =>
   new Map(
-    encodeMeshFolder({ mesh, forest, field, kinds, density: 1060, viscosity: 3.5e-3, unit }).map((file) => [
+    encodeMeshFolder({ mesh, forest, field, kinds, density: 1060, viscosity: 3.5e-3, unit, networks }).map((file) => [
       file.name,
       file.bytes,
     ]),
