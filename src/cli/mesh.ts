@@ -118,29 +118,22 @@ async function mesh(path: string, options: MeshArguments, talk: Talk): Promise<n
   const tree = readTree(path);
   for (const note of tree.notes) talk.note(note);
   talk.onProgress({ stage: 'mesh', done: 0, total: 1 });
-  const made = withOptionNames({ ...OPTION_NAMES, tree: path }, () => {
+  const lumen = withOptionNames({ ...OPTION_NAMES, tree: path }, () => {
     const plain = meshTree(tree.record, specOfTree(tree), wanted);
     return { ...plain, files: addMeshFormats(plain.files, formats, colourBy) };
   });
+  const negative = options.negative === true ? await negativeOf(tree, lumen, wanted, leastWall) : null;
+  const made = { ...lumen, files: negative?.files ?? lumen.files };
   talk.onProgress({ stage: 'proof', done: 0, total: 1 });
   const check = checkMesh(made);
-  const negative = options.negative === true ? await negativeOf(tree, made, wanted, leastWall) : null;
-  const files = (negative ?? made).files.map(({ name, bytes }) => ({ name, content: bytes }));
+  const files = made.files.map(({ name, bytes }) => ({ name, content: bytes }));
   writeFolder(options.out, MESH_FOLDER, files, talk.writing('--out'));
   talk.settle();
-  const hollow = negative?.notes.problems ?? [];
-  const held = check.held && made.mesh.problems.length === 0 && hollow.length === 0;
+  const notes = negative?.notes ?? null;
+  const held = check.held && made.mesh.problems.length === 0 && (notes?.problems.length ?? 0) === 0;
   talk.result(
-    () => describeMesh({ ...made, files: (negative ?? made).files }, negative, check, options.out),
-    () =>
-      JSON.stringify(
-        {
-          ...summariseMesh({ ...made, files: (negative ?? made).files }, check, options.out, held),
-          negative: negative?.notes ?? null,
-        },
-        null,
-        2,
-      ),
+    () => describeMesh(made, notes, check, options.out),
+    () => JSON.stringify({ ...summariseMesh(made, check, options.out, held), negative: notes }, null, 2),
   );
   return held ? EXIT.held : EXIT.broken;
 }
@@ -211,10 +204,16 @@ export function checkMesh(made: MeshResult): CheckResult {
     vtp: bytesOf('lumen.vtp'),
     msh: bytesOf('lumen.msh'),
     oneSolid: bytesOf('lumen_one_solid.stl'),
+    negative: bytesOf('negative.stl'),
   });
 }
 
-function describeMesh(made: MeshResult, negative: NegativeResult | null, check: CheckResult, out: string): string {
+function describeMesh(
+  made: MeshResult,
+  negative: NegativeResult['notes'] | null,
+  check: CheckResult,
+  out: string,
+): string {
   const { mesh: lumen, files, vessels, removed } = made;
   const broken = check.promises.filter((promise) => promise.held === false).length;
   const held = check.promises.filter((promise) => promise.held === true).length;
@@ -223,7 +222,7 @@ function describeMesh(made: MeshResult, negative: NegativeResult | null, check: 
     `  triangles: ${lumen.triangle.length / 3}, patches: wall and ${lumen.patches.length - 1} caps`,
     `  promises: ${held} held, ${broken} broken`,
     ...lumen.problems.map(({ vessel, why }) => `    NOT MET: at the end of vessel ${vessel}: ${why}`),
-    ...(negative === null ? [] : describeNegative(negative.notes)),
+    ...(negative === null ? [] : describeNegative(negative)),
     `  written: ${join(out, '/')}: ${files.map(({ name }) => name).join(', ')}`,
   ];
   return `${lines.join('\n')}\n${broken === 0 ? '' : `\n${checkTable(check)}`}`;

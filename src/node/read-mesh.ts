@@ -27,5 +27,6 @@ export function readMesh(path: string): LumenFiles {
     vtp: may('lumen.vtp'),
     msh: may('lumen.msh'),
     oneSolid: may('lumen_one_solid.stl'),
+    negative: may('negative.stl'),
   };
 }

@@ -9,6 +9,7 @@ import { lookAtDrops } from './drops.ts';
 import { lookAtLengths, shortenSegments } from './lengths.ts';
 import { createLumenTallies, type LumenTallies } from './lumen-tallies.ts';
 import { readMshSolids } from './msh-file.ts';
+import { checkNegative } from './negative.ts';
 import { measureNetwork, networkAxis, readNetwork } from './network.ts';
 import { lookAtCounts, lookAtInsidePoints } from './note-figures.ts';
 import { type MeshNotes, readMeshNotes } from './notes.ts';
@@ -34,6 +35,8 @@ export interface LumenFiles {
   readonly msh?: Uint8Array | null | undefined;
   /** `lumen_one_solid.stl`, which is not written beside a binary `lumen.stl`. */
   readonly oneSolid?: Uint8Array | null | undefined;
+  /** `negative.stl`, which is written where it was asked for. */
+  readonly negative?: Uint8Array | null | undefined;
 }
 
 export interface CheckLumenOptions {
@@ -115,6 +118,11 @@ export function checkLumen(files: LumenFiles, options: CheckLumenOptions = {}): 
   else unread.set(tallies.inside, 'mesh.json gives no point');
 
   const all = Object.values(tallies) as Tally[];
+  if (files.negative) {
+    const negative = checkNegative(files.negative, notes.unit, notes.negative, network, cap);
+    all.push(...negative.tallies);
+    for (const [tally, why] of negative.unread) unread.set(tally, why);
+  }
   const promises = all.map((tally) => {
     const why = unread.get(tally);
     return why === undefined ? closeTally(tally, tallies, notes, network !== null) : tally.skip(why);

@@ -1,4 +1,5 @@
 import { inputError } from '../../core/errors.ts';
+import { type NegativeNotes, readNegativeNotes } from './negative.ts';
 
 /** What the checker reads of `mesh.json`; everything else in it is for others. */
 export interface MeshNotes {
@@ -19,6 +20,8 @@ export interface MeshNotes {
   /** As the file has them: `inside_point_m`, `inside_points_m`; undefined where it has none. */
   readonly insidePoint: unknown;
   readonly insidePoints: unknown;
+  /** What is stated of a printable negative. */
+  readonly negative: NegativeNotes;
   /** Names of the patches behind which something was cut off; none where nothing was, null where it does not say. */
   readonly cutPatches: readonly string[] | null;
   /** Lengths of the network whose pressures the tables give. */
@@ -31,7 +34,7 @@ const UNIT: Readonly<Record<string, number>> = { m: 1, mm: 1e-3, um: 1e-6 };
 
 /**
  * Reads `mesh.json`: keys `unit`, `around`, `viscosity_Pa_s`, `density_kg_m3`, `patches` (names), `counts`,
- * `inside_point_m`, `inside_points_m`, `cut_off`, `network`, all optional.
+ * `inside_point_m`, `inside_points_m`, `cut_off`, `negative`, `extensions`, `network`, all optional.
  *
  * @param text null where there is no such file: metres, 24 round a vessel
  * @throws InputError where it is not JSON or a key is not what it should be
@@ -71,6 +74,7 @@ export function readMeshNotes(file: string, text: string | null): MeshNotes {
     counts: isObject(notes.counts) ? notes.counts : null,
     insidePoint: notes.inside_point_m,
     insidePoints: notes.inside_points_m,
+    negative: readNegativeNotes(notes.negative, notes.extensions),
     cutPatches: cutPatches(notes.cut_off),
     ...networkNotes(file, notes.network),
   };
