@@ -23,22 +23,22 @@ export function freezeGrowth(grower: Grower, spec: Spec): Forest {
  * sizing rule from those flows, so that laws hold to rounding.
  */
 export function freezeWithTerritories(grower: Grower, spec: Spec): FrozenGrowth {
-  const { builder } = grower;
+  const { builder, sites, trees } = grower.forest;
   const n = builder.count;
   const flow = new Float64Array(n);
   const radius = new Float64Array(n);
   let served: Float64Array | null = null;
   for (let t = 0; t < spec.trees.length; t++) {
     const tree = spec.trees[t]!;
-    const { demand } = grower.trees[t]!;
+    const { demand } = trees[t]!;
     // Where growth ended before it was calm, terminals may have changed since shares were set.
-    grower.shareByTerritory(t);
+    grower.forest.shareByTerritory(t);
     const order = builder.preorder(t);
     let shares = 0;
-    for (const row of order) if (builder.childCount(row) === 0) shares += demand.siteShare(grower.siteOfRow(row));
+    for (const row of order) if (builder.childCount(row) === 0) shares += demand.siteShare(sites.of(row));
     if (demand.byTerritory) served ??= new Float64Array(n);
     for (const row of order) {
-      const share = builder.childCount(row) === 0 ? demand.siteShare(grower.siteOfRow(row)) : 0;
+      const share = builder.childCount(row) === 0 ? demand.siteShare(sites.of(row)) : 0;
       flow[row] = (tree.inlet.flow * share) / shares;
       if (demand.byTerritory) served![row] = share * demand.territory;
     }

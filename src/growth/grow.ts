@@ -3,7 +3,9 @@ import type { Spec, TreeSpec } from '../spec/types.ts';
 import type { Tissue } from '../tissue/tissue.ts';
 import type { Demand } from './demand.ts';
 import { demandOf } from './demand-of.ts';
-import { firstGuess, Grower, SPARE, type Stopped } from './grower.ts';
+import { firstGuess } from './first-guess.ts';
+import { Grower, type Stopped } from './grower.ts';
+import { SPARE } from './growing-tree.ts';
 import type { GrowthOptions } from './options.ts';
 import { type Begun, restoreGrowth, withMoments } from './snapshot.ts';
 
@@ -45,9 +47,10 @@ export function growForest(
     let stopped = grower.grow();
     if (stopped !== 'cancelled') stopped = grower.finish();
     if (stopped === 'cancelled' || guess === null || attempt >= RESTARTS) return { ...grown, stopped };
-    if (!grower.cramped && attempt >= 1) return { ...grown, stopped };
-    if (!grower.cramped && (stopped === 'complete' || grower.misfits().length === 0)) return { ...grown, stopped };
-    const needed = grower.foresee(grower.trees.map(({ demand }) => demand.wanted));
+    if (!grower.forest.cramped && attempt >= 1) return { ...grown, stopped };
+    if (!grower.forest.cramped && (stopped === 'complete' || grower.misfits().length === 0))
+      return { ...grown, stopped };
+    const needed = grower.forest.foresee(grower.trees.map(({ demand }) => demand.wanted));
     guess = guess.map((radius, t) => (unknown[t]! ? Math.max(SPARE * needed[t]!, 1.05 * radius) : radius));
   }
 }
@@ -67,7 +70,7 @@ function plantForest(
 
 /** Grows small trees to foresee the first vessels' radii. */
 function rehearse(spec: Spec, tissue: Tissue, unknown: readonly boolean[], salt: number): number[] {
-  let guess = spec.trees.map((_, t) => (unknown[t] ? 1.6 * firstGuess(spec, t, tissue) : Number.NaN));
+  let guess = spec.trees.map((_, t) => (unknown[t] ? firstGuess(spec, t, tissue) : Number.NaN));
   for (let attempt = 0; ; attempt++) {
     const demands = spec.trees.map((tree, t) => {
       const most = tree.terminals.by === 'count' ? Math.max(REHEARSAL, tree.terminals.count / 20) : REHEARSAL;
@@ -75,8 +78,8 @@ function rehearse(spec: Spec, tissue: Tissue, unknown: readonly boolean[], salt:
     });
     const grower = new Grower(spec, tissue, demands, guess);
     grower.grow();
-    const radii = grower.foresee(spec.trees.map((tree, t) => wantedBy(tree, demands[t]!)));
-    if (!grower.cramped || attempt >= RESTARTS) {
+    const radii = grower.forest.foresee(spec.trees.map((tree, t) => wantedBy(tree, demands[t]!)));
+    if (!grower.forest.cramped || attempt >= RESTARTS) {
       return radii.map((radius, t) => (unknown[t] ? SPARE * radius : Number.NaN));
     }
     guess = guess.map((radius, t) => Math.max(1.4 * radius, SPARE * radii[t]!));

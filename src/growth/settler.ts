@@ -1,7 +1,9 @@
+import type { StateIn, StateOut } from '../core/state.ts';
 import { straighten } from '../moves/straighten.ts';
 import type { Room } from '../room/room.ts';
 import type { ForestBuilder } from '../tree/builder.ts';
 import { evict } from './evict.ts';
+import type { GrowingForest } from './growing-forest.ts';
 import { mendByMoving } from './mend.ts';
 
 /** Tries that one vessel gets, each of them evicting another that is in its way. */
@@ -11,25 +13,33 @@ const MOST_TRIES = 8;
 export class Settler {
   /** Vessels that were made to fit by moving a node. */
   mended = 0;
+  private readonly forest: GrowingForest;
   private readonly builder: ForestBuilder;
   private readonly room: Room;
   private readonly headroom: number;
 
   /** @param headroom radius certified over radius needed */
-  constructor(builder: ForestBuilder, room: Room, headroom: number) {
-    this.builder = builder;
-    this.room = room;
+  constructor(forest: GrowingForest, headroom: number) {
+    this.forest = forest;
+    this.builder = forest.builder;
+    this.room = forest.room;
     this.headroom = headroom;
   }
 
   /**
-   * Certifies every vessel of a tree that has outgrown its reserve and evicts what does not fit.
+   * Certifies every vessel that has outgrown its reserve and evicts what does not fit.
    *
-   * @param order     the tree's rows, parents first
-   * @param onEvicted told each terminal that goes
+   * @param again whether evicted sites are given back to be tried again; else they are given up
    * @returns number of terminals evicted
    */
-  settleAll(order: Int32Array, onEvicted: (terminal: number) => void): number {
+  settleAll(again: boolean): number {
+    let evicted = 0;
+    for (const tree of this.forest.trees) if (tree.demand.served > 0) evicted += this.settleTree(tree.rows(), again);
+    return evicted;
+  }
+
+  /** @param order the tree's rows, parents first */
+  private settleTree(order: Int32Array, again: boolean): number {
     const { builder, room } = this;
     let evicted = 0;
     for (let k = 1; k < order.length; k++) {
@@ -45,13 +55,22 @@ export class Settler {
         let gone = 0;
         evict(builder, room, this.lightest(row), (terminal) => {
           gone++;
-          onEvicted(terminal);
+          this.giveUp(terminal, again);
         });
         if (gone === 0) break;
         evicted += gone;
       }
     }
     return evicted;
+  }
+
+  /** Takes a terminal that is evicted off the books of the tree that it hung on. */
+  private giveUp(terminal: number, again: boolean): void {
+    const { trees, sites } = this.forest;
+    const { demand } = trees[this.builder.tree[terminal]!]!;
+    if (again) demand.giveBack(sites.of(terminal), true);
+    else demand.served--;
+    sites.forget(terminal);
   }
 
   /** Certifies one vessel where it stands, if it and its ends fit. */
@@ -64,12 +83,33 @@ export class Settler {
     return true;
   }
 
-  /** Straightens the bends of a tree that evictions have left, where the straight vessel fits. */
-  straightenAll(order: Int32Array): void {
+  /** Vessels that do not fit with their present radii, which only a stub can still be once growth is finished. */
+  misfits(): number[] {
     const { builder, room } = this;
-    for (const row of order) {
-      if (builder.parent[row]! >= 0 && builder.childCount(row) === 1) straighten(builder, room, row);
+    const rows: number[] = [];
+    for (let row = 0; row < builder.count; row++) {
+      if (builder.parent[row]! >= 0 && room.outgrown(row) && !this.settle(row)) rows.push(row);
     }
+    return rows;
+  }
+
+  /** Straightens the bends that evictions have left, where the straight vessel fits. */
+  straightenAll(): void {
+    const { builder, room } = this;
+    for (const tree of this.forest.trees) {
+      if (tree.demand.served === 0) continue;
+      for (const row of tree.rows()) {
+        if (builder.parent[row]! >= 0 && builder.childCount(row) === 1) straighten(builder, room, row);
+      }
+    }
+  }
+
+  save(out: StateOut): void {
+    out.list('mended', 'f64', [this.mended]);
+  }
+
+  restore(from: StateIn): void {
+    this.mended = from.reals('mended')[0]!;
   }
 
   /** The least vessel whose going could make room for a refused row: itself, what blocks it, or a side branch near by. */

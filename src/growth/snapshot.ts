@@ -61,7 +61,7 @@ export function restoreGrowth(spec: Spec, tissue: Tissue, options: GrowthOptions
   const begun: Begun = { guess: guessed === 1 ? Array.from(from.reals('guess')) : null, attempt };
   const part = from.within('grower');
   const demands = spec.trees.map((tree, t) =>
-    restoredDemand(spec, tree, t, tissue, part.within(`trees[${t}]`).within('demand')),
+    restoredDemand(spec, tree, t, tissue, part.within('forest').within(`trees[${t}]`).within('demand')),
   );
   const grower = new Grower(spec, tissue, demands, begun.guess, withMoments(options, begun));
   grower.restore(part);

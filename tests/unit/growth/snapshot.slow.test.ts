@@ -112,8 +112,13 @@ describe.each(Object.keys(SPECS))('%s', (name) => {
  * belongs, and saves it if it must be.
  */
 const SAVED = {
-  grower: 'builder room trees cramped settler siteOf nextRelax nextRefresh nextResize nextShare finishes owesRefresh',
+  grower: 'forest settler refresher finishes',
+  server: '',
+  refresher: 'nextRefresh nextSweep nextResize nextShare begun',
   settler: 'mended',
+  forest: 'builder room trees sites cramped',
+  tree: 'demand resizer full',
+  sites: 'siteOf',
   builder: 'count parent child tree position load weight roots inletRadius free',
   room: 'reserve',
   demand: `wanted served site territory stream waiting dropped due tries x y z shares fresh places failures measured
@@ -122,8 +127,13 @@ const SAVED = {
 };
 /** Made again from spec, guess and tissue, or filled anew before each use. */
 const FOLLOWS = {
-  grower: 'planted attacher tissue watch wanted batch options crew sweeper rehanger onMoment onForest',
-  settler: 'builder room headroom',
+  grower: 'attacher server options',
+  server: 'forest attacher options crew batch',
+  refresher: 'forest settler attacher sweeper rehanger onForest',
+  settler: 'forest builder room headroom',
+  forest: 'wanted tissue',
+  tree: 'seedling resized planted builder index',
+  sites: '',
   builder: 'exponent memory cutTree cutWhole',
   room: `builder tissue limits refusal blocker pinned exempt slack listed pending stamp round touched fresh memory grid
     floor wall span`,
@@ -131,16 +141,23 @@ const FOLLOWS = {
   resizer: 'spec tree drop',
 };
 
+function names(list: string): string[] {
+  return list.split(/\s+/).filter((name) => name !== '');
+}
+
 describe('every field is saved or follows from what is', () => {
   const spec = specFromValue({ tissue: BOX, trees: [{ inlet: LEFT, terminals: { count: 20 } }] });
   const { grower } = growForest(spec, buildTissue(spec.tissue, new Map()));
-  const { demand, resizer } = grower.trees[0]!;
-  const settler = (grower as unknown as { settler: object }).settler;
-  const things = { grower, settler, builder: grower.builder, room: grower.room, demand, resizer };
+  const { server, refresher, settler } = grower as unknown as Record<'server' | 'refresher' | 'settler', object>;
+  const { forest } = grower;
+  const { builder, room, sites } = forest;
+  const tree = forest.trees[0]!;
+  const { demand, resizer } = tree;
+  const things = { grower, server, refresher, settler, forest, tree, sites, builder, room, demand, resizer };
   test.each(Object.keys(SAVED) as (keyof typeof SAVED)[])('of the %s', (kind) => {
     const fields = Object.keys(things[kind]);
-    const saved = SAVED[kind].split(/\s+/);
-    const follows = FOLLOWS[kind].split(/\s+/);
+    const saved = names(SAVED[kind]);
+    const follows = names(FOLLOWS[kind]);
     expect(fields.filter((field) => !saved.includes(field) && !follows.includes(field))).toEqual([]);
     expect(saved.filter((field) => !fields.includes(field))).toEqual([]);
   });
