@@ -106,6 +106,38 @@ describe('mesh', () => {
     expect(existsSync(scratch.path('refused'))).toBe(false);
   });
 
+  test('--lengths effective: lower drops, said in every table, of a cut tree too', async () => {
+    const column = (folder: string, name: string, patch: RegExp) => {
+      const [head, ...rows] = text(folder, 'boundary.csv').trim().split('\n');
+      const at = head!.split(',').indexOf(name);
+      return rows.filter((row) => patch.test(row)).map((row) => row.split(',')[at]!);
+    };
+    for (const cut of [[], ['--keep-order', '2']]) {
+      for (const lengths of ['axis', 'effective']) {
+        const argv = ['mesh', run, ...cut, '--lengths', lengths, '--around', '12', '--out', scratch.path(lengths)];
+        const { code, out, err } = await runCli(argv);
+        expect({ code, err }, out).toEqual({ code: 0, err: '' });
+        const { network } = JSON.parse(text(lengths, 'mesh.json'));
+        expect(network.lengths).toBe(lengths);
+        const inlet = Number(column(lengths, 'pressure_Pa', /^inlet/)[0]);
+        const drops = column(lengths, 'pressure_Pa', /^outlet/).map((pressure) => inlet - Number(pressure));
+        for (const [k, drop] of drops.entries()) {
+          expect(drop / network.drops[k][`${lengths}_Pa`]).toBeCloseTo(1, 9);
+          expect(network.drops[k].axis_Pa).toBeGreaterThan(network.drops[k].effective_Pa);
+        }
+      }
+      expect(column('axis', 'drop_effective_Pa', /./)).toEqual(column('effective', 'drop_effective_Pa', /./));
+      expect(column('axis', 'pressure_Pa', /^inlet/)).toEqual(column('effective', 'pressure_Pa', /^inlet/));
+    }
+    // What is behind a cut: its terminals' pressures are those of the network of the same lengths.
+    const behind = (lengths: string) => column(lengths, 'resistance_Pa_s_m3', /^outlet/).map(Number);
+    const [axis, effective] = [behind('axis'), behind('effective')];
+    expect(axis.some((resistance) => resistance > 0)).toBe(true);
+    for (const [k, resistance] of axis.entries()) {
+      if (resistance > 0) expect(effective[k]).toBeLessThan(resistance);
+    }
+  });
+
   test('--unit, --around and --keep-above are told in mesh.json, and the mesh is checked in metres all the same', async () => {
     const argv = ['--unit', 'mm', '--around', '28', '--keep-order', '2', '--keep-above', '1', '--json'];
     const { code, out } = await runCli(['mesh', run, ...argv, '--out', scratch.path('coarse')]);
@@ -146,6 +178,7 @@ describe('mesh', () => {
   test.each([
     ['--around', '3', /^--around: got "3", expected a whole number from 8 to 256/],
     ['--unit', 'inch', /^--unit: got "inch", expected one of m, mm, um/],
+    ['--lengths', 'long', /^--lengths: got "long", expected/],
     ['--keep-above', '-1', /^--keep-above: got "-1", expected a number > 0/],
     [
       '--keep-above',
