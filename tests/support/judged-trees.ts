@@ -115,6 +115,7 @@ export const JUDGED_TREES: Readonly<Record<string, object>> = {
 };
 
 const PYTHON = '/usr/bin/python3';
+const MESHER = 'tetgen';
 const JUDGE = fileURLToPath(new URL('../integration/judge-flow.py', import.meta.url));
 
 /** What the judge found of one mesh folder: relative differences, a number for each cap but the root's. */
@@ -142,8 +143,8 @@ interface Compared {
 
 /** Whether dolfin and TetGen are installed. */
 export function hasJudge(): boolean {
-  const tetgen = spawnSync('tetgen', ['-h']).error === undefined;
-  return tetgen && spawnSync(PYTHON, ['-c', 'import dolfin, petsc4py']).status === 0;
+  const mesher = spawnSync(MESHER, ['-h']).error === undefined;
+  return mesher && spawnSync(PYTHON, ['-c', 'import dolfin, petsc4py']).status === 0;
 }
 
 /**

@@ -3,7 +3,7 @@ import type { NetworkTable } from './network.ts';
 
 /**
  * Effective lengths of a network, worked out again from places and radii alone: each segment's length less what it loses at
- * either end, a tenth of it at least. The rule is that of README's section on lengths, written here in angles.
+ * either end, a tenth of it at least. The rule is that of DEVELOPERS.md under Effective lengths, written here in angles.
  *
  * @returns (n) m
  * Cost: O(n)
