@@ -78,6 +78,9 @@ export class Preview {
    * Radius (m) of the ball around a node if the tube between it and one neighbour led to another place, or −1 where an
    * angle would be too small.
    *
+   * The geometry is that of `Room.ball`, written again: one function for both, given the radii, made growth 3 to 4 %
+   * slower (20,000 terminals, 5 %; least of six runs in turn 203 → 212 µs a terminal, median 210 → 217).
+   *
    * @param neighbour the parent or child that is replaced; −1: none
    * @param x, y, z   m, where its end would be
    * @param radius    m, of its tube then
