@@ -24,9 +24,9 @@ export { encodeState, openState, type StateHead } from './formats/state-file.ts'
 export { decodeSurface } from './formats/surface/surface-formats.ts';
 export { splitTreePath, TREE_FORMATS } from './formats/tree-formats.ts';
 export type { OnMoment } from './growth/options.ts';
-export { LUMEN_DEFAULTS } from './mesh/build-lumen.ts';
 export { INLET_PROFILES, type InletProfile } from './mesh/inlet-profile.ts';
 export type { LumenMesh } from './mesh/lumen.ts';
+export { AROUND_RANGE, LUMEN_DEFAULTS } from './mesh/lumen-plan.ts';
 export {
   addNegative,
   type MeshOptions,

@@ -1,6 +1,7 @@
 import { join } from 'node:path';
 import type { Command } from 'commander';
 import {
+  AROUND_RANGE,
   addNegative,
   type CheckResult,
   checkLumen,
@@ -74,7 +75,7 @@ export function addMesh(program: Command, context: Context): void {
     .argument('<tree>', 'run folder or tree file');
   addRequired(command, '--out <folder>', 'folder to write; an earlier mesh there is replaced');
   command
-    .option('--around <count>', `segments round a vessel, 8 to 256; ${LUMEN_DEFAULTS.around} where not given`)
+    .option('--around <count>', `segments round a vessel, 6 to 256; ${LUMEN_DEFAULTS.around} where not given`)
     .option('--keep-above <radius_um>', 'leave out vessels thinner than this radius in µm, with a cap in their place')
     .option('--keep-order <order>', 'leave out vessels below this Strahler order; terminals have order 1')
     .option('--unit <unit>', `unit of the surface files: ${MESH_UNITS.join(', ')}; tables are in metres always`, 'm')
@@ -149,7 +150,10 @@ function meshOptions(options: MeshArguments): MeshOptions {
   }
   return {
     unit,
-    around: options.around === undefined ? undefined : wholeNumber(options.around, '--around', 8, 256),
+    around:
+      options.around === undefined
+        ? undefined
+        : wholeNumber(options.around, '--around', AROUND_RANGE.min, AROUND_RANGE.max),
     keepAbove:
       options.keepAbove === undefined ? undefined : toSi(positiveNumber(options.keepAbove, '--keep-above'), 'um'),
     keepOrder: options.keepOrder === undefined ? undefined : wholeNumber(options.keepOrder, '--keep-order', 1, 1000),

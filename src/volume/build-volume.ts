@@ -1,5 +1,5 @@
 import { InvariantError, inputError } from '../core/errors.ts';
-import { LUMEN_DEFAULTS } from '../mesh/build-lumen.ts';
+import { LUMEN_DEFAULTS } from '../mesh/lumen-plan.ts';
 import { JunctionShape } from '../mesh/junction-shape.ts';
 import type { LumenMesh, LumenProblem } from '../mesh/lumen.ts';
 import { layOutTubes } from '../mesh/tube-layout.ts';
@@ -10,7 +10,7 @@ import { NodeFiller, type NodeSurface } from './fill-node.ts';
 import { addSections, fillTubes, sectionPoint, type TubeSections } from './fill-tubes.ts';
 import { GrowingRows } from './growing-column.ts';
 import { GrowingVolume } from './growing-volume.ts';
-import type { LumenVolume, SectionList } from './lumen-volume.ts';
+import type { LumenVolume, NodeList, SectionList } from './lumen-volume.ts';
 import { sortNodeWalls } from './node-walls.ts';
 import { buildSectionDisc } from './section-disc.ts';
 
@@ -65,13 +65,20 @@ export function buildVolume(mesh: LumenMesh, forest: Forest, options: VolumeOpti
   const surfaces = Array.from(nodes, (row) => (layers === 0 ? null : filler.layLayers(out, row)));
   const bare = findBareNodes(forest, layout.strips, nodes, surfaces);
   fillTubes(out, forest, layout, numbers, sections, layers === 0 ? new Uint8Array(forest.count) : bare);
+  const list = listNodes(nodes);
   nodes.forEach((row, i) => {
+    list.point[i] = out.points;
+    list.tetrahedron[i] = out.vesselOfTetrahedron.count;
+    list.prism[i] = out.vesselOfPrism.count;
     const naked = bare[row] === 1;
     const least = filler.fill(out, row, naked ? null : surfaces[i]!);
     if (!(least > 0)) problems.push({ row, vessel: numbers[row]!, why: 'cells of this junction are turned over' });
     else if (naked && layers > 0)
       problems.push({ row, vessel: numbers[row]!, why: 'this junction has no layers: they would be folded' });
   });
+  list.point[nodes.length] = out.points;
+  list.tetrahedron[nodes.length] = out.vesselOfTetrahedron.count;
+  list.prism[nodes.length] = out.vesselOfPrism.count;
   return {
     position: out.position.trimmed(),
     row: out.row.trimmed(),
@@ -84,10 +91,16 @@ export function buildVolume(mesh: LumenMesh, forest: Forest, options: VolumeOpti
     patches: mesh.patches,
     wallPoints,
     sections: listSections(forest, layout.strips, sections),
+    nodes: list,
     layers,
     layerGrowth: growth,
     problems,
   };
+}
+
+function listNodes(row: Int32Array): NodeList {
+  const runs = () => new Int32Array(row.length + 1);
+  return { row, point: runs(), tetrahedron: runs(), prism: runs() };
 }
 
 /** (n) 1 at nodes without layers: where they would be folded, and across rims that two nodes share. */

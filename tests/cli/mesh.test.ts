@@ -176,7 +176,7 @@ describe('mesh', () => {
   });
 
   test.each([
-    ['--around', '3', /^--around: got "3", expected a whole number from 8 to 256/],
+    ['--around', '3', /^--around: got "3", expected a whole number from 6 to 256/],
     ['--unit', 'inch', /^--unit: got "inch", expected one of m, mm, um/],
     ['--lengths', 'long', /^--lengths: got "long", expected/],
     ['--keep-above', '-1', /^--keep-above: got "-1", expected a number > 0/],

@@ -295,9 +295,9 @@ describe('buildLumen', () => {
 
   it('refuses options out of range', () => {
     const forest = sketchForest(straightSketch(1e-3, 8e-3));
-    expect(() => buildLumen(forest, { around: 7 })).toThrow(InputError);
+    expect(() => buildLumen(forest, { around: 5 })).toThrow(InputError);
     expect(() => buildLumen(forest, { around: 20.5 })).toThrow(
-      'around: got 20.5, expected a whole number from 8 to 256',
+      'around: got 20.5, expected a whole number from 6 to 256',
     );
     expect(() => buildLumen(forest, { axialStretch: 0.5 })).toThrow('axialStretch: got 0.5, expected 1 to 3.5');
   });

@@ -1,0 +1,71 @@
+import type { Forest } from '../tree/forest.ts';
+import { GrowingSurface } from './growing-surface.ts';
+import type { LumenPatch, LumenProblem } from './lumen.ts';
+import { type LumenOptions, LumenPlan } from './lumen-plan.ts';
+
+/** Triangles of a lumen that are handed over at once; only the first `triangles` count, until the next piece. */
+export interface LumenPiece {
+  readonly triangles: number;
+  /** (3v) m */
+  readonly position: Float64Array;
+  /** (3f) vertices of this piece. */
+  readonly triangle: Int32Array;
+  /** (f) index into the patches. */
+  readonly patch: Int32Array;
+  /** (f) number of the nearest vessel. */
+  readonly vessel: Int32Array;
+}
+
+export interface StreamedLumen {
+  readonly patches: readonly LumenPatch[];
+  readonly problems: readonly LumenProblem[];
+  readonly triangles: number;
+}
+
+/** Vertices of a piece before it is handed over. */
+const PIECE = 1 << 16;
+
+/**
+ * Builds the lumen surface that `buildLumen` builds, piece by piece, so that a surface may be larger than memory. Corners
+ * that two pieces share have the same bits in both.
+ *
+ * @param take is handed each piece; what it is handed is used again for the next
+ * @throws InputError for options out of range
+ * Cost: as buildLumen; memory for the layout, some 200 bytes a vessel, and one piece.
+ */
+export function streamLumen(forest: Forest, options: LumenOptions, take: (piece: LumenPiece) => void): StreamedLumen {
+  const plan = new LumenPlan(forest, options);
+  const { strips, patches, children } = plan;
+  const out = new GrowingSurface(2 * PIECE, 4 * PIECE);
+  const rings = new Int32Array(forest.count).fill(-1);
+  let triangles = 0;
+  const hand = (): void => {
+    triangles += out.triangles;
+    const { position, triangle, patch, vessel } = out;
+    if (out.triangles > 0) take({ triangles: out.triangles, position, triangle, patch, vessel });
+    out.vertices = 0;
+    out.triangles = 0;
+  };
+  let cap = 1;
+  for (let row = 0; row < forest.count; row++) {
+    if (out.vertices > PIECE) hand();
+    if (forest.parent[row]! < 0) {
+      // The vessel that leaves a root begins with its cap's rim.
+      const vessel = plan.vesselAt(row);
+      rings[vessel] = strips.addRing(out, vessel, 0);
+      plan.addCap(out, rings, cap++);
+      continue;
+    }
+    rings[row] = strips.add(out, row);
+    if (!plan.isInner(row)) plan.addCap(out, rings, cap++);
+    else {
+      for (let i = children.start[row]!; i < children.start[row + 1]!; i++) {
+        const child = children.list[i]!;
+        rings[child] = strips.addRing(out, child, 0);
+      }
+      plan.addPatch(out, rings, row);
+    }
+  }
+  hand();
+  return { patches, problems: plan.problems, triangles };
+}
