@@ -19,6 +19,7 @@ export { decodeTree } from './formats/decode-tree.ts';
 export type { ByteSource, DecodedTree, NamedBytes, TreeFormat } from './formats/format.ts';
 export { MESH_UNITS, type MeshUnit } from './formats/mesh/length-unit.ts';
 export { lumenFile, MESH_FORMATS } from './formats/mesh/mesh-formats.ts';
+export type { LateHead } from './formats/mesh/stl-stream.ts';
 export { CASE_FILES, CASE_FOLDER } from './formats/solver/openfoam-case.ts';
 export { encodeState, openState, type StateHead } from './formats/state-file.ts';
 export { decodeSurface } from './formats/surface/surface-formats.ts';
@@ -35,6 +36,8 @@ export {
   type NegativeResult,
   SOLVER_FILES,
   type SolverFiles,
+  type SurfaceStream,
+  streamSurface,
 } from './mesh-run.ts';
 export { CHUNK, type Crew, type ProposalTask } from './moves/crew.ts';
 export { Desk } from './moves/desk.ts';

@@ -7,11 +7,15 @@ import type { NamedBytes } from './formats/format.ts';
 import type { MeshUnit } from './formats/mesh/length-unit.ts';
 import { encodeMeshFolder } from './formats/mesh/mesh-folder.ts';
 import { addNegativeFiles, type NegativeNotes } from './formats/mesh/negative-files.ts';
+import { type LateHead, streamBinaryStl } from './formats/mesh/stl-stream.ts';
 import { buildLumen } from './mesh/build-lumen.ts';
 import { type CutForest, type CutOptions, cutField, cutForest, cutResistances } from './mesh/cut-forest.ts';
 import { extendCaps, extendField, type ShortExtension } from './mesh/extend-caps.ts';
 import type { InletProfile } from './mesh/inlet-profile.ts';
 import type { LumenMesh, LumenProblem } from './mesh/lumen.ts';
+import { LumenPlan } from './mesh/lumen-plan.ts';
+import { RunningFigures } from './mesh/running-figures.ts';
+import { lumenPieces } from './mesh/stream-lumen.ts';
 import { leastWall as measureWall } from './print/least-wall.ts';
 import { makeNegative } from './print/negative.ts';
 import { specAsSolved } from './rerun.ts';
@@ -127,6 +131,38 @@ export function meshTree(record: TreeRecord, grown: Spec | null, options: MeshOp
     solverFiles,
   });
   return { mesh, files: made, vessels: countVessels(forest), removed: cut?.removed ?? 0 };
+}
+
+/** A lumen surface that is made while it is written. */
+export interface SurfaceStream {
+  /** About how many triangles there will be. */
+  readonly foreseen: number;
+  /** A binary STL. */
+  readonly stl: LateHead;
+  /** What was seen of what has been written so far. */
+  readonly figures: RunningFigures;
+  readonly problems: () => readonly LumenProblem[];
+}
+
+/**
+ * The lumen surface of a whole tree as a binary STL that is made while it is written: for trees whose surface is too large to
+ * be held. It is that of `meshTree`, but is not held to the promises of a mesh folder.
+ *
+ * @throws InputError for options out of range
+ */
+export function streamSurface(
+  record: TreeRecord,
+  options: Pick<MeshOptions, 'around' | 'axialStretch' | 'unit'> = {},
+): SurfaceStream {
+  const { around, axialStretch, unit = 'm' } = options;
+  const plan = new LumenPlan(record.forest, { around, axialStretch, kinds: record.kinds });
+  const figures = new RunningFigures();
+  return {
+    foreseen: plan.triangles,
+    stl: streamBinaryStl(lumenPieces(plan), plan.patches, unit, (piece) => figures.see(piece)),
+    figures,
+    problems: () => plan.problems,
+  };
 }
 
 /** What of a tree is meshed, and its solution. */

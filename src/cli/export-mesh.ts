@@ -1,7 +1,15 @@
 import { closeSync, existsSync, openSync, readFileSync, readSync } from 'node:fs';
 import { join } from 'node:path';
-import { inputError, MESH_FORMATS, meshTree } from '../index.ts';
-import { isMeshFolder, placeForFile, readTree, specOfTree, withFiles, writeFiles } from '../node/index.ts';
+import { AROUND_RANGE, inputError, MESH_FORMATS, meshTree, type SurfaceStream, streamSurface } from '../index.ts';
+import {
+  isMeshFolder,
+  placeForFile,
+  readTree,
+  specOfTree,
+  type TreeFiles,
+  withFiles,
+  writeFiles,
+} from '../node/index.ts';
 import { EXIT } from './exit-codes.ts';
 import type { Talk } from './io.ts';
 import { checkMesh } from './mesh.ts';
@@ -13,14 +21,28 @@ import {
   type MeshSurface,
   meshFormatOf,
 } from './mesh-formats.ts';
-import { withOptionNames } from './option-values.ts';
+import { numberFrom, wholeNumber, withOptionNames } from './option-values.ts';
 
 /** Bytes of a file by which a format knows its own. */
 const HEAD = 4096;
 
+/** Triangles above which a surface is not held in memory. */
+const LARGE = 5_000_000;
+/** Triangles above which no other format than STL is written of a tree: they are not made piece by piece. */
+const MOST = 20_000_000;
+
 export interface MeshExport {
   readonly format: MeshFormat;
   readonly colourBy: ColourBy | undefined;
+  readonly around: number | undefined;
+  readonly axialStretch: number | undefined;
+}
+
+/** Options as they were given. */
+export interface MeshExportWords {
+  readonly colourBy?: string;
+  readonly around?: string;
+  readonly stretch?: string;
 }
 
 /**
@@ -29,13 +51,10 @@ export interface MeshExport {
  * @param isTree whether the path to write has the ending of a tree format
  * @returns null where a tree is to be written
  */
-export function meshExportOf(
-  path: string,
-  to: string,
-  colours: string | undefined,
-  isTree: boolean,
-): MeshExport | null {
+export function meshExportOf(path: string, to: string, words: MeshExportWords, isTree: boolean): MeshExport | null {
   const folder = isMeshFolder(path);
+  const colours = words.colourBy;
+  if (folder || isTree) refuseShape(words, folder ? 'a mesh folder, which is meshed already' : 'a tree format');
   if (isTree && !folder) {
     colourByOf(colours, [], 'a mesh as .glb');
     return null;
@@ -50,19 +69,65 @@ export function meshExportOf(
     );
   }
   if (format === null) return null;
-  return { format, colourBy: colourByOf(colours, [format], 'a mesh as .glb') };
+  return {
+    format,
+    colourBy: colourByOf(colours, [format], 'a mesh as .glb'),
+    around:
+      words.around === undefined
+        ? undefined
+        : wholeNumber(words.around, '--around', AROUND_RANGE.min, AROUND_RANGE.max),
+    axialStretch: words.stretch === undefined ? undefined : numberFrom(words.stretch, '--stretch', 1, 3.5),
+  };
 }
 
-/** Writes the mesh of a mesh folder, or of a tree meshed as `mesh` does where no option is given. */
-export function exportMesh(path: string, to: string, { format, colourBy }: MeshExport, talk: Talk): number {
+/** Options that shape a mesh, where none is made. */
+function refuseShape({ around, stretch }: MeshExportWords, got: string): void {
+  if (around !== undefined) throw inputError('bad-value', '--around', `got it with ${got}, expected a tree to mesh`);
+  if (stretch !== undefined) throw inputError('bad-value', '--stretch', `got it with ${got}, expected a tree to mesh`);
+}
+
+/** Writes the mesh of a mesh folder, or of a tree meshed as `mesh` does. */
+export function exportMesh(path: string, to: string, wanted: MeshExport, talk: Talk): number {
+  const { format, colourBy } = wanted;
   placeForFile(to, '--to');
   if (existsSync(to)) refuseForeign(format, to);
-  const { surface, held } = isMeshFolder(path) ? { surface: readSurface(path), held: true } : meshSurfaceOf(path, talk);
+  let surface: MeshSurface;
+  let held = true;
+  if (isMeshFolder(path)) surface = readSurface(path);
+  else {
+    const tree = readTree(path);
+    for (const note of tree.notes) talk.note(note);
+    const stream = streamSurface(tree.record, wanted);
+    if (format.id === 'stl' && stream.foreseen > LARGE) return exportStream(stream, to, talk);
+    if (stream.foreseen > MOST) {
+      throw inputError(
+        'too-large',
+        '--to',
+        `got a tree whose surface has about ${stream.foreseen} triangles, expected at most ${MOST} in ${format.ending}; .stl is written of any size, and --around and --stretch make fewer`,
+      );
+    }
+    ({ surface, held } = meshSurfaceOf(tree, path, wanted, talk));
+  }
   const content = withOptionNames({ colourBy: '--colour-by' }, () => format.encode(surface, { colourBy }));
   writeFiles([{ path: to, content }], talk.writing('--to'));
   talk.say(`written: ${to}, in ${format.unitOf(surface.unit)}`);
   if (format.drops.length > 0) talk.note(`${format.ending} holds no ${format.drops.join(', no ')}`);
   return held ? EXIT.held : EXIT.broken;
+}
+
+/** Writes a surface that is too large to be held. */
+function exportStream({ stl, figures, problems }: SurfaceStream, to: string, talk: Talk): number {
+  talk.onProgress({ stage: 'mesh', done: 0, total: 1 });
+  writeFiles([{ path: to, content: stl }], talk.writing('--to'));
+  talk.settle();
+  const angle = (figures.smallestAngle * 180) / Math.PI;
+  talk.say(
+    `written: ${to}, in m: ${figures.triangles} triangles, volume ${Number((figures.volume * 1e9).toPrecision(6))} mm³, ` +
+      `smallest angle ${angle.toFixed(1)}°; made while it was written, not checked`,
+  );
+  const missed = problems();
+  for (const { vessel, why } of missed) talk.note(`NOT MET: at the end of vessel ${vessel}: ${why}`);
+  return missed.length === 0 ? EXIT.held : EXIT.broken;
 }
 
 function readSurface(folder: string): MeshSurface {
@@ -71,11 +136,15 @@ function readSurface(folder: string): MeshSurface {
   return decodeMesh(bytes, path);
 }
 
-function meshSurfaceOf(path: string, talk: Talk): { readonly surface: MeshSurface; readonly held: boolean } {
-  const tree = readTree(path);
-  for (const note of tree.notes) talk.note(note);
+function meshSurfaceOf(
+  tree: TreeFiles,
+  path: string,
+  { around, axialStretch }: MeshExport,
+  talk: Talk,
+): { readonly surface: MeshSurface; readonly held: boolean } {
   talk.onProgress({ stage: 'mesh', done: 0, total: 1 });
-  const made = withOptionNames({ tree: path }, () => meshTree(tree.record, specOfTree(tree)));
+  const options = { around, axialStretch };
+  const made = withOptionNames({ tree: path }, () => meshTree(tree.record, specOfTree(tree), options));
   talk.onProgress({ stage: 'proof', done: 0, total: 1 });
   const broken = checkMesh(made).promises.filter((promise) => promise.held === false);
   talk.settle();

@@ -12,6 +12,8 @@ import { COLOUR_BY_HELP, MESH_FORMATS_HELP } from './mesh-formats.ts';
 interface ExportArguments extends CommonOptions {
   readonly to: string;
   readonly colourBy?: string;
+  readonly around?: string;
+  readonly stretch?: string;
 }
 
 /** Endings that a tree is written in; others that a mesh is. */
@@ -24,11 +26,15 @@ export function addExport(program: Command, context: Context): void {
     .summary('write a tree or a mesh in another format')
     .description(
       'Writes a tree or the lumen mesh of a mesh folder in the format that the file’s extension names. Where a tree is\n' +
-        'given and no tree is written so (.glb, .stl, …), it is meshed as `mesh` does without options, and checked.',
+        'given and no tree is written so (.glb, .stl, …), it is meshed as `mesh` does, and checked. An .stl of more than five\n' +
+        'million triangles is made while it is written, in binary, and is not checked: of a tree of any size.',
     )
     .argument('<tree>', `run folder, tree file (${TREE_ENDINGS}) or mesh folder`);
   addRequired(command, '--to <file>', `file to write: ${ENDINGS.join(', ')}`);
-  command.option('--colour-by <what>', COLOUR_BY_HELP);
+  command
+    .option('--colour-by <what>', COLOUR_BY_HELP)
+    .option('--around <count>', 'of a tree that is meshed: segments round a vessel, as in `mesh`')
+    .option('--stretch <factor>', 'of a tree that is meshed: axial edges over those round a vessel, as in `mesh`');
   addCommonOptions(command, null);
   command.addHelpText('after', `\nFormats of trees:\n${describeFormats()}\nFormats of meshes:\n${MESH_FORMATS_HELP}`);
   addExample(command, 'export runs/gel --to gel.csv', 'export meshes/gel --to gel.glb --colour-by pressure');
@@ -48,7 +54,7 @@ function describeFormats(): string {
 
 function exportTree(path: string, options: ExportArguments, talk: Talk): number {
   const { to } = options;
-  const mesh = meshExportOf(path, to, options.colourBy, TREE_FORMATS.some(hasEnding(to)));
+  const mesh = meshExportOf(path, to, options, TREE_FORMATS.some(hasEnding(to)));
   if (mesh !== null) {
     refuseFolderFile(to);
     return exportMesh(path, to, mesh, talk);

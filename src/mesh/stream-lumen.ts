@@ -1,7 +1,5 @@
-import type { Forest } from '../tree/forest.ts';
 import { GrowingSurface } from './growing-surface.ts';
-import type { LumenPatch, LumenProblem } from './lumen.ts';
-import { type LumenOptions, LumenPlan } from './lumen-plan.ts';
+import type { LumenPlan } from './lumen-plan.ts';
 
 /** Triangles of a lumen that are handed over at once; only the first `triangles` count, until the next piece. */
 export interface LumenPiece {
@@ -16,39 +14,29 @@ export interface LumenPiece {
   readonly vessel: Int32Array;
 }
 
-export interface StreamedLumen {
-  readonly patches: readonly LumenPatch[];
-  readonly problems: readonly LumenProblem[];
-  readonly triangles: number;
-}
-
 /** Vertices of a piece before it is handed over. */
 const PIECE = 1 << 16;
 
 /**
- * Builds the lumen surface that `buildLumen` builds, piece by piece, so that a surface may be larger than memory. Corners
- * that two pieces share have the same bits in both.
+ * The lumen surface that `buildLumen` builds, piece by piece, so that a surface may be larger than memory. Corners that two
+ * pieces share have the same bits in both. What kept it from what a mesh promises stands in the plan's `problems` at the end.
  *
- * @param take is handed each piece; what it is handed is used again for the next
- * @throws InputError for options out of range
- * Cost: as buildLumen; memory for the layout, some 200 bytes a vessel, and one piece.
+ * @yields pieces; what one is made of is used again for the next
+ * Cost: as buildLumen; memory for the plan, some 300 bytes a vessel, and one piece.
  */
-export function streamLumen(forest: Forest, options: LumenOptions, take: (piece: LumenPiece) => void): StreamedLumen {
-  const plan = new LumenPlan(forest, options);
-  const { strips, patches, children } = plan;
+export function* lumenPieces(plan: LumenPlan): Generator<LumenPiece> {
+  const { forest, strips, children } = plan;
   const out = new GrowingSurface(2 * PIECE, 4 * PIECE);
   const rings = new Int32Array(forest.count).fill(-1);
-  let triangles = 0;
-  const hand = (): void => {
-    triangles += out.triangles;
-    const { position, triangle, patch, vessel } = out;
-    if (out.triangles > 0) take({ triangles: out.triangles, position, triangle, patch, vessel });
+  const piece = (): LumenPiece => {
+    const { triangles, position, triangle, patch, vessel } = out;
     out.vertices = 0;
     out.triangles = 0;
+    return { triangles, position, triangle, patch, vessel };
   };
   let cap = 1;
   for (let row = 0; row < forest.count; row++) {
-    if (out.vertices > PIECE) hand();
+    if (out.vertices > PIECE) yield piece();
     if (forest.parent[row]! < 0) {
       // The vessel that leaves a root begins with its cap's rim.
       const vessel = plan.vesselAt(row);
@@ -66,6 +54,5 @@ export function streamLumen(forest: Forest, options: LumenOptions, take: (piece:
       plan.addPatch(out, rings, row);
     }
   }
-  hand();
-  return { patches, problems: plan.problems, triangles };
+  yield piece();
 }

@@ -1,5 +1,5 @@
 import { closeSync, fstatSync, fsyncSync, openSync, readSync, writeSync } from 'node:fs';
-import { type ByteSource, inputError } from '../index.ts';
+import { type ByteSource, inputError, type LateHead } from '../index.ts';
 
 /** Bytes of one call to the system; it takes no more than 2 GiB. */
 const STRETCH = 1 << 28;
@@ -8,11 +8,11 @@ const SMALL = 1 << 16;
 
 /**
  * What a file is made of: bytes, a text, or pieces that follow one another, each good until the next is taken; or what
- * makes one of these when the file's turn comes.
+ * makes one of these when the file's turn comes. The first bytes may come last (`LateHead`).
  */
 export type Content = Made | (() => Made);
 
-type Made = Uint8Array | string | Iterable<Uint8Array>;
+type Made = Uint8Array | string | Iterable<Uint8Array> | LateHead;
 
 /** Writes a new file of any size and hands it to the disk. */
 export function writeContent(path: string, content: Content): void {
@@ -24,7 +24,10 @@ export function writeContent(path: string, content: Content): void {
       writeWhole(file, gathered.subarray(0, size));
       size = 0;
     };
-    for (const piece of piecesOf(typeof content === 'function' ? content() : content)) {
+    const made = typeof content === 'function' ? content() : content;
+    const late = isLate(made) ? made : null;
+    if (late !== null) writeWhole(file, new Uint8Array(late.headSize));
+    for (const piece of late?.pieces ?? piecesOf(made as Exclude<Made, LateHead>)) {
       if (size + piece.length > SMALL) flush();
       if (piece.length >= SMALL) writeWhole(file, piece);
       else {
@@ -33,13 +36,23 @@ export function writeContent(path: string, content: Content): void {
       }
     }
     flush();
+    if (late !== null) writeHead(file, late);
     fsyncSync(file);
   } finally {
     closeSync(file);
   }
 }
 
-function piecesOf(content: Made): Iterable<Uint8Array> {
+function isLate(made: Made): made is LateHead {
+  return typeof made === 'object' && 'headSize' in made;
+}
+
+function writeHead(file: number, { head, headSize }: LateHead): void {
+  const bytes = head();
+  for (let at = 0; at < headSize; ) at += writeSync(file, bytes, at, headSize - at, at);
+}
+
+function piecesOf(content: Exclude<Made, LateHead>): Iterable<Uint8Array> {
   if (typeof content === 'string') return [Buffer.from(content)];
   return content instanceof Uint8Array ? [content] : content;
 }

@@ -1,7 +1,10 @@
 import { describe, expect, it } from 'vitest';
 import { buildLumen } from '../../../src/mesh/build-lumen.ts';
 import type { LumenMesh } from '../../../src/mesh/lumen.ts';
-import { type LumenPiece, streamLumen } from '../../../src/mesh/stream-lumen.ts';
+import { LumenPlan } from '../../../src/mesh/lumen-plan.ts';
+import { measureLumen } from '../../../src/mesh/measure-lumen.ts';
+import { RunningFigures } from '../../../src/mesh/running-figures.ts';
+import { type LumenPiece, lumenPieces } from '../../../src/mesh/stream-lumen.ts';
 import { forkSketch, randomSketch, sketchForest, straightSketch } from '../../support/lumen-forests.ts';
 
 /** A triangle by the bits of its corners, from its first in order, with patch and vessel. */
@@ -26,24 +29,24 @@ describe.each([
   it('is the same in pieces as in one', () => {
     const whole = buildLumen(forest, { around, axialStretch });
     const pieces: string[] = [];
-    const streamed = streamLumen(forest, { around, axialStretch }, (piece) => {
+    const plan = new LumenPlan(forest, { around, axialStretch });
+    const figures = new RunningFigures();
+    for (const piece of lumenPieces(plan)) {
+      figures.see(piece);
       for (let t = 0; t < piece.triangles; t++) pieces.push(tell(piece, t));
-    });
-    expect(pieces.length).toBe(streamed.triangles);
+    }
+    expect(pieces.length).toBe(figures.triangles);
     expect(pieces.toSorted()).toEqual(all(whole));
-    expect(streamed.patches).toEqual(whole.patches);
-    expect(streamed.problems).toEqual(whole.problems);
+    expect(plan.patches).toEqual(whole.patches);
+    expect(plan.problems).toEqual(whole.problems);
+    expect(Math.abs(plan.triangles / figures.triangles - 1)).toBeLessThan(0.25);
+    const measured = measureLumen(whole);
+    for (const key of ['smallestAngle', 'longestEdge', 'volume', 'area'] as const)
+      expect(figures[key] / measured[key]).toBeCloseTo(1, 9);
   });
 });
 
 it('comes in pieces where it is large', () => {
-  const forest = sketchForest(randomSketch('pieces', { vessels: 120, leastRatio: 0.3 }));
-  let pieces = 0;
-  let triangles = 0;
-  const { triangles: told } = streamLumen(forest, { around: 24 }, (piece) => {
-    pieces++;
-    triangles += piece.triangles;
-  });
-  expect(pieces).toBeGreaterThan(1);
-  expect(triangles).toBe(told);
+  const plan = new LumenPlan(sketchForest(randomSketch('pieces', { vessels: 120, leastRatio: 0.3 })), { around: 24 });
+  expect([...lumenPieces(plan)].length).toBeGreaterThan(1);
 });
