@@ -73,6 +73,34 @@ describe('mesh --formats', () => {
 });
 
 describe('export of a mesh', () => {
+  test('--around and --stretch shape the mesh of a tree, and are refused where none is made', async () => {
+    const facets = async (...words: string[]) => {
+      const to = scratch.path('shaped.stl');
+      const { code, err } = await runCli(['export', run, '--to', to, ...words]);
+      expect(code, err).toBe(0);
+      return readFileSync(to, 'utf8').split('endfacet').length - 1;
+    };
+    const coarse = await facets('--around', '8');
+    expect(await facets('--around', '12')).toBeGreaterThan(1.5 * coarse);
+    expect(await facets('--around', '8', '--stretch', '1.5')).toBeLessThan(0.9 * coarse);
+    for (const [words, told] of [
+      [
+        ['export', run, '--to', scratch.path('e.stl'), '--around', '5'],
+        /--around: got "5", expected a whole number from 6/,
+      ],
+      [
+        ['export', run, '--to', scratch.path('e.stl'), '--stretch', '4'],
+        /--stretch: got "4", expected a number from 1/,
+      ],
+      [['export', mesh, '--to', scratch.path('e.stl'), '--around', '8'], /--around: got it with a mesh folder/],
+      [['export', run, '--to', scratch.path('e.vtp'), '--stretch', '2'], /--stretch: got it with a tree format/],
+    ] as const) {
+      const { code, err } = await runCli([...words]);
+      expect(code).toBe(2);
+      expect(err).toMatch(told);
+    }
+  });
+
   test('folder writes the asked format in the unit of the folder, GLB in metres', async () => {
     const vtp = readVtk(bytesOf('mesh', 'lumen.vtp'));
     const ply = await runCli(['export', mesh, '--to', scratch.path('a.ply')]);
