@@ -19,7 +19,7 @@ beforeAll(async () => {
   run = scratch.path('run');
   mesh = scratch.path('mesh');
   await runCli(['grow', scratch.path('spec.json'), '--out', run]);
-  await runCli(['mesh', run, '--out', mesh, '--unit', 'mm']);
+  await runCli(['mesh', run, '--out', mesh, '--unit', 'mm', '--around', '12']);
 });
 afterAll(() => scratch.remove());
 
@@ -32,7 +32,8 @@ const bytesOf = (...names: string[]) => new Uint8Array(readFileSync(scratch.path
 
 describe('mesh --formats', () => {
   test('adds files, lists them in mesh.json, and leaves the others and the check as they are', async () => {
-    const argv = ['--unit', 'mm', '--formats', 'ply,obj,glb,3mf,msh4,vtu,stl', '--colour-by', 'pressure'];
+    const shape = ['--unit', 'mm', '--around', '12'];
+    const argv = [...shape, '--formats', 'ply,obj,glb,3mf,msh4,vtu,stl', '--colour-by', 'pressure'];
     const { code, out } = await runCli(['mesh', run, '--out', scratch.path('more'), ...argv]);
     expect(code, out).toBe(0);
     const added = ['lumen.ply', 'lumen.obj', 'lumen.glb', 'lumen.3mf', 'lumen_4.msh', 'lumen.vtu'];
@@ -52,7 +53,7 @@ describe('mesh --formats', () => {
     expect(issues.messages).toEqual([]);
     expect((await runCli(['check', scratch.path('more')])).code).toBe(0);
     // It is a mesh folder like any other, and may be replaced.
-    expect((await runCli(['mesh', run, '--out', scratch.path('more'), '--quiet'])).code).toBe(0);
+    expect((await runCli(['mesh', run, '--out', scratch.path('more'), '--around', '12', '--quiet'])).code).toBe(0);
     expect(existsSync(scratch.path('more', 'lumen.glb'))).toBe(false);
   });
 

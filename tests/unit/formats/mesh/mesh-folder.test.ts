@@ -22,6 +22,7 @@ function text(files: Map<string, Uint8Array>, name: string): string {
   return decodeText(files.get(name)!);
 }
 
+/** Promises that do not hold; drops of both networks are stated only by those who solve both. */
 function failures(files: Map<string, Uint8Array>) {
   return checkLumen({
     vtp: files.get('lumen.vtp')!,
@@ -31,7 +32,7 @@ function failures(files: Map<string, Uint8Array>) {
     boundary: files.get('boundary.csv')!,
     network: files.get('network.csv')!,
     notes: files.get('mesh.json')!,
-  }).promises.filter((promise) => promise.held !== true);
+  }).promises.filter(({ held, note }) => held !== true && note !== 'not checked: no drops are stated');
 }
 
 describe('encodeMeshFolder', () => {
