@@ -6,7 +6,7 @@ import { networkTable } from '../../mesh/network-table.ts';
 import type { FlowField, Forest, TreeKind } from '../../tree/forest.ts';
 import type { NamedBytes } from '../format.ts';
 import { encodeFillScript } from '../solver/fill-script.ts';
-import { encodeOpenfoamCase } from '../solver/openfoam-case.ts';
+import { CASE_FOLDER, encodeOpenfoamCase } from '../solver/openfoam-case.ts';
 import type { MeshUnit } from './length-unit.ts';
 import { encodeLumenVtp } from './lumen-vtp.ts';
 import { MESH_FORMATS } from './mesh-formats.ts';
@@ -92,7 +92,7 @@ export function encodeMeshFolder(input: MeshFolderInput): NamedBytes[] {
         unit,
         axialStretch: input.axialStretch ?? 1,
         binary,
-        files: describeFiles(unit, binary),
+        files: describeFiles(input, unit, binary),
         density: input.density,
         viscosity: input.viscosity,
         cut: cutNotes,
@@ -144,12 +144,19 @@ function forSolvers(input: MeshFolderInput, boundary: readonly BoundaryRow[]): N
   return files;
 }
 
-/** What a folder has without being asked for more, `mesh.json` apart. */
-function describeFiles(unit: MeshUnit, binary: boolean): FileNotes[] {
+/** What a folder has, `mesh.json` and further surface formats apart. */
+function describeFiles(
+  { profile, solverFiles = [] }: Pick<MeshFolderInput, 'profile' | 'solverFiles'>,
+  unit: MeshUnit,
+  binary: boolean,
+): FileNotes[] {
   const surfaces: FileNotes[] = MESH_FORMATS.filter(({ always }) => always).map((format) => describeFile(format, unit));
   const [stl] = surfaces;
   if (!binary) surfaces.splice(1, 0, { ...stl!, name: 'lumen_one_solid.stl', holds_no: ['patches', ...stl!.holds_no] });
   else surfaces[0] = { ...stl!, holds_no: [...stl!.holds_no, 'digits beyond float32'] };
-  const tables = ['boundary.csv', 'network.csv'].map((name): FileNotes => ({ name, unit: 'm', holds_no: [] }));
-  return [...surfaces, ...tables];
+  const others = ['boundary.csv', 'network.csv'];
+  if (profile !== undefined) others.push('inlet_profile.csv');
+  if (solverFiles.length > 0) others.push('fill.geo');
+  if (solverFiles.includes('openfoam')) others.push(CASE_FOLDER);
+  return [...surfaces, ...others.map((name): FileNotes => ({ name, unit: 'm', holds_no: [] }))];
 }
