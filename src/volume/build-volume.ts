@@ -1,7 +1,7 @@
 import { InvariantError, inputError } from '../core/errors.ts';
-import { LUMEN_DEFAULTS } from '../mesh/lumen-plan.ts';
 import { JunctionShape } from '../mesh/junction-shape.ts';
 import type { LumenMesh, LumenProblem } from '../mesh/lumen.ts';
+import { LUMEN_DEFAULTS } from '../mesh/lumen-plan.ts';
 import { layOutTubes } from '../mesh/tube-layout.ts';
 import { listChildren } from '../tree/children.ts';
 import type { Forest } from '../tree/forest.ts';

@@ -31,6 +31,9 @@ export interface NodeSurface {
   readonly source: Int32Array;
 }
 
+/** Longest edge wanted within, over that on the widest tube. */
+const COARSEST = 1.6;
+
 /** Fills one inner node after another: layers along its wall, tetrahedra within. */
 export class NodeFiller {
   private readonly input: NodeFillerInput;
@@ -81,7 +84,7 @@ export class NodeFiller {
       this.startCore(out, row, unit, wall, inner, false);
     }
     const fixed = this.core.vertices - 1;
-    this.refiner.refine(40 * fixed);
+    this.refiner.refine(40 * fixed, COARSEST * this.core.size[fixed]!);
     const least = this.improver.improve(fixed);
     this.emitCore(out, row, unit, fixed);
     return least;

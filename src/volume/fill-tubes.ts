@@ -87,7 +87,7 @@ export function fillTubes(
 }
 
 /** What lies between two rings: the points of their discs. */
-interface Strip {
+export interface Strip {
   readonly low: Int32Array;
   readonly high: Int32Array;
   /** Whether the lower ring is an even one. */
@@ -134,7 +134,12 @@ function addRing(
   }
 }
 
-function addLayers(out: GrowingVolume, { around, layers }: SectionDisc, { low, high, even, vessel }: Strip): void {
+/** Adds the layers of a strip. */
+export function addLayers(
+  out: GrowingVolume,
+  { around, layers }: SectionDisc,
+  { low, high, even, vessel }: Strip,
+): void {
   for (let l = 0; l < layers; l++) {
     const o = l * around;
     const i = o + around;
@@ -224,7 +229,8 @@ export function wholeTriangles({ around, layers, triangle }: SectionDisc): Int32
   return Int32Array.from([...out, ...triangle]);
 }
 
-function addCore(
+/** Adds what lies within the layers of a strip. */
+export function addCore(
   out: GrowingVolume,
   { around, layers, triangle }: SectionDisc,
   { low, high, even, vessel }: Strip,

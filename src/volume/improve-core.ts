@@ -2,7 +2,7 @@ import { Star, smoothVertex } from './smooth-vertex.ts';
 import { FACE, type TetMesh } from './tet-mesh.ts';
 
 /** Quality that is left alone; about that of a tetrahedron with a least dihedral angle of 25°. */
-const ENOUGH = 0.5;
+const ENOUGH = 0.45;
 /** Most tetrahedra round an edge that is taken away. */
 const MOST_ROUND = 9;
 const PASSES = 8;

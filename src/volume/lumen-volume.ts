@@ -33,6 +33,7 @@ export interface LumenVolume {
   readonly wallPoints: number;
   /** Discs across the tubes whose faces are faces of the mesh. */
   readonly sections: SectionList;
+  readonly nodes: NodeList;
   readonly layers: number;
   readonly layerGrowth: number;
   /** What kept a part of it from what is promised. */
@@ -64,4 +65,16 @@ export interface SectionDisc {
   readonly place: Float64Array;
   /** (3 each) the core, counter-clockwise. */
   readonly triangle: Int32Array;
+}
+
+/** What each inner node has of the mesh: runs of its points and cells, node i's up to where i + 1's begin. */
+export interface NodeList {
+  /** (k) row of the node. */
+  readonly row: Int32Array;
+  /** (k + 1) first of its own points; it shares those of its wall and of the sections at its rims. */
+  readonly point: Int32Array;
+  /** (k + 1) first of its tetrahedra. */
+  readonly tetrahedron: Int32Array;
+  /** (k + 1) first of its prisms. */
+  readonly prism: Int32Array;
 }

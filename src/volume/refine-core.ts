@@ -6,6 +6,8 @@ const WIDE = 0.8;
 const APART = 0.62;
 const ABOVE_WALL = 0.38;
 const PASSES = 12;
+/** How much longer edges may be with each point further from the boundary. */
+const GROWTH = 1.15;
 
 /**
  * Sets points into a region of tetrahedra that starts from any filling, a fan about one point will do, until none is much
@@ -22,13 +24,19 @@ export class CoreRefiner {
   private marked = new Int32Array(0);
   private round = 0;
   private hole: number[] = [];
+  private widest = Infinity;
 
   constructor(mesh: TetMesh) {
     this.mesh = mesh;
   }
 
-  refine(mostVertices: number): void {
+  /**
+   * @param mostVertices where to stop in any case
+   * @param widest       longest edge wanted anywhere
+   */
+  refine(mostVertices: number, widest: number): void {
     const { mesh } = this;
+    this.widest = widest;
     for (let pass = 0; pass < PASSES; pass++) {
       let set = 0;
       for (let t = 0; t < mesh.slots && mesh.vertices < mostVertices; t++) {
@@ -130,7 +138,7 @@ export class CoreRefiner {
       sum += w * mesh.size[c]!;
       ratio = Math.min(ratio, square);
     }
-    const size = sum / weight;
+    const size = Math.min((GROWTH * sum) / weight, this.widest);
     mesh.size[v] = size;
     return ratio > APART * APART * size * size;
   }
