@@ -20,6 +20,7 @@ export type { ByteSource, DecodedTree, NamedBytes, TreeFormat } from './formats/
 export { MESH_UNITS, type MeshUnit } from './formats/mesh/length-unit.ts';
 export { lumenFile, MESH_FORMATS } from './formats/mesh/mesh-formats.ts';
 export type { LateHead } from './formats/mesh/stl-stream.ts';
+export type { VolumeNotes } from './formats/mesh/volume-files.ts';
 export { CASE_FILES, CASE_FOLDER } from './formats/solver/openfoam-case.ts';
 export { encodeState, openState, type StateHead } from './formats/state-file.ts';
 export { decodeSurface } from './formats/surface/surface-formats.ts';
@@ -64,3 +65,4 @@ export { buildTissue } from './tissue/build-tissue.ts';
 export type { Tissue } from './tissue/tissue.ts';
 export type { FlowField, Forest, TreeKind, TreeRecord } from './tree/forest.ts';
 export { countVessels, rowOfVessel, tubeLength, vesselName, vesselOfRow } from './tree/vessels.ts';
+export { VOLUME_DEFAULTS } from './volume/build-volume.ts';

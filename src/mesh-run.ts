@@ -8,6 +8,7 @@ import type { MeshUnit } from './formats/mesh/length-unit.ts';
 import { encodeMeshFolder } from './formats/mesh/mesh-folder.ts';
 import { addNegativeFiles, type NegativeNotes } from './formats/mesh/negative-files.ts';
 import { type LateHead, streamBinaryStl } from './formats/mesh/stl-stream.ts';
+import { addVolumeFiles, type VolumeNotes } from './formats/mesh/volume-files.ts';
 import { buildLumen } from './mesh/build-lumen.ts';
 import { type CutForest, type CutOptions, cutField, cutForest, cutResistances } from './mesh/cut-forest.ts';
 import { extendCaps, extendField, type ShortExtension } from './mesh/extend-caps.ts';
@@ -26,6 +27,8 @@ import { buildTissue } from './tissue/build-tissue.ts';
 import type { FlowField, Forest, TreeRecord } from './tree/forest.ts';
 import { strahlerOrders } from './tree/strahler.ts';
 import { countVessels, vesselOfRow } from './tree/vessels.ts';
+import { buildVolume } from './volume/build-volume.ts';
+import { solveVolumeFlow } from './volume/volume-flow.ts';
 
 /* How the lumen of a tree that stands, grown here or read from a file, becomes a mesh folder. */
 
@@ -44,6 +47,10 @@ export interface MeshOptions extends CutOptions {
   readonly profile?: InletProfile | undefined;
   /** Input written for meshers and flow solvers. */
   readonly solverFiles?: readonly SolverFiles[] | undefined;
+  /** Whether the surface is filled with a volume mesh too; its layers along the wall, and how they grow. */
+  readonly volume?: boolean | undefined;
+  readonly layers?: number | undefined;
+  readonly layerGrowth?: number | undefined;
 }
 
 export const SOLVER_FILES = ['gmsh', 'openfoam'] as const;
@@ -53,6 +60,8 @@ export interface MeshResult {
   readonly mesh: LumenMesh;
   /** The files of a mesh folder. */
   readonly files: readonly NamedBytes[];
+  /** Null where no volume mesh was asked for. */
+  readonly volume: VolumeNotes | null;
   /** Vessels that were meshed, and that were cut off. */
   readonly vessels: number;
   readonly removed: number;
@@ -98,7 +107,19 @@ export function meshTree(record: TreeRecord, grown: Spec | null, options: MeshOp
   const ofPart = (of: FlowField) => (lengths === 'axis' ? of : shortenField(of, kinds, effectiveLengths(of.forest)));
   const numberOf = (row: number): number => cut?.vesselNumbers[row] ?? vesselOfRow(forest, row);
   const built = buildLumen(forest, { around, axialStretch, kinds, vesselNumbers: cut?.vesselNumbers });
-  const mesh = { ...built, problems: [...built.problems, ...shortExtensions(built, extended.short, numberOf)] };
+  const { layers, layerGrowth } = options;
+  const volume =
+    options.volume === true
+      ? buildVolume(built, forest, { layers, layerGrowth, axialStretch, vesselNumbers: cut?.vesselNumbers })
+      : null;
+  const mesh = {
+    ...built,
+    problems: [
+      ...built.problems,
+      ...shortExtensions(built, extended.short, numberOf),
+      ...(volume === null ? [] : volume.problems),
+    ],
+  };
   const density = spec?.blood.density ?? densityOf(whole);
   const made = encodeMeshFolder({
     mesh,
@@ -130,7 +151,17 @@ export function meshTree(record: TreeRecord, grown: Spec | null, options: MeshOp
     profile,
     solverFiles,
   });
-  return { mesh, files: made, vessels: countVessels(forest), removed: cut?.removed ?? 0 };
+  const filled =
+    volume === null
+      ? { files: made, notes: null }
+      : addVolumeFiles(made, volume, solveVolumeFlow(volume, forest, field, kinds), unit ?? 'm');
+  return {
+    mesh,
+    files: filled.files,
+    volume: filled.notes,
+    vessels: countVessels(forest),
+    removed: cut?.removed ?? 0,
+  };
 }
 
 /** A lumen surface that is made while it is written. */

@@ -17,6 +17,8 @@ import {
   type NegativeResult,
   SOLVER_FILES,
   toSi,
+  VOLUME_DEFAULTS,
+  type VolumeNotes,
 } from '../index.ts';
 import {
   MESH_FOLDER,
@@ -42,6 +44,8 @@ const OPTION_NAMES = {
   extend: '--extend',
   keepAbove: '--keep-above',
   keepOrder: '--keep-order',
+  layerGrowth: '--layer-growth',
+  layers: '--layers',
   solverFiles: '--solver-files',
 };
 
@@ -58,6 +62,9 @@ interface MeshArguments extends CommonOptions {
   readonly extend?: string;
   readonly profile?: string;
   readonly solverFiles?: string;
+  readonly volume?: boolean;
+  readonly layers?: string;
+  readonly layerGrowth?: string;
   readonly negative?: boolean;
   readonly leastWall?: string;
 }
@@ -92,6 +99,18 @@ export function addMesh(program: Command, context: Context): void {
     .option(
       '--solver-files <list>',
       `write input that runs as it is: ${SOLVER_FILES.join(',')} (steady laminar flow in the folder openfoam)`,
+    )
+    .option(
+      '--volume',
+      'fill the surface with cells: lumen_volume.vtu, with velocity and pressure, and lumen_volume.msh',
+    )
+    .option(
+      '--layers <count>',
+      `with --volume: layers of cells along the wall, 0 to 20; ${VOLUME_DEFAULTS.layers} where not given`,
+    )
+    .option(
+      '--layer-growth <factor>',
+      `with --volume: thickness of a layer over the one outside it, 1 to 3; ${VOLUME_DEFAULTS.layerGrowth} where not given`,
     )
     .option(
       '--negative',
@@ -159,12 +178,29 @@ function meshOptions(options: MeshArguments): MeshOptions {
     keepOrder: options.keepOrder === undefined ? undefined : wholeNumber(options.keepOrder, '--keep-order', 1, 1000),
     lengths: oneOf(options.lengths ?? 'axis', '--lengths', LENGTH_CHOICES),
     axialStretch: positiveNumber(options.stretch ?? '1', '--stretch'),
+    ...volumeOptions(options),
     extend: options.extend === undefined ? undefined : numberFrom(options.extend, '--extend', 0, 100),
     profile: options.profile === undefined ? undefined : oneOf(options.profile, '--profile', INLET_PROFILES),
     solverFiles:
       options.solverFiles === undefined
         ? undefined
         : options.solverFiles.split(',').map((word) => oneOf(word, '--solver-files', SOLVER_FILES)),
+  };
+}
+
+function volumeOptions(options: MeshArguments): Pick<MeshOptions, 'volume' | 'layers' | 'layerGrowth'> {
+  const { volume = false, layers, layerGrowth } = options;
+  for (const [name, value] of [
+    ['--layers', layers],
+    ['--layer-growth', layerGrowth],
+  ] as const) {
+    if (value !== undefined && !volume)
+      throw inputError('bad-value', name, 'got it without --volume, expected both or neither');
+  }
+  return {
+    volume,
+    layers: layers === undefined ? undefined : wholeNumber(layers, '--layers', 0, 20),
+    layerGrowth: layerGrowth === undefined ? undefined : numberFrom(layerGrowth, '--layer-growth', 1, 3),
   };
 }
 
@@ -209,6 +245,7 @@ export function checkMesh(made: MeshResult): CheckResult {
     msh: bytesOf('lumen.msh'),
     oneSolid: bytesOf('lumen_one_solid.stl'),
     negative: bytesOf('negative.stl'),
+    volume: bytesOf('lumen_volume.vtu'),
   });
 }
 
@@ -224,12 +261,18 @@ function describeMesh(
   const lines = [
     `lumen of ${vessels} vessels${removed === 0 ? '' : `, ${removed} finer ones cut off`}`,
     `  triangles: ${lumen.triangle.length / 3}, patches: wall and ${lumen.patches.length - 1} caps`,
+    ...(made.volume === null ? [] : [describeVolume(made.volume)]),
     `  promises: ${held} held, ${broken} broken`,
     ...lumen.problems.map(({ vessel, why }) => `    NOT MET: at the end of vessel ${vessel}: ${why}`),
     ...(negative === null ? [] : describeNegative(negative)),
     `  written: ${join(out, '/')}: ${files.map(({ name }) => name).join(', ')}`,
   ];
   return `${lines.join('\n')}\n${broken === 0 ? '' : `\n${checkTable(check)}`}`;
+}
+
+function describeVolume({ cells, prisms, pyramids, tetrahedra, least_scaled_jacobian }: VolumeNotes): string {
+  const least = Number(least_scaled_jacobian.toPrecision(3));
+  return `  volume: ${cells} cells (${prisms} prisms, ${pyramids} pyramids, ${tetrahedra} tetrahedra), least scaled Jacobian ${least}`;
 }
 
 function summariseMesh(made: MeshResult, check: CheckResult, out: string, held: boolean): object {
@@ -242,6 +285,7 @@ function summariseMesh(made: MeshResult, check: CheckResult, out: string, held: 
     removed,
     triangles: lumen.triangle.length / 3,
     patches: lumen.patches.map(({ name }) => name),
+    volume: made.volume,
     problems: lumen.problems.map(({ vessel, why }) => ({ vessel, why })),
     promises: check.promises,
     findings: check.findings,

@@ -35,6 +35,7 @@ export const MESH_FOLDER: FolderKind = {
   others: [
     ...['lumen_one_solid.stl', 'lumen.vtp', 'lumen.msh', 'boundary.csv', 'network.csv'],
     ...['inlet_profile.csv', 'fill.geo', 'negative.stl', 'negative.3mf'],
+    ...['lumen_volume.vtu', 'lumen_volume.msh'],
     ...MESH_FORMATS.map(lumenFile),
   ],
   // A case that was run holds results, which are not to be lost.

@@ -28,5 +28,6 @@ export function readMesh(path: string): LumenFiles {
     msh: may('lumen.msh'),
     oneSolid: may('lumen_one_solid.stl'),
     negative: may('negative.stl'),
+    volume: may('lumen_volume.vtu'),
   };
 }

@@ -16,6 +16,7 @@ import { type MeshNotes, readMeshNotes } from './notes.ts';
 import { isBinary, readSolids, type Solids } from './solids.ts';
 import { type Components, type Edges, listEdges, measureComponents } from './topology.ts';
 import { printedSlack, Reference } from './twins.ts';
+import { checkVolume } from './volume.ts';
 import { readVtpSolids, type StatedSolids } from './vtp-file.ts';
 import { type Welded, weldCorners } from './weld.ts';
 
@@ -35,6 +36,8 @@ export interface LumenFiles {
   readonly msh?: Uint8Array | null | undefined;
   /** `lumen_one_solid.stl`, which is not written beside a binary `lumen.stl`. */
   readonly oneSolid?: Uint8Array | null | undefined;
+  /** `lumen_volume.vtu`, which is written where it was asked for. */
+  readonly volume?: Uint8Array | null | undefined;
   /** `negative.stl`, which is written where it was asked for. */
   readonly negative?: Uint8Array | null | undefined;
 }
@@ -122,6 +125,25 @@ export function checkLumen(files: LumenFiles, options: CheckLumenOptions = {}): 
     const negative = checkNegative(files.negative, notes.unit, notes.negative, network, cap);
     all.push(...negative.tallies);
     for (const [tally, why] of negative.unread) unread.set(tally, why);
+  }
+  if (files.volume) {
+    const volume = checkVolume(
+      files.volume,
+      {
+        unit: notes.unit,
+        unitName: notes.unitName,
+        solids,
+        volume: components.volume.reduce((sum, one) => sum + one, 0),
+        area: areaOf(mesh),
+        slack: printedSlack(mesh.position, binary),
+        around: notes.around,
+        boundary,
+        network,
+      },
+      cap,
+    );
+    all.push(...volume.tallies);
+    for (const [tally, why] of volume.unread) unread.set(tally, why);
   }
   const promises = all.map((tally) => {
     const why = unread.get(tally);
@@ -279,6 +301,18 @@ function lookAtComponents(
       tallies.components.fail(boundary.name[row]!, f, 1, 0, message);
     }
   }
+}
+
+/** m² of all triangles. */
+function areaOf({ triangle, position }: Welded): number {
+  let sum = 0;
+  for (let f = 0; f < triangle.length; f += 3) {
+    const [a, b, c] = [3 * triangle[f]!, 3 * triangle[f + 1]!, 3 * triangle[f + 2]!];
+    const [ux, uy, uz] = [0, 1, 2].map((k) => position[b + k]! - position[a + k]!) as [number, number, number];
+    const [vx, vy, vz] = [0, 1, 2].map((k) => position[c + k]! - position[a + k]!) as [number, number, number];
+    sum += 0.5 * Math.hypot(uy * vz - uz * vy, uz * vx - ux * vz, ux * vy - uy * vx);
+  }
+  return sum;
 }
 
 /** Smallest angle of every triangle, rad. */

@@ -1,5 +1,5 @@
-import { inputError } from '../../core/errors.ts';
 import { decodeText } from '../../core/text.ts';
+import { openAppended } from './appended-file.ts';
 import type { Solids } from './solids.ts';
 
 /** A surface with the unit of length its file states; null where it states none. */
@@ -15,43 +15,16 @@ export interface StatedSolids extends Solids {
  * Source: VTK XML formats as documented by Kitware.
  */
 export function readVtpSolids(file: string, bytes: Uint8Array): StatedSolids {
-  const fail = (message: string) => inputError('bad-vtp', file, message);
-  const mark = indexOf(bytes, '<AppendedData', 0);
-  const start = mark < 0 ? -1 : bytes.indexOf(0x5f, mark);
-  if (start < 0) throw fail('got no appended data: the file is cut short, or is no VTK XML file of this kind');
-  const head = decodeText(bytes.subarray(0, start));
-  for (const words of ['type="PolyData"', 'byte_order="LittleEndian"', 'header_type="UInt64"', 'encoding="raw"']) {
-    if (!head.includes(words)) throw fail(`got no ${words}, which the files of a mesh folder have`);
-  }
-  const view = new DataView(bytes.buffer, bytes.byteOffset, bytes.byteLength);
-  const block = (section: string, name: string, type: string): Uint8Array | null => {
-    const inside = new RegExp(`<${section}>([^]*?)</${section}>`).exec(head)?.[1] ?? '';
-    const tag = [...inside.matchAll(/<(?:Data)?Array ([^>]*)>/g)].find(([, words]) =>
-      words!.includes(` Name="${name}"`),
-    )?.[1];
-    if (tag === undefined) return null;
-    const offset = Number(/ offset="(\d+)"/.exec(tag)?.[1] ?? Number.NaN);
-    if (!tag.includes(`type="${type}"`) || Number.isNaN(offset)) throw fail(`${name}: expected appended ${type}`);
-    const from = start + 1 + offset;
-    const size = from + 8 <= bytes.length ? Number(view.getBigUint64(from, true)) : Infinity;
-    if (from + 8 + size > bytes.length) throw fail(`${name}: the file is cut short`);
-    return bytes.slice(from + 8, from + 8 + size);
-  };
-  const needed = (section: string, name: string, type: string): Uint8Array => {
-    const data = block(section, name, type);
-    if (data === null) throw fail(`got no array ${name} in ${section}`);
-    return data;
-  };
-  const points = new Float64Array(whole(needed('Points', 'Points', 'Float64'), 24, fail));
-  const corners = new Int32Array(whole(needed('Polys', 'connectivity', 'Int32'), 12, fail));
-  const ends = new Int32Array(whole(needed('Polys', 'offsets', 'Int32'), 4, fail));
+  const { fail, block, needed } = openAppended(file, bytes, 'PolyData');
+  const points = new Float64Array(needed('Points', 'Points', 'Float64', 24));
+  const corners = new Int32Array(needed('Polys', 'connectivity', 'Int32', 12));
+  const ends = new Int32Array(needed('Polys', 'offsets', 'Int32', 4));
   const faces = corners.length / 3;
   if (ends.length !== faces || ends.some((end, f) => end !== 3 * f + 3)) throw fail('got polygons, expected triangles');
-  const texts = decodeText(needed('CellData', 'patch', 'String'))
+  const texts = decodeText(new Uint8Array(needed('CellData', 'patch', 'String', 1)))
     .split('\0')
     .slice(0, -1);
   if (texts.length !== faces) throw fail(`patch: got ${texts.length} names, expected ${faces}`);
-  if (indexOf(bytes, '</VTKFile>', bytes.length - 64) < 0) throw fail('the file is cut short: it has no end');
   const names: string[] = [];
   const number = new Map<string, number>();
   const solid = Int32Array.from(texts, (name) => {
@@ -85,20 +58,4 @@ export function spread(points: Float64Array, corners: Int32Array, fail: (message
     }
   }
   return corner;
-}
-
-/** The buffer of an array whose size must be whole tuples. */
-function whole(data: Uint8Array, tuple: number, fail: (message: string) => Error): ArrayBuffer {
-  if (data.length % tuple !== 0) throw fail(`got ${data.length} bytes, expected a multiple of ${tuple}`);
-  return data.buffer as ArrayBuffer;
-}
-
-function indexOf(bytes: Uint8Array, text: string, from: number): number {
-  const same = (at: number) => {
-    for (let k = 0; k < text.length; k++) if (bytes[at + k] !== text.charCodeAt(k)) return false;
-    return true;
-  };
-  let at = bytes.indexOf(text.charCodeAt(0), Math.max(0, from));
-  while (at >= 0 && !same(at)) at = bytes.indexOf(text.charCodeAt(0), at + 1);
-  return at;
 }
