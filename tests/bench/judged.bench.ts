@@ -1,7 +1,8 @@
 /*
  * The networks of ten grown trees, of axis lengths and of effective lengths, against Stokes flow in their meshes. A line a tree,
  * in %: worst drop (network over Stokes) and worst share of the flow (Stokes over network). Needs python3-dolfin and tetgen;
- * 3 minutes on a free core and 5 GB for all.
+ * a quarter of an hour on a shared core and 4.5 GB for all.
+ * In the repository's folder:
  *   npm run build && node tests/bench/run.mjs judged [-- name …]
  */
 import { mkdtempSync, rmSync } from 'node:fs';
@@ -22,7 +23,7 @@ if (!hasJudge()) {
   );
   try {
     for (const name of asked.length > 0 ? asked : Object.keys(JUDGED_TREES)) {
-      const got = judgeTree(name, folder);
+      const got = judgeTree(name, folder, process.cwd());
       const pair = ({ drop, share }: typeof got.axis) => `${range(drop)}${range(share)}`;
       const cost = `${String(got.unknowns).padStart(8)}${String(got.seconds).padStart(7)}${String(got.memory_GB).padStart(5)}`;
       console.log(

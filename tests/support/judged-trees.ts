@@ -1,8 +1,7 @@
 import { spawnSync } from 'node:child_process';
 import { writeFileSync } from 'node:fs';
 import { join } from 'node:path';
-import { fileURLToPath } from 'node:url';
-import { PROGRAM } from './program.ts';
+import { ROOT } from './program.ts';
 
 /*
  * Ten small trees, invented, whose meshes are handed to an independent flow solver: other tissues, sizing rules, exponents and
@@ -116,7 +115,6 @@ export const JUDGED_TREES: Readonly<Record<string, object>> = {
 
 const PYTHON = '/usr/bin/python3';
 const MESHER = 'tetgen';
-const JUDGE = fileURLToPath(new URL('../integration/judge-flow.py', import.meta.url));
 
 /** What the judge found of one mesh folder: relative differences, a number for each cap but the root's. */
 export interface Judged {
@@ -150,18 +148,21 @@ export function hasJudge(): boolean {
 /**
  * Grows and meshes one of the trees by the built program, 24 segments round, and has its mesh judged. Long triangles spare
  * half the memory; a straight tube conducts 0.4 % more than the law says with them and without.
+ *
+ * @param root of the repository; a bundled bench does not know where it was
  */
-export function judgeTree(name: string, folder: string): Judged {
+export function judgeTree(name: string, folder: string, root = ROOT): Judged {
+  const program = join(root, 'dist/cli/main.js');
   const run = (command: string, ...words: string[]): string => {
     const { stdout, stderr, status } = spawnSync(command, words, { cwd: folder, encoding: 'utf8', maxBuffer: 1 << 28 });
     if (status !== 0) throw new Error(`${words.join(' ')}: ${stdout}${stderr}`);
     return stdout;
   };
   writeFileSync(join(folder, `${name}.json`), JSON.stringify({ name, seed: name, ...JUDGED_TREES[name] }));
-  run(process.execPath, PROGRAM, 'grow', `${name}.json`, '--out', `run-${name}`, '--quiet');
+  run(process.execPath, program, 'grow', `${name}.json`, '--out', `run-${name}`, '--quiet');
   run(
     process.execPath,
-    PROGRAM,
+    program,
     'mesh',
     `run-${name}`,
     '--out',
@@ -172,6 +173,6 @@ export function judgeTree(name: string, folder: string): Judged {
     '2',
     '--quiet',
   );
-  const lines = run(PYTHON, JUDGE, name).trim().split('\n');
+  const lines = run(PYTHON, join(root, 'tests/integration/judge-flow.py'), name).trim().split('\n');
   return JSON.parse(lines.at(-1)!);
 }
