@@ -1,8 +1,9 @@
 import { describe, expect, it } from 'vitest';
 import { InputError } from '../../../src/core/errors.ts';
 import { randomStream } from '../../../src/core/random.ts';
-import { buildLumen, type LumenOptions } from '../../../src/mesh/build-lumen.ts';
+import { buildLumen } from '../../../src/mesh/build-lumen.ts';
 import type { LumenMesh } from '../../../src/mesh/lumen.ts';
+import type { LumenOptions } from '../../../src/mesh/lumen-plan.ts';
 import type { Forest } from '../../../src/tree/forest.ts';
 import { countVessels, rowOfVessel, tubeLength } from '../../../src/tree/vessels.ts';
 import { judgeCaps } from '../../support/lumen-caps.ts';
