@@ -14,6 +14,8 @@ export default defineConfig({
     chunkSizeWarningLimit: 1200,
     modulePreload: { polyfill: false },
     rolldownOptions: {
+      // The viewer prints nothing; the library of solids, whose loader asks for node's modules, stays out with what uses it.
+      external: ['manifold-3d'],
       treeshake: {
         // The library's modules do nothing when they are loaded, so what the viewer does not use stays out: above all the
         // spec's schemas, whose package tries `new Function`, which the view server's policy forbids.
