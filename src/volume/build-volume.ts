@@ -6,6 +6,7 @@ import { layOutTubes } from '../mesh/tube-layout.ts';
 import { listChildren } from '../tree/children.ts';
 import type { Forest } from '../tree/forest.ts';
 import { vesselOfRow } from '../tree/vessels.ts';
+import { CELL_KINDS, scaledJacobian } from './cell-shape.ts';
 import { NodeFiller, type NodeSurface } from './fill-node.ts';
 import { addSections, fillTubes, sectionPoint, type TubeSections } from './fill-tubes.ts';
 import { GrowingRows } from './growing-column.ts';
@@ -76,6 +77,7 @@ export function buildVolume(mesh: LumenMesh, forest: Forest, options: VolumeOpti
     else if (naked && layers > 0)
       problems.push({ row, vessel: numbers[row]!, why: 'this junction has no layers: they would be folded' });
   });
+  problems.push(...turnedOver(out, new Set(problems.map(({ vessel }) => vessel))));
   list.point[nodes.length] = out.points;
   list.tetrahedron[nodes.length] = out.vesselOfTetrahedron.count;
   list.prism[nodes.length] = out.vesselOfPrism.count;
@@ -96,6 +98,22 @@ export function buildVolume(mesh: LumenMesh, forest: Forest, options: VolumeOpti
     layerGrowth: growth,
     problems,
   };
+}
+
+/** Vessels, not told of before, some of whose cells beyond tetrahedra are turned over: rims may have leant too far. */
+function turnedOver(out: GrowingVolume, told: Set<number>): LumenProblem[] {
+  const rowOf = new Map<number, number>();
+  for (const kind of CELL_KINDS.slice(1)) {
+    const cells = kind.name === 'prism' ? out.prism : out.pyramid;
+    const vessels = kind.name === 'prism' ? out.vesselOfPrism : out.vesselOfPyramid;
+    for (let at = 0; at < cells.count; at += kind.size) {
+      const vessel = vessels.values[at / kind.size]!;
+      if (told.has(vessel) || scaledJacobian(out.position.values, cells.values, at, kind) > 0) continue;
+      told.add(vessel);
+      rowOf.set(vessel, out.row.values[cells.values[at]!]!);
+    }
+  }
+  return [...rowOf].map(([vessel, row]) => ({ row, vessel, why: 'cells of this vessel are turned over' }));
 }
 
 function listNodes(row: Int32Array): NodeList {

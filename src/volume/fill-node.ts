@@ -63,7 +63,9 @@ export class NodeFiller {
     const { fraction, layers } = sections.disc;
     const unit = loadShape(this.shape, forest, children, row, layout);
     const surface = this.gatherWall(row, unit, out);
-    return layNodeLayers(this.shape, surface.wall, 1 - fraction[layers]!, fraction) ? surface : null;
+    if (!layNodeLayers(this.shape, surface.wall, 1 - fraction[layers]!, fraction)) return null;
+    this.leanRims(out, row, unit, surface.wall);
+    return surface;
   }
 
   /**
@@ -95,6 +97,22 @@ export class NodeFiller {
     const { children, layout } = this.input;
     if (tube === 0) return { vessel: row, ring: layout.strips[row]!, own: true };
     return { vessel: children.list[children.start[row]! + tube - 1]!, ring: 0, own: false };
+  }
+
+  /** Moves the points of layers on rims to where the node's layers have them. */
+  private leanRims(out: GrowingVolume, row: number, unit: number, wall: NodeWall): void {
+    const { sections } = this.input;
+    const { around, layers, fraction } = sections.disc;
+    const p = out.position.values;
+    for (let v = 0; v < wall.rimCorners; v++) {
+      const { vessel, ring } = this.tubeEnd(row, Math.floor(v / around));
+      const rim = sectionPoint(sections, vessel, ring, v % around);
+      for (let l = 1; l <= layers; l++) {
+        const inner = sectionPoint(sections, vessel, ring, l * around + (v % around));
+        const share = (unit * (1 - fraction[l]!)) / (1 - fraction[layers]!);
+        for (let k = 0; k < 3; k++) p[3 * inner + k] = p[3 * rim + k]! + share * wall.shift[3 * v + k]!;
+      }
+    }
   }
 
   /** The node's wall in units of its shape, rims first with the shifts that their layers have. */
@@ -141,7 +159,20 @@ export class NodeFiller {
           shift[3 * v + k] = (out.position.values[3 * p + k]! - mesh.position[3 * source[v]! + k]!) / unit;
       }
     }
-    return { wall: { corners, rimCorners, position, triangle, shift }, source: source.subarray(0, corners) };
+    const towards = this.towardsNode(row, rimCorners);
+    return { wall: { corners, rimCorners, position, triangle, shift, towards }, source: source.subarray(0, corners) };
+  }
+
+  /** Unit vectors along the tubes towards the node; zeros at rims that it shares with another node. */
+  private towardsNode(row: number, rimCorners: number): Float64Array {
+    const { layout, sections } = this.input;
+    const out = new Float64Array(3 * rimCorners);
+    for (let v = 0; v < rimCorners; v++) {
+      const tube = Math.floor(v / sections.disc.around);
+      if (layout.strips[this.tubeEnd(row, tube).vessel] === 0) continue;
+      for (let k = 0; k < 3; k++) out[3 * v + k] = -this.shape.axis[3 * tube + k]!;
+    }
+    return out;
   }
 
   /** Adds the layers' points and prisms; returns the points inside the innermost layer by corner of the wall. */

@@ -6,6 +6,11 @@ const WIDE = 0.8;
 const APART = 0.62;
 const ABOVE_WALL = 0.38;
 const PASSES = 12;
+/** Least distance of a new point from the planes of the faces it is joined to, over the wanted edge. */
+const SEEN = 0.02;
+/** Members of a hole, and how often one is mended. */
+const LARGEST_HOLE = 400;
+const TRIES = 20;
 /** How much longer edges may be with each point further from the boundary. */
 const GROWTH = 1.15;
 
@@ -24,6 +29,8 @@ export class CoreRefiner {
   private marked = new Int32Array(0);
   private round = 0;
   private hole: number[] = [];
+  /** Members of the hole that must go, as the point lies on a face of theirs. */
+  private pinned: number[] = [];
   private widest = Infinity;
 
   constructor(mesh: TetMesh) {
@@ -150,10 +157,11 @@ export class CoreRefiner {
     const { hole, marked } = this;
     const [x, y, z] = [mesh.position[3 * v]!, mesh.position[3 * v + 1]!, mesh.position[3 * v + 2]!];
     const inside = ++this.round;
+    this.pinned.length = 0;
     hole.length = 0;
     hole.push(t);
     marked[t] = inside;
-    for (let i = 0; i < hole.length; i++) {
+    for (let i = 0; i < hole.length && hole.length < LARGEST_HOLE; i++) {
       for (let k = 0; k < 4; k++) {
         const n = mesh.beyond[4 * hole[i]! + k]!;
         if (n < 0 || marked[n] === inside) continue;
@@ -165,40 +173,52 @@ export class CoreRefiner {
         hole.push(n);
       }
     }
-    for (let tries = 0; tries < 60; tries++) {
-      const blocked = this.planHole(t, v, inside);
-      if (blocked === -1) return this.keepsVertices(inside);
+    for (let tries = 0; tries < TRIES; tries++) {
+      const state = this.planHole(t, v, inside);
+      if (state === 'sound') return this.keepsVertices();
       mesh.freshCount = 0;
-      if (blocked === -2) return false;
-      // Without what is in the way, and what then hangs together no more.
-      marked[blocked] = 0;
+      if (state === 'hopeless') return false;
       this.gatherHole(t, inside);
     }
     return false;
   }
 
-  /** Plans the filling: −1 where it is sound, else the member of the hole that is in the way, −2 where nothing helps. */
-  private planHole(t: number, v: number, inside: number): number {
-    const { mesh, hole, marked } = this;
+  /** Plans the filling. Where the point does not see a face of the hole, it is made smaller, or larger where it must be. */
+  private planHole(t: number, v: number, inside: number): 'sound' | 'again' | 'hopeless' {
+    const { mesh, hole, marked, pinned } = this;
     const size = mesh.size[v]!;
-    for (const member of hole) {
+    const least = SEEN * size;
+    let sound = true;
+    for (let i = 0; i < hole.length; i++) {
+      const member = hole[i]!;
+      if (marked[member] !== inside) continue;
       for (let k = 0; k < 4; k++) {
         const n = mesh.beyond[4 * member + k]!;
         if (n >= 0 && marked[n] === inside) continue;
         const a = mesh.corner[4 * member + FACE[3 * k]!]!;
         const b = mesh.corner[4 * member + FACE[3 * k + 1]!]!;
         const c = mesh.corner[4 * member + FACE[3 * k + 2]!]!;
-        const six = -mesh.six(a, b, c, v);
-        const area = this.twiceArea(a, b, c);
-        const height = six / area;
-        if (n < 0 && height < ABOVE_WALL * size && height > 0) return -2;
+        const height = -mesh.six(a, b, c, v) / this.twiceArea(a, b, c);
+        if (n < 0 && height < ABOVE_WALL * size && height > 0) return 'hopeless';
         const sides = Math.min(mesh.squared(a, v), mesh.squared(b, v), mesh.squared(c, v));
-        if (sides < APART * APART * size * size) return -2;
-        if (height > 0.02 * size) mesh.plan(a, c, b, v);
-        else return member === t ? -2 : member;
+        if (sides < APART * APART * size * size) return 'hopeless';
+        if (height > least) {
+          if (sound) mesh.plan(a, c, b, v);
+          continue;
+        }
+        sound = false;
+        if (member !== t && !pinned.includes(member)) {
+          marked[member] = 0;
+          break;
+        }
+        // The point lies on a face of what must go: what lies beyond goes too.
+        if (n < 0 || height < -least) return 'hopeless';
+        pinned.push(n);
+        marked[n] = inside;
+        hole.push(n);
       }
     }
-    return -1;
+    return sound ? 'sound' : 'again';
   }
 
   private gatherHole(t: number, inside: number): void {
@@ -221,7 +241,7 @@ export class CoreRefiner {
   }
 
   /** Whether every corner of the hole is a corner of what fills it. */
-  private keepsVertices(inside: number): boolean {
+  private keepsVertices(): boolean {
     const { mesh, hole } = this;
     const kept = new Set<number>();
     for (let i = 0; i < 4 * mesh.freshCount; i++) kept.add(mesh.fresh[i]!);
@@ -232,7 +252,7 @@ export class CoreRefiner {
         return false;
       }
     }
-    return inside > 0;
+    return true;
   }
 
   private twiceArea(a: number, b: number, c: number): number {
