@@ -26,6 +26,10 @@ export interface VolumeOptions {
   readonly vesselNumbers?: ArrayLike<number> | undefined;
 }
 
+/** Scaled Jacobian of cells in tubes for which a node gives up its layers, and how often more may. */
+const POOR = 0.03;
+const TRIES = 4;
+
 export const VOLUME_DEFAULTS = { layers: 3, layerGrowth: 1.2 } as const;
 
 /**
@@ -63,9 +67,24 @@ export function buildVolume(mesh: LumenMesh, forest: Forest, options: VolumeOpti
   const nodes = Int32Array.from({ length: forest.count }, (_, row) => row).filter(
     (row) => forest.parent[row]! >= 0 && children.start[row] !== children.start[row + 1],
   );
+  const upright = out.position.trimmed();
   const surfaces = Array.from(nodes, (row) => (layers === 0 ? null : filler.layLayers(out, row)));
-  const bare = findBareNodes(forest, layout.strips, nodes, surfaces);
-  fillTubes(out, forest, layout, numbers, sections, layers === 0 ? new Uint8Array(forest.count) : bare);
+  const mark = out.mark();
+  let bare = findBareNodes(forest, layout.strips, nodes, surfaces);
+  for (let tries = 0; ; tries++) {
+    nodes.forEach((row) => {
+      if (bare[row] === 1) filler.raiseRims(out, row, upright);
+    });
+    fillTubes(out, forest, layout, numbers, sections, layers === 0 ? new Uint8Array(forest.count) : bare);
+    const folded = layers === 0 ? new Set<number>() : foldedTubes(out, forest, bare);
+    if (folded.size === 0 || tries === TRIES) break;
+    // Rims that lean spoil the tube's cells: its nodes do without layers.
+    nodes.forEach((row, i) => {
+      if (folded.has(row)) surfaces[i] = null;
+    });
+    bare = findBareNodes(forest, layout.strips, nodes, surfaces);
+    out.cutBack(mark);
+  }
   const list = listNodes(nodes);
   nodes.forEach((row, i) => {
     list.point[i] = out.points;
@@ -98,6 +117,23 @@ export function buildVolume(mesh: LumenMesh, forest: Forest, options: VolumeOpti
     layerGrowth: growth,
     problems,
   };
+}
+
+/** Nodes with layers at the ends of tubes that have badly shaped cells. */
+function foldedTubes(out: GrowingVolume, forest: Forest, bare: Uint8Array): Set<number> {
+  const rows = new Set<number>();
+  const position = out.position.values;
+  for (const kind of CELL_KINDS) {
+    const { values, count } = out[kind.name];
+    for (let at = 0; at < count; at += kind.size) {
+      const row = out.row.values[values[at]!]!;
+      const parent = forest.parent[row]!;
+      if (bare[row] === 1 && bare[parent] === 1) continue;
+      if (!(scaledJacobian(position, values, at, kind) > POOR)) rows.add(row).add(parent);
+    }
+  }
+  for (const row of rows) if (bare[row] === 1) rows.delete(row);
+  return rows;
 }
 
 /** Vessels, not told of before, some of whose cells beyond tetrahedra are turned over: rims may have leant too far. */

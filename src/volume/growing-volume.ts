@@ -23,6 +23,24 @@ export class GrowingVolume {
     return this.row.count;
   }
 
+  /** How much there is now, for `cutBack`. */
+  mark(): readonly number[] {
+    return this.columns().map(({ count }) => count);
+  }
+
+  /** Forgets what came after a mark. */
+  cutBack(mark: readonly number[]): void {
+    this.columns().forEach((column, i) => {
+      column.count = mark[i]!;
+    });
+  }
+
+  private columns(): (GrowingReals | GrowingRows)[] {
+    const cells = [this.tetrahedron, this.pyramid, this.prism];
+    const vessels = [this.vesselOfTetrahedron, this.vesselOfPyramid, this.vesselOfPrism];
+    return [this.position, this.row, this.along, ...cells, ...vessels];
+  }
+
   addPoint(x: number, y: number, z: number, row: number, along: number): number {
     const at = this.position.take(3);
     this.position.values[at] = x;

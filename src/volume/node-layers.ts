@@ -235,12 +235,8 @@ function thinOut(wall: NodeWall, fraction: Float64Array): boolean {
   }
 }
 
-/**
- * Least cosine between the way in and the normal at a corner of a layer. With 0.05 to 0.1 OpenFOAM's checkMesh found faces
- * of skewness 4.3 to 4.8, where 4 is its limit, in a fork of 25°; with 0.12 none above 4, but 13 of 196 nodes of random
- * trees with angles from 25° have no layers, with 0.05 none of them.
- */
-const LEAST = 0.12;
+/** Least cosine between the way in and the normal at a corner of a layer. */
+const LEAST = 0.06;
 /** Least height of a face over the node, over its size. */
 const SEEN = 0.02;
 /** Cosine that is good enough within the layers. */
